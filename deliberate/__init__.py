@@ -1,0 +1,1 @@
+"""Deliberate: rehearse a contested meeting before it happens."""

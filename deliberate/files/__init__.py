@@ -1,0 +1,1 @@
+"""Reading and writing what lasts: scenario files. Decides nothing."""

@@ -1,0 +1,1 @@
+"""One run of the whole computation on a scenario, and what stands out in it."""

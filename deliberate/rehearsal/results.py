@@ -1,0 +1,161 @@
+"""What a rehearsal gives back: numbers by person id, and findings in plain words.
+
+Arrays over people follow `Rehearsal.people`; arrays over rounds start with round 0. All arrays are read-only.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Literal
+
+import numpy as np
+from numpy.typing import NDArray
+
+from deliberate.scenario.values import AgreementTest
+
+Floats = NDArray[np.float64]
+Verdict = Literal["agreement", "disagreement", "neither"]
+
+
+@dataclass(frozen=True, eq=False)
+class ClosedGroup:
+    """People who in the long run hear only each other (a closed communicating class).
+
+    An `anchored` group is one firm person's own starting belief, a source that never changes. `phases` gives
+    each person's place in the swing, 0 .. period - 1: in every round the people of one phase take over what
+    those of the next one held. `influence` sums to 1 within the group (stationary distribution).
+    """
+
+    people: tuple[str, ...]
+    period: int
+    phases: tuple[int, ...]
+    influence: Mapping[str, float]
+    anchored: bool
+
+
+@dataclass(frozen=True, eq=False)
+class Cycle:
+    """The `period` belief lists that are visited for ever; `beliefs` has shape (period, people)."""
+
+    period: int
+    beliefs: Floats
+
+
+@dataclass(frozen=True)
+class Tally:
+    """The ballot that a list of beliefs would give under the body's rule, counted in ballots."""
+
+    in_favour: float
+    against: float
+    abstain: float
+    objecting: float
+    quorum_met: bool
+    passes: bool
+
+
+@dataclass(frozen=True)
+class Agreement:
+    """The verdict of one agreement test, with the figure it was judged by."""
+
+    test: AgreementTest
+    verdict: Verdict
+    figure: float
+
+
+@dataclass(frozen=True, eq=False)
+class Rehearsal:
+    """One run of the whole computation on (scenario, variant, question)."""
+
+    variant: str
+    question: str
+    people: tuple[str, ...]
+    rounds: Floats  # (rounds + 1, people)
+    spread: Floats  # (rounds + 1,)
+    settles_from_any_start: bool
+    settles: bool
+    consensus_from_any_start: bool
+    consensus: bool
+    limit: Floats | None  # (people,)
+    cycle: Cycle | None
+    long_run_average: Floats  # (people,)
+    closed_groups: tuple[ClosedGroup, ...]
+    outside: tuple[str, ...]
+    influence: Floats  # (people,), sums to 1
+    effective_voices: float
+    rate: float | None  # per round
+    rounds_to_agree: int | None
+    rounds_to_halve: float | None  # log(1/2) / log(rate); None when the rate is None or not below 1
+    tolerance: float  # on the question's scale
+    ballot: tuple[Tally, ...] | None
+    ballot_at_limit: Tally | None
+    agreement: tuple[tuple[Agreement, ...], ...] | None
+    agreement_at_limit: tuple[Agreement, ...] | None
+    unknown_starts: tuple[str, ...]
+    notes: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class Introduce:
+    """Let `listener` hear `source` with `points` of 100; the listener's other points shrink to make room."""
+
+    listener: str
+    source: str
+    points: float
+
+
+@dataclass(frozen=True)
+class KeepOwnView:
+    """Let each of `people` give her own view `points` of 100; her other points shrink to make room."""
+
+    people: tuple[str, ...]
+    points: float
+
+
+@dataclass(frozen=True)
+class JointRound:
+    """Put a stage of `rounds` before the others in which everybody hears everybody equally: a go-round."""
+
+    rounds: int
+
+
+Suggestion = Introduce | KeepOwnView | JointRound
+
+Kind = Literal[
+    "settles",
+    "closed-groups",
+    "swing",
+    "outside",
+    "fixed-view",
+    "lasting-gap",
+    "unheard",
+    "hears-nobody",
+    "carries",
+    "bridge",
+    "slow",
+    "unfinished",
+    "vote",
+    "knife-edge",
+    "quorum",
+    "agreement",
+    "unknown-starts",
+    "absent",
+]
+
+
+@dataclass(frozen=True)
+class Finding:
+    """One thing that stands out. `says` and `why` are one plain-text sentence each.
+
+    `groups` are the people to light up together (closed groups, phases of a swing, the two sides of a bridge),
+    `arrows` are (listener, source) pairs, `figures` the numbers behind the words.
+    """
+
+    kind: Kind
+    says: str
+    why: str
+    people: tuple[str, ...]
+    figures: Mapping[str, float]
+    groups: tuple[tuple[str, ...], ...] = ()
+    arrows: tuple[tuple[str, str], ...] = ()
+    suggestion: Suggestion | None = None

@@ -1,0 +1,1 @@
+"""The meeting as immutable values, and the edits on them."""

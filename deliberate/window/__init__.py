@@ -1,0 +1,1 @@
+"""The window: shows values, asks for edits, computes nothing."""
