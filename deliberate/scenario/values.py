@@ -85,6 +85,7 @@ class Question(Value):
 
     @property
     def width(self) -> float:
+        """How long the scale is."""
         return self.high - self.low
 
     @property
@@ -169,6 +170,7 @@ class Plan(Value):
 
     @property
     def rounds(self) -> int:
+        """How many rounds the stages have together."""
         return sum(stage.rounds for stage in self.stages)
 
 
