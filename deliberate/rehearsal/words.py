@@ -1,0 +1,118 @@
+"""Figures and names as a reader wants them: digits that fit the scale, short lists, plurals.
+
+Only ASCII is added to what the scenario holds, so that every terminal can print it.
+"""
+
+from __future__ import annotations
+
+import math
+from collections import Counter
+from collections.abc import Iterable, Mapping, Sequence
+
+from deliberate.scenario.values import Question, Variant
+
+_STEPS = 1000  # a figure is shown to about this part of the scale: 0.714 of 1, 71.4 of 100, 714 of 1000
+_MOST_DECIMALS = 9
+_SMALL_NUMBERS = "no one two three four five six seven eight nine ten eleven twelve".split()
+
+
+def decimals(question: Question) -> int:
+    """How many decimals show a thousandth of the question's scale."""
+    width = question.width
+    if not 0 < width < math.inf:
+        return 0
+    return min(max(0, math.ceil(math.log10(_STEPS / width) - 1e-9)), _MOST_DECIMALS)
+
+
+def number(value: float, question: Question, beside: float | None = None) -> str:
+    """`value` on the question's scale, without idle zeros: "0.714", "71.4", "12,500".
+
+    `beside` is a figure this one must be told apart from (a pass mark, say): digits are added until the two
+    read differently, unless they are equal.
+    """
+    places = decimals(question)
+    text = _fixed(value, places)
+    if beside is not None and beside != value:
+        while text == _fixed(beside, places) and places < 17:
+            places += 1
+            text = _fixed(value, places)
+    return text
+
+
+def with_unit(value: float, question: Question, beside: float | None = None) -> str:
+    """`number` followed by the question's unit, if it has one: "480 thousand euros"."""
+    text = number(value, question, beside)
+    return f"{text} {question.unit}" if question.unit else text
+
+
+def amount(value: float) -> str:
+    """A count of ballots or points as it was given: "3", "2.5", "12,000"."""
+    return _fixed(value, 6)
+
+
+def percent(share: float) -> str:
+    """A share of one as "81 %"; near both ends with a decimal, and never rounded to nothing or to all."""
+    hundredth = share * 100
+    if hundredth <= 0 or hundredth >= 100 or 0.995 <= hundredth <= 99.005:
+        return f"{hundredth:.0f} %"
+    if hundredth < 0.05:
+        return "under 0.1 %"
+    if hundredth > 99.95:
+        return "over 99.9 %"
+    return f"{hundredth:.1f} %"
+
+
+def count(n: float, one: str, several: str) -> str:
+    """`n` and the fitting noun, in figures: "1 person", "3 people", "2.5 ballots"."""
+    return f"{amount(n)} {one if n == 1 else several}"
+
+
+def in_words(n: int, one: str, several: str) -> str:
+    """`n` and the fitting noun, in words up to twelve: "no people", "one person", "three people", "13 people"."""
+    figure = _SMALL_NUMBERS[n] if 0 <= n < len(_SMALL_NUMBERS) else amount(n)
+    return f"{figure} {one if n == 1 else several}"
+
+
+def listing(parts: Sequence[str]) -> str:
+    """Joined as in a sentence: "a", "a and b", "a, b and c"."""
+    if len(parts) < 2:
+        return "".join(parts)
+    return f"{', '.join(parts[:-1])} and {parts[-1]}"
+
+
+def shown_names(variant: Variant) -> Mapping[str, str]:
+    """Each id's name; people who share a name get their id behind it: "Amina (amina-2)"."""
+    times = Counter(person.shown_name for person in variant.people)
+    return {
+        person.id: name if times[name] == 1 else f"{name} ({person.id})"
+        for person in variant.people
+        for name in (person.shown_name,)
+    }
+
+
+def names(ids: Iterable[str], variant: Variant | Mapping[str, str], most: int = 4) -> str:
+    """The people as a list of at most `most` entries: "Amina and Bilal", "Amina, Bilal, Chen and 3 others".
+
+    `variant` may also be what `shown_names` gives, which saves time where many lists are made of one variant.
+    """
+    known = shown_names(variant) if isinstance(variant, Variant) else variant
+    shown = [known.get(one, one) for one in ids]
+    if len(shown) > max(most, 1):
+        kept = max(most - 1, 1)
+        shown = [*shown[:kept], count(len(shown) - kept, "other", "others")]
+    return listing(shown)
+
+
+def sentence(text: str) -> str:
+    """`text` with a capital first letter, the rest untouched."""
+    return text[:1].upper() + text[1:]
+
+
+def _fixed(value: float, places: int) -> str:
+    """At most `places` decimals, no idle zeros, no "-0"; thousands set off; exponents only for huge numbers."""
+    if abs(value) >= 1e15:
+        return f"{value:.6g}"
+    text = f"{value:,.{places}f}"
+    if "." in text:
+        text = text.rstrip("0").rstrip(".")
+    return "0" if text == "-0" else text
