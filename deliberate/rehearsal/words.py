@@ -13,15 +13,18 @@ from deliberate.scenario.values import Question, Variant
 
 _STEPS = 1000  # a figure is shown to about this part of the scale: 0.714 of 1, 71.4 of 100, 714 of 1000
 _MOST_DECIMALS = 9
-_SMALL_NUMBERS = "no one two three four five six seven eight nine ten eleven twelve".split()
+# fmt: off
+_SMALL_NUMBERS = ("no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven",
+                  "twelve")
+# fmt: on
 
 
 def decimals(question: Question) -> int:
-    """How many decimals show a thousandth of the question's scale."""
+    """How many decimals show a thousandth of the question's scale, at most 9."""
     width = question.width
     if not 0 < width < math.inf:
         return 0
-    return min(max(0, math.ceil(math.log10(_STEPS / width) - 1e-9)), _MOST_DECIMALS)
+    return min(max(0, math.ceil(math.log10(_STEPS) - math.log10(width) - 1e-9)), _MOST_DECIMALS)
 
 
 def number(value: float, question: Question, beside: float | None = None) -> str:
