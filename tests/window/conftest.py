@@ -1,0 +1,66 @@
+"""For tests of the window: whatever a test opens or starts is closed and stopped when it ends."""
+
+from __future__ import annotations
+
+import gc
+import threading
+import time
+from collections.abc import Callable, Iterator
+
+import pytest
+from PySide6.QtCore import QCoreApplication, QEvent, QObject, QThread, QThreadPool, QTimer
+from PySide6.QtWidgets import QApplication
+from shiboken6 import isValid
+
+# A worker that was told to stop may need a moment; one that was not is still there after it.
+GRACE_SECONDS = 5.0
+
+
+@pytest.fixture(scope="session", autouse=True)
+def _only_new_objects(qapp: QApplication) -> None:
+    """Keep what the imports made out of the collector's lists, so that looking through them stays quick."""
+    gc.collect()
+    gc.freeze()
+
+
+@pytest.fixture(autouse=True)
+def nothing_left_over(_only_new_objects: None) -> Iterator[None]:
+    """Fail a test that leaves windows, running timers or running threads behind."""
+    before = _open_and_running()
+    yield
+    _let_go(lambda: not _without(before, _running_threads()))
+    left = _without(before, _open_and_running())
+    assert not left, f"left over after the test: {left}"
+
+
+def _let_go(done: Callable[[], bool]) -> None:
+    """Deliver pending events and deletions until `done`, then once more, and drop cycles of Python objects."""
+    deadline = time.monotonic() + GRACE_SECONDS
+    while True:
+        QApplication.processEvents()
+        QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
+        if done() or time.monotonic() > deadline:
+            break
+        time.sleep(0.005)
+    gc.collect()
+    QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
+
+
+def _open_and_running() -> list[object]:
+    timers = [timer for timer in _living(QTimer) if timer.isActive()]
+    return [*QApplication.topLevelWidgets(), *timers, *_running_threads()]
+
+
+def _running_threads() -> list[object]:
+    threads = [thread for thread in _living(QThread) if thread.isRunning() and thread is not QThread.currentThread()]
+    pool = QThreadPool.globalInstance()
+    return [*threading.enumerate(), *threads, *([pool] if pool.activeThreadCount() else [])]
+
+
+def _living(kind: type[QObject]) -> list[QObject]:
+    """All objects of a kind that Python knows and Qt has not deleted."""
+    return [thing for thing in gc.get_objects() if isinstance(thing, kind) and isValid(thing)]
+
+
+def _without(before: list[object], now: list[object]) -> list[object]:
+    return [thing for thing in now if not any(thing is other for other in before)]
