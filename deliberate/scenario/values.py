@@ -16,12 +16,38 @@ from typing import Annotated, Any, Literal, NoReturn
 from msgspec import UNSET, Meta, Struct, UnsetType
 from msgspec.structs import force_setattr
 
-Id = Annotated[str, Meta(pattern=r"^[A-Za-z0-9_.-]{1,64}$")]
+# A bare "$" would also match before a last line break in Python, but not in the schema's regular expressions; the
+# descriptions complete the sentence "must be ..." in error messages and stand in the schema.
+Id = Annotated[
+    str, Meta(pattern=r"^[A-Za-z0-9_.-]{1,64}$(?!\n)", description="an id of 1 to 64 of A-Z, a-z, 0-9, _, . and -")
+]
 # No control characters (Cc): they garble lists and cannot be seen.
-Line = Annotated[str, Meta(min_length=1, max_length=200, pattern=r"^[^\x00-\x1f\x7f-\x9f]*$")]
-OptionalLine = Annotated[str, Meta(max_length=200, pattern=r"^[^\x00-\x1f\x7f-\x9f]*$")]
-Notes = Annotated[str, Meta(max_length=20_000, pattern=r"^[^\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f]*$")]
-Fraction = Annotated[str, Meta(pattern=r"^[0-9]{1,9}/[0-9]{1,9}$")]
+Line = Annotated[
+    str,
+    Meta(
+        min_length=1,
+        max_length=200,
+        pattern=r"^[^\x00-\x1f\x7f-\x9f]*$(?!\n)",
+        description="one line of text without control characters",
+    ),
+]
+OptionalLine = Annotated[
+    str,
+    Meta(
+        max_length=200,
+        pattern=r"^[^\x00-\x1f\x7f-\x9f]*$(?!\n)",
+        description="one line of text without control characters",
+    ),
+]
+Notes = Annotated[
+    str,
+    Meta(
+        max_length=20_000,
+        pattern=r"^[^\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f]*$(?!\n)",
+        description="text without control characters other than tabs and line breaks",
+    ),
+]
+Fraction = Annotated[str, Meta(pattern=r"^[0-9]{1,9}/[0-9]{1,9}$(?!\n)", description='a fraction such as "2/3"')]
 UnitNumber = Annotated[float, Meta(ge=0, le=1)]
 NotNegative = Annotated[float, Meta(ge=0)]
 Share = UnitNumber | Fraction
