@@ -1,0 +1,78 @@
+"""What makes up everybody's next belief: the listening ring in numbers. Needs numpy only."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from deliberate.scenario.values import Arrow, Stage, Variant
+
+
+@dataclass(frozen=True, eq=False)
+class Voices:
+    """Shares of everybody's next belief in one stage; per person, ``firm + own + her share entries = 1``.
+
+    `own` and `firm` have shape (people,); `listener`, `source` (indices into the variant's people) and `share`
+    have one entry per arrow that counts in the stage, in the order of the variant's arrows.
+    """
+
+    own: NDArray[np.float64]
+    firm: NDArray[np.float64]
+    listener: NDArray[np.intp]
+    source: NDArray[np.intp]
+    share: NDArray[np.float64]
+
+
+def voices(variant: Variant, stage: int) -> Voices:
+    """The voices of stage number `stage` of the variant's plan, without a hearing range.
+
+    Friedkin and Johnsen 1990: firmness ``f`` brings back the starting belief, the rest is heard through the row.
+    """
+    people, setting = variant.people, variant.plan.stages[stage]
+    place = {person.id: index for index, person in enumerate(people)}
+    counted = list(_that_count(variant, setting))
+    listener = np.array([place[arrow.listener] for arrow in counted], dtype=np.intp)
+    source = np.array([place[arrow.source] for arrow in counted], dtype=np.intp)
+    weight = np.array([arrow.weight for arrow in counted], dtype=np.float64)
+    own = np.array([person.own_weight for person in people], dtype=np.float64)
+    firm = np.array([person.firmness for person in people], dtype=np.float64)
+
+    total = own + np.bincount(listener, weights=weight, minlength=len(people))
+    if setting.unheard == "own":
+        unheard = np.zeros(len(people))
+        for arrow in set(variant.arrows) - set(counted):
+            unheard[place[arrow.listener]] += arrow.weight
+        own = own + unheard
+        total = total + unheard
+    hears_only_herself = total == 0
+    total[hears_only_herself] = 1.0
+    own = np.where(hears_only_herself, 1.0, own / total)
+    open_part = 1.0 - firm
+    return Voices(open_part * own, firm, listener, source, (open_part / total)[listener] * weight)
+
+
+def _that_count(variant: Variant, stage: Stage) -> Iterable[Arrow]:
+    """The arrows between present people that the stage's setting lets through."""
+    present = {person.id for person in variant.people if person.present}
+    arrows = [arrow for arrow in variant.arrows if arrow.listener in present and arrow.source in present]
+    match stage.setting:
+        case "plenary":
+            return arrows
+        case "silence":
+            return []
+        case "panel":
+            speakers = set(stage.speakers)
+            return [arrow for arrow in arrows if arrow.source in speakers]
+        case "pairs":
+            pairs = {frozenset(pair) for pair in stage.pairs}
+            return [arrow for arrow in arrows if frozenset((arrow.listener, arrow.source)) in pairs]
+        case "tables":
+            table = {person: number for number, people in enumerate(stage.tables) for person in people}
+            return [
+                arrow
+                for arrow in arrows
+                if arrow.listener in table and table.get(arrow.source) == table[arrow.listener]
+            ]

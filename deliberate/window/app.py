@@ -1,0 +1,117 @@
+"""Starts the window: on a file, on what was open last, or the first time on a demo."""
+
+from __future__ import annotations
+
+import ctypes
+import os
+import sys
+import traceback
+from pathlib import Path
+from types import TracebackType
+
+from PySide6.QtCore import QLibraryInfo, QSettings, Qt
+from PySide6.QtWidgets import QApplication, QMessageBox
+
+from deliberate import files
+from deliberate.errors import DeliberateError
+from deliberate.files.resources import demo_scenarios
+from deliberate.scenario.values import Scenario
+from deliberate.window.main_window import MainWindow
+from deliberate.window.meeting_files import new_meeting
+from deliberate.window.session import Session
+from deliberate.window.theme import Look
+
+FIRST_DEMO = "sensor-label"
+WITHOUT_SCREEN = "“deliberate rehearse FILE” works without a screen."
+DEBIAN_LIBRARIES = (
+    "libegl1 libgl1 libxkbcommon-x11-0 libxcb-cursor0 libxcb-icccm4 libxcb-image0 libxcb-keysyms1 "
+    "libxcb-randr0 libxcb-render-util0 libxcb-shape0 libxcb-xkb1"
+)
+
+
+def run(path: str | None = None) -> int:
+    """Open the window on `path` and stay until it is closed. Returns the exit status."""
+    os.environ.setdefault("QT_NO_GUI_THREADPOOL", "1")  # raster fills are far slower from the thread pool
+    check_screen()
+    app = QApplication.instance() or QApplication(sys.argv[:1])
+    app.setApplicationName("Deliberate")
+    app.setApplicationDisplayName("")
+    app.setStyle("Fusion")
+    settings = QSettings(QSettings.Format.IniFormat, QSettings.Scope.UserScope, "deliberate", "deliberate")
+    scenario, opened = first_meeting(path, settings)
+    window = MainWindow(Session(scenario, opened), Look(settings, app), settings)
+    sys.excepthook = _Loud(window)
+    if opened is not None:
+        settings.setValue("file/last", str(opened))
+    window.show()
+    return int(app.exec())
+
+
+def first_meeting(path: str | None, settings: QSettings) -> tuple[Scenario, Path | None]:
+    """The meeting to begin with and its file. Raises DeliberateError when `path` cannot be read."""
+    if path is not None:
+        return files.read(Path(path)), Path(path)
+    last = str(settings.value("file/last", "", str))
+    if last and Path(last).exists():
+        try:
+            return files.read(Path(last)), Path(last)
+        except DeliberateError:
+            settings.remove("file/last")  # it was changed since; begin with a demo instead of failing for ever
+    demos = demo_scenarios()
+    first = next((demo for demo in demos if FIRST_DEMO in demo.name), demos[0] if demos else None)
+    return (files.read(first), None) if first else (new_meeting(), None)
+
+
+def check_screen() -> None:
+    """Qt ends the process when it finds no display; say what is missing in one sentence instead."""
+    if not sys.platform.startswith("linux") or os.environ.get("QT_QPA_PLATFORM", "xcb").split(":")[0] != "xcb":
+        return
+    if os.environ.get("WAYLAND_DISPLAY"):
+        return
+    if not os.environ.get("DISPLAY"):
+        raise DeliberateError(
+            "there is no screen to open the window on (neither DISPLAY nor WAYLAND_DISPLAY is set): start it from "
+            f"a desktop. {WITHOUT_SCREEN}"
+        )
+    plugin = Path(QLibraryInfo.path(QLibraryInfo.LibraryPath.PluginsPath)) / "platforms" / "libqxcb.so"
+    try:
+        ctypes.CDLL(str(plugin))
+        xcb = ctypes.CDLL("libxcb.so.1")
+    except OSError as error:
+        library = str(error).split(":")[0]
+        raise DeliberateError(
+            f"the window needs a system library that is missing ({library}): on Debian or Ubuntu install it with "
+            f"“sudo apt install {DEBIAN_LIBRARIES}”. {WITHOUT_SCREEN}"
+        ) from None
+    xcb.xcb_connect.restype = ctypes.c_void_p
+    connection = xcb.xcb_connect(None, None)
+    broken = xcb.xcb_connection_has_error(ctypes.c_void_p(connection))
+    xcb.xcb_disconnect(ctypes.c_void_p(connection))
+    if broken:
+        raise DeliberateError(
+            f"the screen “{os.environ['DISPLAY']}” (DISPLAY) does not answer: start it from a desktop. "
+            f"{WITHOUT_SCREEN}"
+        )
+
+
+class _Loud:
+    """A bug is shown with its text to copy, and the window stays open with the work in it."""
+
+    def __init__(self, window: MainWindow) -> None:
+        self._window = window
+        self._showing = False
+
+    def __call__(self, kind: type[BaseException], error: BaseException, trace: TracebackType | None) -> None:
+        traceback.print_exception(kind, error, trace)
+        if issubclass(kind, KeyboardInterrupt) or self._showing:
+            return
+        self._showing = True
+        box = QMessageBox(self._window)
+        box.setIcon(QMessageBox.Icon.Critical)
+        box.setWindowTitle("Something went wrong in the program")
+        box.setTextFormat(Qt.TextFormat.PlainText)
+        box.setText("This is a fault of the program, not of the meeting. Save your work under another name.")
+        box.setDetailedText("".join(traceback.format_exception(kind, error, trace)))
+        box.exec()
+        box.deleteLater()
+        self._showing = False

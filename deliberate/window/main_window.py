@@ -1,0 +1,231 @@
+"""The window: lays out the parts, connects them to the session, and keeps title and status line true."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
+from PySide6.QtGui import QCloseEvent, QShowEvent
+from PySide6.QtWidgets import (
+    QApplication,
+    QComboBox,
+    QHBoxLayout,
+    QLabel,
+    QMainWindow,
+    QSizePolicy,
+    QSplitter,
+    QVBoxLayout,
+    QWidget,
+)
+
+from deliberate.window.actions import Actions
+from deliberate.window.canvas import Canvas
+from deliberate.window.chart import ChartPanel
+from deliberate.window.findings_panel import FindingsPanel
+from deliberate.window.meeting_files import MeetingFiles, tell
+from deliberate.window.roundbar import RoundBar
+from deliberate.window.session import Session
+from deliberate.window.sidebar import Sidebar
+from deliberate.window.styles import style_sheet
+from deliberate.window.text import plain_label, strong
+from deliberate.window.theme import Look
+from deliberate.window.variant_strip import VariantStrip
+
+CAUTION = "A sketch, not a forecast of people"
+
+
+class TopBar(QWidget):
+    """Title, variants and question in one row."""
+
+    def __init__(self, session: Session, parent: QWidget) -> None:
+        super().__init__(parent)
+        self._session = session
+        self.title = plain_label(self)
+        self.title.setWordWrap(False)
+        self.title.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+        self.title.setMinimumWidth(120)
+        strong(self.title)
+        self.variants = VariantStrip(session, self)
+        self.question_label = QLabel("&Question", self)
+        self.question_label.setProperty("muted", True)
+        self.question = QComboBox(self)
+        self.question.setAccessibleName("Question shown")
+        self.question.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+        self.question.setMinimumContentsLength(18)
+        self.question.activated.connect(self._choose)
+        self.question_label.setBuddy(self.question)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(16, 5, 12, 5)
+        row.setSpacing(10)
+        row.addWidget(self.title, 3)
+        row.addWidget(self.variants, 6)
+        row.addWidget(self.question_label)
+        row.addWidget(self.question, 3)
+        session.scenario_changed.connect(self.refresh)
+        session.file_changed.connect(self.refresh)
+        self.refresh()
+
+    def refresh(self) -> None:
+        """Read title and questions again."""
+        scenario = self._session.scenario
+        self.title.setText(scenario.title + (" · edited" if self._session.modified else ""))
+        self.title.setToolTip("")
+        self.question.clear()
+        for question in scenario.questions:
+            self.question.addItem(question.text, question.id)
+        self.question.setCurrentIndex([q.id for q in scenario.questions].index(self._session.question.id))
+        several = len(scenario.questions) > 1
+        self.question.setEnabled(several)
+        self.question.setToolTip("" if several else "Add questions under “Question” in the left bar")
+
+    def _choose(self, place: int) -> None:
+        self._session.show_question(self.question.itemData(place))
+
+
+class MainWindow(QMainWindow):
+    """Draw, edit, play, see why."""
+
+    def __init__(self, session: Session, look: Look, settings: QSettings) -> None:
+        super().__init__()
+        self.session, self.look, self._settings = session, look, settings
+        session.setParent(self)
+        self.files = MeetingFiles(session, self, settings)
+        self.top_bar = TopBar(session, self)
+        self.variant_strip = self.top_bar.variants
+        self.sidebar = Sidebar(session, look, self)
+        self.canvas = Canvas(session, look, self)
+        self.chart = ChartPanel(session, look, self)
+        self.findings = FindingsPanel(session, look, self)
+        self.round_bar = RoundBar(session, look, self)
+        self._lay_out()
+        self._fill_status()
+        self.actions_of_window = Actions(self)
+
+        self.round_bar.choose_on_canvas.connect(self.canvas.begin_choosing)
+        session.scenario_changed.connect(self._refresh_title)
+        session.file_changed.connect(self._refresh_title)
+        session.rehearsal_changed.connect(self._refresh_vote)
+        session.scenario_changed.connect(self._refresh_vote)
+        session.player.moved.connect(self._refresh_vote)
+        session.said.connect(self._say)
+        session.refused.connect(self._refuse)
+        look.changed.connect(self._dress)
+        self._painted_once = False
+        self._dress()
+        self._refresh_title()
+        self._restore()
+        self.canvas.setFocus()
+
+    def _lay_out(self) -> None:
+        self.right = QSplitter(Qt.Orientation.Vertical, self)
+        self.right.addWidget(self.chart)
+        self.right.addWidget(self.findings)
+        self.right.setChildrenCollapsible(False)
+        self.right.setSizes([380, 320])
+        self.across = QSplitter(Qt.Orientation.Horizontal, self)
+        for part in (self.sidebar, self.canvas, self.right):
+            self.across.addWidget(part)
+        for place, stretch in enumerate((0, 1, 0)):
+            self.across.setStretchFactor(place, stretch)
+        self.across.setSizes([290, 620, 370])
+        self.across.setChildrenCollapsible(False)
+        for splitter in (self.right, self.across):
+            splitter.setHandleWidth(1)
+        centre = QWidget(self)
+        column = QVBoxLayout(centre)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(0)
+        column.addWidget(self.top_bar)
+        column.addWidget(_hairline(centre))
+        column.addWidget(self.across, 1)
+        column.addWidget(_hairline(centre))
+        column.addWidget(self.round_bar)
+        self.setCentralWidget(centre)
+
+    def _fill_status(self) -> None:
+        self.vote = QLabel(self)
+        self.vote.setTextFormat(Qt.TextFormat.PlainText)
+        self.statusBar().setSizeGripEnabled(False)
+        self.statusBar().addPermanentWidget(self.vote)
+        self.statusBar().addPermanentWidget(QLabel(CAUTION, self))
+
+    # What it says
+
+    def _refresh_title(self) -> None:
+        session = self.session
+        name = session.path.name if session.path else session.scenario.title
+        # Qt reads "[*]" in a title as the place of the modified mark; a name must not.
+        self.setWindowTitle(f"{name.replace('[*]', '[ * ]')}[*] – Deliberate")
+        self.setWindowModified(session.modified)
+
+    def _refresh_vote(self) -> None:
+        rehearsal, player = self.session.rehearsal, self.session.player
+        if rehearsal is None or rehearsal.ballot is None:
+            self.vote.setText("")
+            return
+        at = min(player.round, len(rehearsal.ballot) - 1)
+        tally = rehearsal.ballot[at]
+        outcome = "passes" if tally.passes else "does not pass"
+        abstain = f", {tally.abstain:g} abstaining" if tally.abstain else ""
+        text = f"Round {at}, by the sketch: {tally.in_favour:g} for, {tally.against:g} against{abstain}: {outcome}"
+        if text != self.vote.text():
+            self.vote.setText(text)
+
+    def _say(self, sentence: str) -> None:
+        self.statusBar().showMessage(sentence, 6000)
+
+    def _refuse(self, why: str) -> None:
+        QApplication.beep()
+        self.statusBar().showMessage(why, 12000)
+
+    def _dress(self) -> None:
+        self.setStyleSheet(style_sheet(self.look.theme))
+        self.session.player.still = self.look.still
+
+    def turn_to_variant(self, by: int) -> None:
+        """Show the next (1) or the previous (-1) variant, round and round."""
+        names = [variant.name for variant in self.session.scenario.variants]
+        self.session.show_variant(names[(names.index(self.session.variant.name) + by) % len(names)])
+
+    # Its life
+
+    def _restore(self) -> None:
+        self.resize(1280, 800)
+        geometry = self._settings.value("window/geometry")
+        if isinstance(geometry, QByteArray):
+            self.restoreGeometry(geometry)
+        for splitter, key in ((self.across, "window/across"), (self.right, "window/right")):
+            state = self._settings.value(key)
+            if isinstance(state, QByteArray):
+                splitter.restoreState(state)
+
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        if not self._painted_once:
+            self._painted_once = True
+            # Heavy imports and the first rehearsal wait until the first frame is up.
+            QTimer.singleShot(0, self, self._after_first_frame)
+
+    def _after_first_frame(self) -> None:
+        self.session.rehearse()
+        self.chart.load()
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        if not self.files.may_leave():
+            event.ignore()
+            return
+        self._settings.setValue("window/geometry", self.saveGeometry())
+        self._settings.setValue("window/across", self.across.saveState())
+        self._settings.setValue("window/right", self.right.saveState())
+        self.session.close()
+        event.accept()
+
+    def tell(self, title: str, what: str) -> None:
+        """A message with one button."""
+        tell(self, title, what)
+
+
+def _hairline(parent: QWidget) -> QWidget:
+    line = QWidget(parent)
+    line.setFixedHeight(1)
+    line.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
+    line.setProperty("hairline", True)
+    return line

@@ -1,0 +1,84 @@
+"""The one style sheet: what Qt's own widgets need beyond the palette to wear the theme."""
+
+from __future__ import annotations
+
+from deliberate.window.theme import Theme
+
+
+def style_sheet(theme: Theme) -> str:
+    """Quiet fields, hairlines, one accent for what has the focus or is chosen."""
+    return f"""
+    QLabel[muted="true"] {{ color: {theme.muted}; }}
+    QWidget[hairline="true"] {{ background: {theme.line}; }}
+    QMainWindow, QMenuBar, QStatusBar, QScrollArea, QScrollArea > QWidget > QWidget {{ background: {theme.panel}; }}
+    QMenuBar {{ border-bottom: 1px solid {theme.line}; padding: 1px 6px; }}
+    QMenuBar::item {{ padding: 4px 9px; border-radius: 4px; background: transparent; color: {theme.ink}; }}
+    QMenuBar::item:selected {{ background: {theme.tint}; color: {theme.accent}; }}
+    QMenu {{ background: {theme.panel}; border: 1px solid {theme.line}; padding: 4px; }}
+    QMenu::item {{ padding: 5px 28px 5px 24px; border-radius: 4px; }}
+    QMenu::item:selected {{ background: {theme.tint}; color: {theme.accent}; }}
+    QMenu::item:disabled {{ color: {theme.muted}; }}
+    QMenu::separator {{ height: 1px; background: {theme.line}; margin: 4px 8px; }}
+    QStatusBar {{ border-top: 1px solid {theme.line}; color: {theme.muted}; }}
+    QStatusBar::item {{ border: none; }}
+    QSplitter::handle {{ background: {theme.line}; }}
+    QSplitter::handle:hover {{ background: {theme.accent}; }}
+    QPushButton, QToolButton {{
+        background: {theme.raised}; border: 1px solid {theme.line}; border-radius: 5px; padding: 4px 10px;
+        color: {theme.ink}; min-height: 16px;
+    }}
+    QPushButton:hover, QToolButton:hover {{ border-color: {theme.accent}; }}
+    QPushButton:focus, QToolButton:focus {{ border: 1px solid {theme.accent}; }}
+    QPushButton:pressed, QToolButton:pressed, QToolButton:checked {{
+        background: {theme.tint}; color: {theme.accent};
+    }}
+    QPushButton:disabled, QToolButton:disabled {{ color: {theme.muted}; }}
+    QPushButton[quiet="true"], QToolButton[quiet="true"] {{
+        background: transparent; border: 1px solid transparent; color: {theme.accent}; text-align: left;
+        font-weight: 600; padding: 4px 4px;
+    }}
+    QPushButton[quiet="true"]:hover, QToolButton[quiet="true"]:hover {{ background: {theme.tint}; }}
+    QPushButton[quiet="true"]:focus, QToolButton[quiet="true"]:focus {{ border-color: {theme.accent}; }}
+    QLineEdit, QPlainTextEdit, QSpinBox, QDoubleSpinBox, QComboBox {{
+        background: {theme.panel}; border: 1px solid {theme.line}; border-radius: 5px; padding: 3px 6px;
+        color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};
+        min-height: 18px;
+    }}
+    QLineEdit:focus, QPlainTextEdit:focus, QSpinBox:focus, QDoubleSpinBox:focus, QComboBox:focus {{
+        border-color: {theme.accent};
+    }}
+    QLineEdit:disabled, QSpinBox:disabled, QDoubleSpinBox:disabled, QComboBox:disabled {{ color: {theme.muted}; }}
+    QTableView, QListView {{
+        background: {theme.panel}; border: none; gridline-color: {theme.line};
+        selection-background-color: {theme.tint}; selection-color: {theme.ink};
+    }}
+    QHeaderView {{ background: {theme.panel}; }}
+    QHeaderView::section {{
+        background: {theme.panel}; color: {theme.muted}; border: none; border-bottom: 1px solid {theme.line};
+        padding: 4px 4px;
+    }}
+    QTableCornerButton::section {{ background: {theme.panel}; border: none; }}
+    QTabBar {{ background: transparent; }}
+    QTabBar::tab {{
+        background: transparent; color: {theme.muted}; border: 1px solid transparent; border-radius: 6px;
+        padding: 5px 12px; margin: 2px 1px; max-width: 240px;
+    }}
+    QTabBar::tab:selected {{
+        background: {theme.raised}; color: {theme.ink}; border-color: {theme.line}; font-weight: 600;
+    }}
+    QTabBar::tab:hover {{ color: {theme.accent}; }}
+    QTabBar:focus::tab:selected {{ border-color: {theme.accent}; }}
+    QTabBar QToolButton {{ padding: 2px; }}
+    QToolTip {{
+        background: {theme.raised}; color: {theme.ink}; border: 1px solid {theme.line}; padding: 4px;
+    }}
+    QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
+    QScrollBar:horizontal {{ background: transparent; height: 10px; margin: 0; }}
+    QScrollBar::handle {{
+        background: {theme.line}; border-radius: 4px; min-height: 24px; min-width: 24px; margin: 1px;
+    }}
+    QScrollBar::handle:hover {{ background: {theme.mark}; }}
+    QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page {{
+        background: transparent; border: none; width: 0; height: 0;
+    }}
+    """
