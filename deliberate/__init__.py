@@ -1,1 +1,37 @@
-"""Deliberate: rehearse a contested meeting before it happens."""
+"""Deliberate: rehearse a contested meeting before it happens.
+
+From Python: `read` a scenario file, `rehearse` one of its variants, `write` it back; `to_networkx` and
+`from_networkx` exchange a variant with other programs. What a person gave wrongly raises `DeliberateError`.
+"""
+
+from __future__ import annotations
+
+from importlib import import_module
+from typing import TYPE_CHECKING, Any
+
+from deliberate.errors import DeliberateError
+
+if TYPE_CHECKING:
+    from deliberate.files import read, write
+    from deliberate.rehearsal.interchange import from_networkx, to_networkx
+    from deliberate.rehearsal.rehearse import rehearse
+
+__all__ = ["DeliberateError", "from_networkx", "read", "rehearse", "to_networkx", "write"]
+
+
+def __getattr__(name: str) -> Any:
+    """Load what is asked for when it is asked for: the command line and the window start without the rest."""
+    match name:
+        case "read" | "write":
+            module = "deliberate.files"
+        case "rehearse":
+            module = "deliberate.rehearsal.rehearse"
+        case "to_networkx" | "from_networkx":
+            module = "deliberate.rehearsal.interchange"
+        case _:
+            raise AttributeError(f"module 'deliberate' has no attribute {name!r}")
+    return getattr(import_module(module), name)
+
+
+def __dir__() -> list[str]:
+    return sorted({*globals(), *__all__})

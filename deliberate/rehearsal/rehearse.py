@@ -163,7 +163,7 @@ def _closed_group(group: Group, sketch: Assembly) -> ClosedGroup:
 
 
 def _effective_voices(influence: Floats) -> float:
-    """1 over the sum of squared shares: how many equal voices would be as concentrated (Laakso and Taagepera 1979)."""
+    """1 over the sum of squared shares (Laakso and Taagepera 1979): so many equal voices are as concentrated."""
     return 1 / float(influence @ influence) if len(influence) else 0.0
 
 

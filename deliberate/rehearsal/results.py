@@ -114,7 +114,12 @@ class KeepOwnView:
 
 @dataclass(frozen=True)
 class JointRound:
-    """Put a stage of `rounds` before the others in which everybody hears everybody equally: a go-round."""
+    """Put a plenary stage of `rounds` before the others in which everybody present hears everybody: a go-round.
+
+    A stage lets arrows count but cannot draw them, so those who do not hear each other yet get arrows. Where the
+    sketch falls into groups without an arrow between them, later plenaries become tables of these groups, and the
+    new arrows count in the joint stage only; where it hangs together they are small and stay.
+    """
 
     rounds: int
 
