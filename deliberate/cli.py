@@ -1,0 +1,233 @@
+"""The command line: the window, `rehearse` and `check`.
+
+Each command imports what it needs when it runs, so that none pays for another and only the window loads Qt.
+Exit status 0 when done, 2 for bad usage or bad input, 1 for anything else.
+"""
+
+from __future__ import annotations
+
+import argparse
+import math
+import os
+import sys
+import traceback
+from collections.abc import Callable, Sequence
+
+from deliberate.errors import DeliberateError
+
+DONE, OTHERWISE, BAD_INPUT = 0, 1, 2
+MOST_ROUNDS = 1_000_000
+
+WINDOW_HELP = """\
+usage: deliberate [FILE]
+       deliberate rehearse FILE [options]
+       deliberate check FILE
+
+Rehearse a contested meeting: who listens to whom, where talking leads, and why
+it stalls.
+
+  deliberate [FILE]         open the window on FILE, a .deliberate.json scenario;
+                            without FILE on what was open last
+  deliberate rehearse FILE  print the rehearsal (`deliberate rehearse -h` for its
+                            options); needs no display
+  deliberate check FILE     say `ok`, or where the file is wrong and how
+
+  -h, --help                show this and exit
+  --version                 show the version and exit
+
+A FILE called `rehearse` or `check` opens with `deliberate -- FILE`.
+"""
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run the command that `argv` (by default the process's arguments) asks for; return the exit status."""
+    try:
+        return _run(list(sys.argv[1:] if argv is None else argv))
+    except SystemExit as leaving:  # after argparse's own message
+        return leaving.code if isinstance(leaving.code, int) else DONE
+    except KeyboardInterrupt:
+        return OTHERWISE
+    except Exception:
+        traceback.print_exc()
+        _say("deliberate: something went wrong in the program itself; the lines above say where.")
+        return OTHERWISE
+
+
+def _run(arguments: Sequence[str]) -> int:
+    match arguments:
+        case ["rehearse", *rest]:
+            return _on_file(_rehearse, _rehearse_parser().parse_args(rest))
+        case ["check", *rest]:
+            return _on_file(_check, _check_parser().parse_args(rest))
+        case _:
+            options = _window_parser().parse_args(arguments)
+            if options.version:
+                _print(f"deliberate {_version()}\n")
+                return DONE
+            return _window(options.file)
+
+
+def _on_file(command: Callable[[argparse.Namespace], None], options: argparse.Namespace) -> int:
+    """Run `command`; what is wrong with the file or with names in it becomes one line."""
+    try:
+        command(options)
+    except DeliberateError as error:
+        _say(f"{options.file}: {error}")
+        return BAD_INPUT
+    return DONE
+
+
+def _rehearse(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+    from deliberate.rehearsal.rehearse import rehearse
+
+    scenario = read(options.file)
+    rehearsal = rehearse(scenario, options.variant, options.question, options.rounds, options.tolerance)
+    if options.json:
+        from msgspec import json
+
+        from deliberate.rehearsal.report import to_json
+
+        _print(json.encode(to_json(rehearsal)) + b"\n")
+    else:
+        from deliberate.rehearsal.findings import findings
+        from deliberate.rehearsal.report import summary
+
+        _print(summary(scenario, rehearsal, findings(scenario, rehearsal)))
+
+
+def _check(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+
+    read(options.file)
+    _print("ok\n")
+
+
+def _window(path: str | None) -> int:
+    try:
+        from deliberate.window.app import check_screen, run
+
+        check_screen()
+    except (ImportError, DeliberateError) as error:
+        if isinstance(error, ImportError) and (error.name or "").startswith("deliberate"):
+            raise
+        _say(f"deliberate: {_no_window(error)}")
+        return OTHERWISE
+    try:
+        return run(path)
+    except DeliberateError as error:
+        _say(f"{path or 'deliberate'}: {error}")
+        return BAD_INPUT
+
+
+def _no_window(error: Exception) -> str:
+    if isinstance(error, DeliberateError):
+        return str(error)
+    return (
+        f"the window cannot open, because a part of Qt is missing ({error}): install PySide6-Essentials, and on"
+        " Debian or Ubuntu libegl1 and libgl1. `deliberate rehearse FILE` works without."
+    )
+
+
+class _Parser(argparse.ArgumentParser):
+    """Options in full only, and help that goes the way of all output."""
+
+    def __init__(self, prog: str, description: str, whole_help: str = "") -> None:
+        super().__init__(prog, description=description, allow_abbrev=False)
+        self._whole_help = whole_help
+
+    def format_help(self) -> str:
+        return self._whole_help or super().format_help()
+
+    def print_help(self, file: object = None) -> None:
+        _print(self.format_help())
+
+
+def _window_parser() -> argparse.ArgumentParser:
+    parser = _Parser("deliberate", "", WINDOW_HELP)
+    parser.add_argument("file", nargs="?", metavar="FILE")
+    parser.add_argument("--version", action="store_true")
+    return parser
+
+
+def _rehearse_parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        "deliberate rehearse",
+        description="Play the meeting and say where the talking leads. A sketch, not a forecast.",
+    )
+    parser.add_argument("file", metavar="FILE", help="a .deliberate.json scenario")
+    parser.add_argument("--variant", metavar="NAME", help="the set-up to rehearse (default: the first)")
+    parser.add_argument("--question", metavar="ID", help="the question that is talked about (default: the first)")
+    parser.add_argument(
+        "--rounds", metavar="N", type=_rounds, help="rounds to play (default: as many as the plan has)"
+    )
+    parser.add_argument(
+        "--tolerance",
+        metavar="X",
+        type=_tolerance,
+        help="how near is agreed, on the scale (default: 1 %% of its width)",
+    )
+    parser.add_argument("--json", action="store_true", help="print the rehearsal as JSON")
+    return parser
+
+
+def _check_parser() -> argparse.ArgumentParser:
+    parser = _Parser("deliberate check", "Say `ok`, or where the file is wrong and how.")
+    parser.add_argument("file", metavar="FILE", help="a .deliberate.json scenario")
+    return parser
+
+
+def _rounds(text: str) -> int:
+    if not (text.isascii() and text.isdigit() and len(text) <= 9 and int(text) <= MOST_ROUNDS):
+        raise argparse.ArgumentTypeError(f"must be a whole number from 0 to {MOST_ROUNDS:,}, is {text!r}")
+    return int(text)
+
+
+def _tolerance(text: str) -> float:
+    try:
+        value = float(text)
+    except ValueError:
+        value = math.nan
+    if not 0 < value < math.inf:
+        raise argparse.ArgumentTypeError(f"must be a number above 0, is {text!r}")
+    return value
+
+
+def _version() -> str:
+    from importlib import metadata
+
+    try:
+        return metadata.version("deliberate")
+    except metadata.PackageNotFoundError:
+        return "(not installed)"
+
+
+def _print(text: str | bytes) -> None:
+    """Write to standard output now. Bytes are UTF-8 whatever the terminal speaks; text is spelt out where the
+    terminal lacks a letter. A reader who has left ends the program quietly."""
+    out = sys.stdout
+    if out is None:
+        return
+    try:
+        if isinstance(text, bytes):
+            out.flush()
+            out.buffer.write(text)
+        else:
+            out.reconfigure(errors="backslashreplace")
+            out.write(text)
+        out.flush()
+    except OSError as error:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), out.fileno())  # or the interpreter's last flush fails as well
+        if not isinstance(error, BrokenPipeError):
+            _say(f"deliberate: the output cannot be written: {error.strerror}")
+        raise SystemExit(OTHERWISE) from None
+
+
+def _say(message: str) -> None:
+    """One line on standard error, whatever a file's name or the message holds."""
+    if sys.stderr is not None:
+        print("".join(c if c.isprintable() else repr(c)[1:-1] for c in message), file=sys.stderr)
+
+
+if __name__ == "__main__":
+    sys.exit(main())
