@@ -76,7 +76,7 @@ def test_the_wheel_holds_what_is_shipped_and_nothing_else(wheel: Path) -> None:
 
 
 def test_a_demo_is_rehearsed_from_another_folder(installed: Path, tmp_path: Path) -> None:
-    where = "import deliberate.files as f; print(*f.demos(), sep='\\n')"
+    where = "import deliberate.files as f; print(*f.demo_scenarios(), sep='\\n')"
     demos = [Path(line) for line in run(installed, "-c", where, cwd=tmp_path).splitlines()]
     assert {demo.name for demo in demos} == {path.name for path in (CHECKOUT / "scenarios").glob("*.deliberate.json")}
     for demo in demos[:2]:
@@ -95,7 +95,7 @@ def test_the_schema_is_found_from_another_folder(installed: Path, tmp_path: Path
 def test_a_wheel_does_not_read_from_the_checkout(wheel: Path, tmp_path: Path) -> None:
     """Run in isolation from the checkout, the package found is the unpacked wheel with its own data."""
     zipfile.ZipFile(wheel).extractall(tmp_path)
-    where = "import deliberate, deliberate.files as f; print(deliberate.__file__, *f.demos(), sep='\\n')"
+    where = "import deliberate, deliberate.files as f; print(deliberate.__file__, *f.demo_scenarios(), sep='\\n')"
     paths = run(sys.executable, "-c", where, cwd=tmp_path).splitlines()
     assert all(Path(path).is_relative_to(tmp_path) for path in paths)
     assert len(paths) > 10

@@ -189,8 +189,10 @@ def _fit_number(value: float, kind: inspect.FloatType | inspect.IntType, where: 
 
 
 def _check_text(value: str, kind: inspect.Type, wanted: str, where: str) -> None:
-    if any("\ud800" <= c <= "\udfff" for c in value):
-        refuse(f"must be text that UTF-8 can hold, is {shown(value)} with half a surrogate pair", where)
+    try:
+        value.encode()
+    except UnicodeEncodeError:
+        refuse(f"must be text without half a surrogate pair, is {shown(value)}", where)
     if not isinstance(kind, inspect.StrType):
         return
     if kind.min_length is not None and len(value) < kind.min_length:

@@ -47,7 +47,9 @@ Notes = Annotated[
         description="text without control characters other than tabs and line breaks",
     ),
 ]
-Fraction = Annotated[str, Meta(pattern=r"^[0-9]{1,9}/[0-9]{1,9}$(?!\n)", description='a fraction such as "2/3"')]
+Fraction = Annotated[
+    str, Meta(pattern=r"^[0-9]{1,9}/(?!0+$)[0-9]{1,9}$(?!\n)", description='a fraction such as "2/3"')
+]
 UnitNumber = Annotated[float, Meta(ge=0, le=1)]
 NotNegative = Annotated[float, Meta(ge=0)]
 Share = UnitNumber | Fraction
@@ -61,6 +63,7 @@ Of = Literal["cast", "present", "eligible"]
 Afterwards = Literal["last", "repeat"]
 
 PLAN_ROUNDS = 12
+LARGEST_WHOLE = 2**53 - 1  # beyond it, programs that read JSON disagree on whole numbers (RFC 7493)
 
 
 class FrozenDict(dict[str, Any]):
@@ -214,7 +217,7 @@ class Poll(Value):
     """A show of hands or straw poll taken during the meeting."""
 
     question: Id
-    after_round: Annotated[int, Meta(ge=0)]
+    after_round: Annotated[int, Meta(ge=0, le=LARGEST_WHOLE)]
     beliefs: Mapping[str, float] = FrozenDict()
 
     def __post_init__(self) -> None:
