@@ -20,11 +20,9 @@ _SMALL_NUMBERS = ("no", "one", "two", "three", "four", "five", "six", "seven", "
 
 
 def decimals(question: Question) -> int:
-    """How many decimals show a thousandth of the question's scale, at most 9."""
+    """How many decimals show about a thousandth of the question's scale, at most 9."""
     width = question.width
-    if not 0 < width < math.inf:
-        return 0
-    return min(max(0, math.ceil(math.log10(_STEPS) - math.log10(width) - 1e-9)), _MOST_DECIMALS)
+    return min(max(0, round(math.log10(_STEPS) - math.log10(width))), _MOST_DECIMALS) if width > 0 else 0
 
 
 def number(value: float, question: Question, beside: float | None = None) -> str:
@@ -33,6 +31,8 @@ def number(value: float, question: Question, beside: float | None = None) -> str
     `beside` is a figure this one must be told apart from (a pass mark, say): digits are added until the two
     read differently, unless they are equal.
     """
+    if question.width < 1e-6:
+        return f"{value:.6g}"
     places = decimals(question)
     text = _fixed(value, places)
     if beside is not None and beside != value:
