@@ -1,0 +1,110 @@
+"""Playing the rounds: b(t+1) = F b(0) + (I - F) T(t) b(t)."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from deliberate.dynamics.network import Floats, Mask, Network
+from deliberate.dynamics.process import Process
+from deliberate.dynamics.shares import Shares, shares
+
+# Beliefs that are exactly the hearing range apart hear each other; rounding must not part them.
+RANGE_SLACK = 1e-12
+
+
+def play(
+    process: Process,
+    starts: ArrayLike,
+    rounds: int,
+    hearing_range: float | None = None,
+    scale_width: float = 1.0,
+) -> Floats:
+    """Beliefs after round 0, 1, ..., `rounds`: (rounds + 1, n), or (rounds + 1, n, q) for starts (n, q).
+
+    starts: (n,) beliefs of one question, or (n, q) of q questions side by side.
+    hearing_range: in a round, i hears only those j with |b_j - b_i| <= hearing_range (Hegselmann and Krause
+        2002); what is not heard is dealt with as the block's `unheard` says. `scale_width` is the length of the
+        scale, against which rounding is judged.
+    """
+    start = np.asarray(starts, dtype=np.float64)
+    if hearing_range is not None and start.ndim == 2:
+        columns = [play(process, column, rounds, hearing_range, scale_width) for column in start.T]
+        return np.stack(columns, axis=-1) if columns else np.empty((rounds + 1, *start.shape))
+    played = np.empty((rounds + 1, *start.shape))
+    played[0] = start
+    move = mover(process.firmness, start)
+    if hearing_range is None:
+        steps = scheduled(process, rounds)
+        for at, matrix in enumerate(steps):
+            played[at + 1] = move(matrix, played[at])
+        return played
+    hearing = Hearing(process, hearing_range, scale_width)
+    for at in range(rounds):
+        played[at + 1] = move(hearing.shares_at(at, played[at]), played[at])
+    return played
+
+
+def mover(firmness: Floats, start: Floats) -> Callable[[Shares, Floats], Floats]:
+    """The function (shares, beliefs) -> beliefs one round on, for people who started at `start`."""
+    if not firmness.any():
+        return Shares.hear
+    shape = firmness.shape + (1,) * (start.ndim - 1)
+    brought_back, open_part = firmness.reshape(shape) * start, (1.0 - firmness).reshape(shape)
+    return lambda matrix, beliefs: brought_back + open_part * matrix.hear(beliefs)
+
+
+def block_at(process: Process, at: int) -> int:
+    """The index of the block that round at + 1 belongs to."""
+    if process.repeat:
+        at %= sum(block.rounds for block in process.blocks)
+    for index, block in enumerate(process.blocks):
+        at -= block.rounds
+        if at < 0:
+            return index
+    return len(process.blocks) - 1
+
+
+def scheduled(process: Process, rounds: int) -> Iterator[Shares]:
+    """The share matrices of the first `rounds` rounds, without a hearing range."""
+    left = rounds
+    while left > 0:
+        for leg in process.legs:
+            for _ in range(min(leg.rounds, left)):
+                yield leg.shares
+            left -= leg.rounds
+            if left <= 0:
+                return
+        if not process.repeat:
+            for _ in range(left):
+                yield process.legs[-1].shares
+            return
+
+
+class Hearing:
+    """Who is near enough to be heard, round by round; matrices are built again only when that changes."""
+
+    def __init__(self, process: Process, hearing_range: float, scale_width: float) -> None:
+        self._process = process
+        self._reach = hearing_range + RANGE_SLACK * scale_width
+        self._built: dict[int, tuple[Mask, Shares]] = {}
+
+    def near(self, beliefs: Floats) -> Mask:
+        """(m,) True for the arrows whose two beliefs are within the hearing range."""
+        network: Network = self._process.network
+        return np.abs(beliefs[network.source] - beliefs[network.listener]) <= self._reach
+
+    def shares_at(self, at: int, beliefs: Floats) -> Shares:
+        """The shares of round at + 1, when `beliefs` are held before it."""
+        index = block_at(self._process, at)
+        block = self._process.blocks[index]
+        heard = self.near(beliefs)
+        if block.heard is not None:
+            heard &= block.heard
+        if index in self._built and np.array_equal(self._built[index][0], heard):
+            return self._built[index][1]
+        matrix = shares(self._process.network, heard, block.unheard)
+        self._built[index] = (heard, matrix)
+        return matrix
