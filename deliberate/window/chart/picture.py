@@ -1,0 +1,197 @@
+"""Paints everything of the chart that does not move: band, curves, marks, endings. Kept in pixmaps by its item."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPen, QPolygonF
+
+from deliberate.rehearsal.results import Rehearsal
+from deliberate.scenario.values import Question
+from deliberate.window.chart.endings import Endings
+from deliberate.window.text import elided
+from deliberate.window.theme import Theme, mix, shade_indices, shades
+
+MOST_POINTS = 800  # rounds drawn per curve; longer plans are thinned evenly
+COLOURED_ALONE = 40  # up to here curves wear their colours when nobody is selected
+
+
+@dataclass(frozen=True, eq=False)
+class Content:
+    """What is on the chart. Compared by identity."""
+
+    rehearsal: Rehearsal
+    question: Question
+    names: tuple[str, ...]
+    present: NDArray[np.bool_]
+    stage_ends: tuple[int, ...]
+    endings: Endings
+    selected: frozenset[int]
+    lit: frozenset[int]
+
+
+@dataclass(frozen=True)
+class Frame:
+    """Where rounds and beliefs lie in pixels."""
+
+    rect: QRectF
+    left: float
+    right: float
+    low: float
+    high: float
+
+    def x(self, rounds: NDArray[np.float64] | float) -> NDArray[np.float64] | float:
+        """Pixels from rounds."""
+        return self.rect.left() + (rounds - self.left) / (self.right - self.left) * self.rect.width()
+
+    def y(self, beliefs: NDArray[np.float64] | float) -> NDArray[np.float64] | float:
+        """Pixels from beliefs."""
+        return self.rect.bottom() - (beliefs - self.low) / (self.high - self.low) * self.rect.height()
+
+
+def paint_chart(painter: QPainter, frame: Frame, content: Content, theme: Theme, font: QFont) -> None:
+    """Paint band, stages, pass mark, curves and endings into `frame.rect`."""
+    painter.setClipRect(frame.rect)
+    painter.setFont(font)
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+    rounds = content.rehearsal.rounds
+    at = np.arange(len(rounds))
+    if len(at) > MOST_POINTS:
+        at = np.unique(np.linspace(0, len(at) - 1, MOST_POINTS).astype(int))
+    _paint_band(painter, frame, content, theme, at)
+    _paint_stages(painter, frame, content, theme)
+    _paint_marks(painter, frame, content, theme)
+    _paint_curves(painter, frame, content, theme, at)
+    _paint_endings(painter, frame, content, theme)
+
+
+def _paint_band(painter: QPainter, frame: Frame, content: Content, theme: Theme, at: NDArray[np.intp]) -> None:
+    seen = content.rehearsal.rounds[at][:, content.present]
+    if not seen.shape[1]:
+        return
+    x = np.asarray(frame.x(at.astype(float)))
+    top, bottom = np.asarray(frame.y(seen.max(axis=1))), np.asarray(frame.y(seen.min(axis=1)))
+    outline = [QPointF(*point) for point in zip(x.tolist(), top.tolist(), strict=True)]
+    outline += [QPointF(*point) for point in zip(x[::-1].tolist(), bottom[::-1].tolist(), strict=True)]
+    painter.setPen(Qt.PenStyle.NoPen)
+    painter.setBrush(mix(theme.panel, theme.mark, 0.16))
+    painter.drawPolygon(QPolygonF(outline))
+
+
+def _paint_stages(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
+    painter.setPen(QPen(QColor(theme.line), 1))
+    for end in content.stage_ends[:-1]:
+        x = round(float(frame.x(float(end)))) + 0.5
+        painter.drawLine(QLineF(x, frame.rect.top(), x, frame.rect.bottom()))
+
+
+def _paint_marks(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
+    question, metrics = content.question, QFontMetricsF(painter.font())
+    for value, words in ((question.pass_mark, "pass mark"), (question.objection_mark, "objection below")):
+        if value is None:
+            continue
+        y = round(float(frame.y(value))) + 0.5
+        painter.setPen(QPen(QColor(theme.mark), 1, Qt.PenStyle.DotLine))
+        painter.drawLine(QLineF(frame.rect.left(), y, frame.rect.right(), y))
+        painter.setPen(QColor(theme.muted))
+        painter.drawText(QPointF(frame.rect.right() - metrics.horizontalAdvance(words) - 4, y - 3), words)
+    if question.pass_mark is not None and question.undecided:
+        top, bottom = (float(frame.y(question.pass_mark + way * question.undecided)) for way in (1, -1))
+        painter.fillRect(QRectF(frame.rect.left(), top, frame.rect.width(), bottom - top), QColor(theme.raised))
+
+
+def _paint_curves(painter: QPainter, frame: Frame, content: Content, theme: Theme, at: NDArray[np.intp]) -> None:
+    beliefs = content.rehearsal.rounds[at]
+    x = np.asarray(frame.x(at.astype(float)))
+    y = np.asarray(frame.y(beliefs))
+    people = range(beliefs.shape[1])
+    chosen = content.selected | content.lit
+    palette = shades(theme)
+    starts = shade_indices(content.rehearsal.rounds[0], content.question)
+    everybody = not chosen and len(people) <= COLOURED_ALONE
+    quiet = [one for one in people if one not in chosen]
+    for one in quiet:
+        shade = palette[starts[one]].name() if everybody else theme.mark
+        color = mix(theme.panel, shade, 0.8 if everybody else 0.5)
+        painter.setPen(QPen(color, 1.4 if everybody else 1.0, _dash(content, one)))
+        _polyline(painter, x, y[:, one])
+    for one in sorted(chosen):
+        # A belief near the middle is pale; a rim of ink keeps its curve visible.
+        painter.setPen(QPen(QColor(theme.ink), 3.2, _dash(content, one)))
+        _polyline(painter, x, y[:, one])
+        painter.setPen(QPen(palette[starts[one]], 2.0, _dash(content, one)))
+        _polyline(painter, x, y[:, one])
+    if 0 < len(content.selected) <= 3:
+        _paint_names(painter, frame, content, theme)
+
+
+def _dash(content: Content, person: int) -> Qt.PenStyle:
+    return Qt.PenStyle.SolidLine if content.present[person] else Qt.PenStyle.DashDotLine
+
+
+def _polyline(painter: QPainter, x: NDArray[np.float64], y: NDArray[np.float64]) -> None:
+    painter.drawPolyline(QPolygonF([QPointF(*point) for point in zip(x.tolist(), y.tolist(), strict=True)]))
+
+
+def _paint_names(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
+    metrics = QFontMetricsF(painter.font())
+    taken: list[QRectF] = []
+    for one in sorted(content.selected):
+        name = elided(content.names[one], painter.font(), frame.rect.width() * 0.45)
+        y = float(frame.y(float(content.rehearsal.rounds[0][one])))
+        box = QRectF(
+            frame.rect.left() + 4, y - metrics.height() - 2, metrics.horizontalAdvance(name), metrics.height()
+        )
+        box = _kept_apart(box, taken, frame.rect)
+        painter.setPen(QColor(theme.ink))
+        painter.drawText(box.bottomLeft() - QPointF(0, metrics.descent()), name)
+        taken.append(box)
+
+
+def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
+    font = QFont(painter.font())
+    font.setWeight(QFont.Weight.DemiBold)
+    painter.setFont(font)
+    metrics = QFontMetricsF(font)
+    accent = QColor(theme.accent)
+    taken: list[QRectF] = []
+    for value, _ in content.endings.lines:
+        y = round(float(frame.y(value))) + 0.5
+        painter.setPen(QPen(accent, 1.5, Qt.PenStyle.DashLine))
+        painter.drawLine(QLineF(frame.rect.left(), y, frame.rect.right(), y))
+    if content.endings.warning:
+        words = elided(content.endings.warning, font, frame.rect.width() - 12)
+        box = QRectF(frame.rect.right() - metrics.horizontalAdvance(words) - 6, frame.rect.top() + 3, 0, 0)
+        box.setSize(metrics.boundingRect(words).size())
+        _paint_label(painter, box, words, theme)
+        taken.append(box)
+    for value, words in content.endings.lines:
+        width = metrics.horizontalAdvance(words)
+        y = float(frame.y(value))
+        box = QRectF(frame.rect.right() - width - 6, y - metrics.height() - 2, width, metrics.height())
+        box = _kept_apart(box, taken, frame.rect)
+        _paint_label(painter, box, words, theme)
+        taken.append(box)
+
+
+def _paint_label(painter: QPainter, box: QRectF, words: str, theme: Theme) -> None:
+    painter.setPen(Qt.PenStyle.NoPen)
+    painter.setBrush(mix(theme.panel, theme.tint, 0.6))
+    painter.drawRoundedRect(box.adjusted(-3, 0, 3, 0), 3, 3)
+    painter.setPen(QColor(theme.accent))
+    painter.drawText(box, Qt.AlignmentFlag.AlignCenter | Qt.TextFlag.TextDontClip, words)
+
+
+def _kept_apart(box: QRectF, taken: list[QRectF], inside: QRectF) -> QRectF:
+    """`box` moved up or down by its height until it is free of those `taken`, and inside."""
+    if box.top() < inside.top():
+        box = box.translated(0, box.height() + 5)
+    for step in (0, 1, -1, 2, -2, 3, -3, 4, -4):
+        moved = box.translated(0, step * (box.height() + 3))
+        free = all(not moved.intersects(other) for other in taken)
+        if free and moved.top() >= inside.top() and moved.bottom() <= inside.bottom():
+            return moved
+    return box
