@@ -6,6 +6,7 @@ This is the only module of the rehearsal that imports networkx; nothing imports 
 from __future__ import annotations
 
 import math
+import unicodedata
 from collections.abc import Hashable, Mapping
 from typing import Any
 
@@ -13,7 +14,7 @@ import networkx as nx
 from msgspec.structs import fields
 
 from deliberate.errors import DeliberateError
-from deliberate.rehearsal.rehearse import pick_variant
+from deliberate.rehearsal.choosing import pick_variant
 from deliberate.scenario import edits
 from deliberate.scenario.checks import validate
 from deliberate.scenario.ids import fresh_id
@@ -21,6 +22,7 @@ from deliberate.scenario.shape import conform, plain
 from deliberate.scenario.values import Person, Question, Scenario
 
 UNTITLED = "Untitled meeting"
+LONGEST_NAME = 200
 _PERSON_KEYS = tuple(field.name for field in fields(Person) if field.name != "id")
 _WHOLE_KEYS = ("title", "notes", "questions", "ballot", "polls")
 
@@ -139,11 +141,18 @@ def _person(
     node: Hashable, id: str, attributes: Mapping[str, Any], own: float | None, questions: list[Any]
 ) -> dict[str, Any]:
     person: dict[str, Any] = {"own_weight": 0.0}
-    if str(node) != id:
-        person["name"] = str(node)
+    name = _name(node)
+    if name not in ("", id):
+        person["name"] = name
     if "belief" in attributes and len(questions) == 1:
         person["beliefs"] = {questions[0]["id"]: attributes["belief"]}
     person |= {key: attributes[key] for key in _PERSON_KEYS if key in attributes}
     if own is not None:
         person["own_weight"] = own
     return {"id": id} | person
+
+
+def _name(node: Hashable) -> str:
+    """A node's text as one line without control characters, as long as a name may be."""
+    words = " ".join(str(node).split())
+    return "".join(letter for letter in words if unicodedata.category(letter) != "Cc")[:LONGEST_NAME]

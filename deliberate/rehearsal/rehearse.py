@@ -4,25 +4,24 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TypeVar
 
 import numpy as np
 
-from deliberate.dynamics.longrun import Group, LongRun, long_run, rounds_to_agree
+from deliberate.dynamics.agreeing import rounds_to_agree
+from deliberate.dynamics.longrun import Group, LongRun, long_run
 from deliberate.dynamics.rounds import play
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal import agreement
 from deliberate.rehearsal.assemble import Assembly, assemble
 from deliberate.rehearsal.ballots import Electorate
+from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.results import ClosedGroup, Cycle, Floats, Rehearsal, Tally
-from deliberate.rehearsal.words import count, in_words, listing
+from deliberate.rehearsal.words import count, in_words
 from deliberate.scenario.values import Question, Scenario, Variant
 
 TOLERANCE = 0.01  # of the scale's width
 COMMON_VIEW = 1e-9  # of the scale's width: a limit with no larger spread is one view
 MOST_NUMBERS = 50_000_000  # beliefs kept, rounds times people
-
-Named = TypeVar("Named", Variant, Question)
 
 
 def rehearse(
@@ -76,27 +75,6 @@ def rehearse(
         unknown_starts=sketch.unknown_starts,
         notes=(*fate.notes, *_notes(setup, asked, sketch)),
     )
-
-
-def pick_variant(scenario: Scenario, name: str | None) -> Variant:
-    """The variant called `name`, or the first one."""
-    known = {variant.name: variant for variant in scenario.variants}
-    return _pick(known, name, "variant", "variants")
-
-
-def pick_question(scenario: Scenario, id: str | None) -> Question:
-    """The question with that id, or the first one."""
-    return _pick({question.id: question for question in scenario.questions}, id, "question", "questions")
-
-
-def _pick(known: dict[str, Named], wanted: str | None, one: str, several: str) -> Named:
-    if wanted is None:
-        return next(iter(known.values()))
-    if wanted not in known:
-        there = listing([f'"{name}"' for name in known])
-        verb = f"the only {one} is" if len(known) == 1 else f"the {several} are"
-        raise DeliberateError(f'there is no "{wanted}"; {verb} {there}', one)
-    return known[wanted]
 
 
 def _checked_rounds(variant: Variant, rounds: int | None) -> int:

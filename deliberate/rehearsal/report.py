@@ -13,7 +13,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.ballots import Electorate
-from deliberate.rehearsal.rehearse import COMMON_VIEW, pick_question, pick_variant
+from deliberate.rehearsal.choosing import pick_question, pick_variant
+from deliberate.rehearsal.rehearse import COMMON_VIEW
 from deliberate.rehearsal.results import Agreement, ClosedGroup, Cycle, Finding, Floats, Rehearsal, Tally
 from deliberate.rehearsal.suggestions import words
 from deliberate.rehearsal.words import amount, count, listing, number, percent, with_unit
