@@ -39,15 +39,13 @@ def style_sheet(theme: Theme) -> str:
     }}
     QPushButton[quiet="true"]:hover, QToolButton[quiet="true"]:hover {{ background: {theme.tint}; }}
     QPushButton[quiet="true"]:focus, QToolButton[quiet="true"]:focus {{ border-color: {theme.accent}; }}
-    QLineEdit, QPlainTextEdit, QSpinBox, QDoubleSpinBox, QComboBox {{
+    QLineEdit, QPlainTextEdit {{
         background: {theme.panel}; border: 1px solid {theme.line}; border-radius: 5px; padding: 3px 6px;
         color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};
         min-height: 18px;
     }}
-    QLineEdit:focus, QPlainTextEdit:focus, QSpinBox:focus, QDoubleSpinBox:focus, QComboBox:focus {{
-        border-color: {theme.accent};
-    }}
-    QLineEdit:disabled, QSpinBox:disabled, QDoubleSpinBox:disabled, QComboBox:disabled {{ color: {theme.muted}; }}
+    QLineEdit:focus, QPlainTextEdit:focus {{ border-color: {theme.accent}; }}
+    QLineEdit:disabled {{ color: {theme.muted}; }}
     QTableView, QListView {{
         background: {theme.panel}; border: none; gridline-color: {theme.line};
         selection-background-color: {theme.tint}; selection-color: {theme.ink};

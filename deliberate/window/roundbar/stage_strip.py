@@ -18,12 +18,12 @@ SETTINGS: tuple[tuple[Setting, str], ...] = (
     ("silence", "Silence: nobody is heard"),
 )
 UNHEARD: tuple[tuple[Unheard, str], ...] = (
-    ("own", "go to her own view"),
-    ("rescale", "go to those still heard"),
+    ("own", "unheard: to the own view"),
+    ("rescale", "unheard: to those heard"),
 )
 AFTERWARDS: tuple[tuple[Afterwards, str], ...] = (
-    ("last", "the last stage goes on"),
-    ("repeat", "the whole plan again"),
+    ("last", "then the last stage on"),
+    ("repeat", "then all stages again"),
 )
 CHOICES: dict[str, str] = {
     "tables": "Seat people …",
@@ -57,15 +57,11 @@ class StageStrip(QWidget):
         self.setting = self._choice(SETTINGS, "Who can hear whom", self._change_setting)
         self.choose = QPushButton(self)
         self.choose.clicked.connect(self._choose)
-        self.unheard_label = QLabel("points not heard", self)
-        self.unheard_label.setProperty("muted", True)
         self.unheard = self._choice(UNHEARD, "Points that are not heard", self._change_unheard)
         self.earlier = self._button("←", "Move the stage earlier", self._move_earlier)
         self.later = self._button("→", "Move the stage later", self._move_later)
         self.add = self._button("Add", "Add a stage behind this one", self.add_behind)
         self.remove = self._button("Remove", "Remove the stage", self._remove)
-        self.after_label = QLabel("then", self)
-        self.after_label.setProperty("muted", True)
         self.after = self._choice(AFTERWARDS, "After the last round", self._change_afterwards)
         self.done = self._button("Done", "Close the stage", self.closed.emit)
         row = QHBoxLayout(self)
@@ -75,8 +71,8 @@ class StageStrip(QWidget):
         rounds_label.setProperty("muted", True)
         for part, stretch in (
             (self.name, 3), (self.rounds, 0), (rounds_label, 0), (self.setting, 2), (self.choose, 0),
-            (self.unheard_label, 0), (self.unheard, 2), (self.earlier, 0), (self.later, 0), (self.add, 0),
-            (self.remove, 0), (self.after_label, 0), (self.after, 2), (self.done, 0),
+            (self.unheard, 2), (self.earlier, 0), (self.later, 0), (self.add, 0), (self.remove, 0), (self.after, 2),
+            (self.done, 0),
         ):  # fmt: skip
             row.addWidget(part, stretch)
         session.scenario_changed.connect(self.refresh)
@@ -87,7 +83,7 @@ class StageStrip(QWidget):
         combo.setAccessibleName(name)
         combo.setToolTip(name)
         combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
-        combo.setMinimumContentsLength(8)
+        combo.setMinimumContentsLength(6)
         for key, words in entries:
             combo.addItem(words, key)
         combo.activated.connect(changed)
@@ -127,8 +123,8 @@ class StageStrip(QWidget):
         chosen = stage.setting in CHOICES
         self.choose.setVisible(chosen)
         self.choose.setText(CHOICES.get(stage.setting, ""))
-        for part in (self.unheard_label, self.unheard):
-            part.setVisible(stage.setting != "plenary" or not all(p.present for p in self._session.variant.people))
+        somebody_absent = not all(person.present for person in self._session.variant.people)
+        self.unheard.setVisible(stage.setting != "plenary" or somebody_absent)
         self.earlier.setEnabled(self.index > 0)
         self.later.setEnabled(self.index < len(plan.stages) - 1)
         self.remove.setEnabled(len(plan.stages) > 1)
