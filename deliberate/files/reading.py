@@ -12,6 +12,7 @@ import errno
 import json
 import math
 import os
+import stat
 from pathlib import Path
 from typing import Any, Literal
 
@@ -33,7 +34,10 @@ def read(path: str | os.PathLike[str]) -> Scenario:
     a scenario."""
     try:
         with Path(path).open("rb") as file:
-            data = file.read(SIZE_LIMIT + 1)
+            status = os.fstat(file.fileno())
+            # A pipe does not know its size; asking for no more than needed keeps small files cheap.
+            size = status.st_size if stat.S_ISREG(status.st_mode) else SIZE_LIMIT
+            data = file.read(min(size, SIZE_LIMIT) + 1)
     except (OSError, ValueError) as error:
         raise DeliberateError(_why_unreadable(error)) from None
     return decode(data)
