@@ -91,7 +91,7 @@ def _rehearse(options: argparse.Namespace) -> None:
         _print(json.encode(to_json(rehearsal)) + b"\n")
     else:
         from deliberate.rehearsal.findings import findings
-        from deliberate.rehearsal.report import summary
+        from deliberate.rehearsal.summary import summary
 
         _print(summary(scenario, rehearsal, findings(scenario, rehearsal)))
 

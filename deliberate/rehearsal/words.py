@@ -42,6 +42,15 @@ def number(value: float, question: Question, beside: float | None = None) -> str
     return text
 
 
+def numbers(values: Sequence[float], question: Question) -> list[str]:
+    """Figures of one table, all with the same number of decimals, as few as they need; "-" for no number."""
+    if not 1e-6 <= question.width < 1e15:
+        return [number(value, question) if math.isfinite(value) else "-" for value in values]
+    shown = [_fixed(value, decimals(question)) for value in values if math.isfinite(value)]
+    places = max((len(text.partition(".")[2]) for text in shown), default=0)
+    return [f"{round(value, places) + 0.0:,.{places}f}" if math.isfinite(value) else "-" for value in values]
+
+
 def with_unit(value: float, question: Question, beside: float | None = None) -> str:
     """`number` followed by the question's unit, if it has one: "480 thousand euros"."""
     text = number(value, question, beside)
