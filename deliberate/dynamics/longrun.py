@@ -1,6 +1,6 @@
-"""Where it all leads: closed groups, influence, limit or swing, and how fast (Berger 1981; Friedkin and Johnsen 1990).
+"""Where it all leads: closed groups, influence, limit or swing, and how fast.
 
-A firm person also listens to a source that never changes, her own start; such a source is a closed group of its
+Settling from any start: Berger 1981; firm people: Friedkin and Johnsen 1990. A firm person also listens to a source that never changes, her own start; such a source is a closed group of its
 own, called anchored.
 """
 

@@ -39,6 +39,11 @@ class Shares:
         """How many people there are."""
         return self.matrix.shape[0]
 
+    @property
+    def entries(self) -> int:
+        """How many numbers are stored: what one round costs."""
+        return self.matrix.size
+
     def hear(self, beliefs: Floats) -> Floats:
         """Beliefs after everybody has listened once: T b, for (n,) or (n, q)."""
         return self.matrix @ beliefs
