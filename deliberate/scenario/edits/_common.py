@@ -40,12 +40,12 @@ def as_number(value: float, what: str, low: float = 0.0, high: float = math.inf)
     number = float(value)
     if low <= number <= high and math.isfinite(number):
         return number
-    if high < math.inf:
-        wanted = f"must lie between {shown(low)} and {shown(high)}"
-    elif low > -math.inf:
-        wanted = f"must be at least {shown(low)}"
-    else:
+    if not math.isfinite(number):
         wanted = "must be a finite number"
+    elif high < math.inf:
+        wanted = f"must lie between {shown(low)} and {shown(high)}"
+    else:
+        wanted = f"must be at least {shown(low)}"
     raise DeliberateError(f"{what} {wanted}, is {shown(number)}")
 
 

@@ -141,10 +141,11 @@ def _per_hundred(listener: str, weights: Row) -> Row:
     largest = max(weights.values())
     if largest == 0:
         return {listener: HUNDRED}
-    parts = {one: weight / largest for one, weight in weights.items()}  # so that no sum overflows
-    total = math.fsum(parts.values())
-    if abs(total * largest - HUNDRED) <= _ROUNDING:
+    if largest <= HUNDRED + _ROUNDING and abs(math.fsum(weights.values()) - HUNDRED) <= _ROUNDING:
         return weights
+    _, exponent = math.frexp(largest)  # a power of two: no sum overflows, and no digit is lost
+    parts = {one: math.ldexp(weight, -exponent) for one, weight in weights.items()}
+    total = math.fsum(parts.values())
     return {one: _drawn(HUNDRED * part / total, weights[one]) for one, part in parts.items()}
 
 
