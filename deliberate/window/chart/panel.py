@@ -32,9 +32,9 @@ class ChartPanel(QWidget):
         self.whole.setToolTip("Show all rounds and the whole scale")
         self.whole.hide()
         self.menu_button = QToolButton(self)
-        self.menu_button.setText("Take along")
+        self.menu_button.setText("Copy or save")
         self.menu_button.setProperty("quiet", True)
-        self.menu_button.setToolTip("Copy or save the chart")
+        self.menu_button.setToolTip("The chart as a picture, or its figures")
         self.menu_button.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
         menu = QMenu(self)
         menu.addAction("Copy the picture", self.copy_picture)
@@ -81,7 +81,7 @@ class ChartPanel(QWidget):
         self.ballot.setText(text)
         self.ballot.setVisible(bool(text))
 
-    # Taking it along
+    # Copying and saving
 
     def copy_picture(self) -> None:
         """Put the chart on the clipboard as a picture."""

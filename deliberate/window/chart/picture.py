@@ -90,6 +90,11 @@ def _paint_stages(painter: QPainter, frame: Frame, content: Content, theme: Them
 
 def _paint_marks(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
     question, metrics = content.question, QFontMetricsF(painter.font())
+    if question.pass_mark is not None and question.undecided:
+        top, bottom = (float(frame.y(question.pass_mark + way * question.undecided)) for way in (1, -1))
+        painter.fillRect(
+            QRectF(frame.rect.left(), top, frame.rect.width(), bottom - top), mix(theme.panel, theme.mark, 0.28)
+        )
     for value, words in ((question.pass_mark, "pass mark"), (question.objection_mark, "objection below")):
         if value is None:
             continue
@@ -98,9 +103,6 @@ def _paint_marks(painter: QPainter, frame: Frame, content: Content, theme: Theme
         painter.drawLine(QLineF(frame.rect.left(), y, frame.rect.right(), y))
         painter.setPen(QColor(theme.muted))
         painter.drawText(QPointF(frame.rect.right() - metrics.horizontalAdvance(words) - 4, y - 3), words)
-    if question.pass_mark is not None and question.undecided:
-        top, bottom = (float(frame.y(question.pass_mark + way * question.undecided)) for way in (1, -1))
-        painter.fillRect(QRectF(frame.rect.left(), top, frame.rect.width(), bottom - top), QColor(theme.raised))
 
 
 def _paint_curves(painter: QPainter, frame: Frame, content: Content, theme: Theme, at: NDArray[np.intp]) -> None:

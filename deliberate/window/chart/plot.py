@@ -14,12 +14,14 @@ from deliberate.rehearsal.words import number, shown_names
 from deliberate.window.chart.endings import endings
 from deliberate.window.chart.picture import Content, Frame, paint_chart
 from deliberate.window.chart.strips import paint_ballot, paint_spread
+from deliberate.window.rounds_ruler import tick_step
 from deliberate.window.session import Session
 from deliberate.window.theme import Look, Theme
 
 AXIS_WIDTH = 46
 SPREAD_HEIGHT = 34
 BALLOT_HEIGHT = 40
+TICK_ROOM = 42.0  # pixels a round number and its gap take
 NEAR = 14.0  # pixels within which the pointer means a curve
 LARGEST_PICTURE = 16_000_000  # pixels
 
@@ -72,6 +74,33 @@ class StillItem(pg.GraphicsObject):
         return pixmap
 
 
+class RoundAxis(pg.AxisItem):
+    """Ticks at whole rounds only."""
+
+    def tickValues(self, low: float, high: float, size: float) -> list[tuple[float, list[float]]]:
+        step = tick_step(max(round(high - low), 1), size, TICK_ROOM)
+        first = -(-int(np.ceil(low)) // step) * step
+        return [(step, [float(at) for at in range(max(first, 0), int(np.floor(high)) + 1, step)])]
+
+    def tickStrings(self, values: list[float], scale: float, spacing: float) -> list[str]:
+        return [f"{value:.0f}" for value in values]
+
+
+class StripAxis(pg.AxisItem):
+    """The name of a strip where its scale would be."""
+
+    def __init__(self, words: str) -> None:
+        super().__init__("left")
+        self._words = words
+        self.setStyle(tickLength=0)
+
+    def tickValues(self, low: float, high: float, size: float) -> list[tuple[float, list[float]]]:
+        return [(1.0, [(low + high) / 2])]
+
+    def tickStrings(self, values: list[float], scale: float, spacing: float) -> list[str]:
+        return [self._words for _ in values]
+
+
 class BeliefChart(pg.GraphicsLayoutWidget):
     """Three plots on one ruler of rounds: beliefs, spread, ballot. `zoomed` says whether less than all is shown."""
 
@@ -82,6 +111,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self._session, self._look = session, look
         self._content: Content | None = None
         self._range: tuple[float, ...] = ()
+        self._ballot_shown = True
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setFrameShape(self.Shape.NoFrame)
         self.setAccessibleName("Chart of beliefs by round")
@@ -93,9 +123,9 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self._ballot = StillItem(self._paint_ballot, look)
         self.beliefs = self._plot(0, self._curves)
         self.beliefs.showAxis("bottom")
-        self.spread = self._plot(1, self._spread)
+        self.spread = self._plot(1, self._spread, "spread")
         self.spread.setFixedHeight(SPREAD_HEIGHT)
-        self.ballot = self._plot(2, self._ballot)
+        self.ballot = self._plot(2, self._ballot, "ballot")
         self.ballot.setFixedHeight(BALLOT_HEIGHT)
         self.cursors = [self._cursor(plot) for plot in (self.beliefs, self.spread, self.ballot)]
         self.hint = pg.TextItem(anchor=(0, 1))
@@ -120,22 +150,25 @@ class BeliefChart(pg.GraphicsLayoutWidget):
 
     # Building
 
-    def _plot(self, row: int, item: StillItem) -> pg.PlotItem:
-        plot = self.addPlot(row=row, col=0)
+    def _plot(self, row: int, item: StillItem, words: str = "") -> pg.PlotItem:
+        axes = {"bottom": RoundAxis("bottom")}
+        if words:
+            axes["left"] = StripAxis(words)
+        plot = self.addPlot(row=row, col=0, axisItems=axes)
         plot.setMenuEnabled(False)
         plot.hideButtons()
         plot.hideAxis("bottom")
         plot.getAxis("left").setWidth(AXIS_WIDTH)
-        plot.getAxis("left").setStyle(tickLength=-4)
+        plot.getAxis("left").setStyle(tickLength=0 if words else -4)
         plot.getAxis("bottom").setStyle(tickLength=-4)
         plot.getAxis("bottom").setHeight(22)
         box = plot.getViewBox()
         box.setDefaultPadding(0)
         box.setBorder(None)
-        if row:
+        if words:
             plot.setXLink(self.beliefs)
             box.setMouseEnabled(x=False, y=False)
-            plot.getAxis("left").setStyle(showValues=False, tickLength=0)
+            box.setYRange(0, 1, padding=0)
         plot.addItem(item, ignoreBounds=True)
         return plot
 
@@ -161,16 +194,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self.hint.setColor(QColor(theme.ink))
         self.hint.fill = pg.mkBrush(theme.raised)
         self.hint.border = pg.mkPen(theme.line)
-        self._words_left()
         self.refresh()
-
-    def _words_left(self) -> None:
-        """ "spread" and "ballot" stand where the strips' scales would be; short words of our own, no markup."""
-        for plot, words in ((self.spread, "spread"), (self.ballot, "ballot")):
-            axis = plot.getAxis("left")
-            axis.setStyle(showValues=True)
-            low, high = plot.getViewBox().viewRange()[1]
-            axis.setTicks([[((low + high) / 2, words)]])
 
     # Content
 
@@ -197,10 +221,17 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             )
             self._keep_range(len(rehearsal.rounds) - 1, question.low, question.high)
             self.setAccessibleDescription(self._spoken())
-        self.ballot.setVisible(rehearsal is not None and rehearsal.ballot is not None)
+        self._show_ballot(rehearsal is not None and rehearsal.ballot is not None)
         for item in (self._curves, self._spread, self._ballot):
             item.forget()
         self._follow(session.player.position)
+
+    def _show_ballot(self, shown: bool) -> None:
+        """Give the ballot its row, or leave the room to the curves."""
+        if shown != self._ballot_shown:
+            self._ballot_shown = shown
+            self.ballot.setFixedHeight(BALLOT_HEIGHT if shown else 0)
+            self.ballot.setVisible(shown)
 
     def _spoken(self) -> str:
         content = self._content
@@ -222,8 +253,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             self.beliefs.getViewBox().setLimits(xMin=whole[0], xMax=whole[1], yMin=whole[2], yMax=whole[3])
             for plot in (self.spread, self.ballot):
                 plot.getViewBox().setYRange(0, 1, padding=0)
-            self._words_left()
-            self.show_all()
+                self.show_all()
 
     def show_all(self) -> None:
         """All rounds and the whole scale."""

@@ -21,6 +21,7 @@ from PySide6.QtWidgets import QAbstractSlider, QWidget
 
 from deliberate.scenario import edits
 from deliberate.scenario.values import Plan
+from deliberate.window.rounds_ruler import tick_step
 from deliberate.window.session import Session
 from deliberate.window.text import elided
 from deliberate.window.theme import Look, mix
@@ -32,7 +33,6 @@ SETTING_WORDS = {
     "pairs": "in pairs",
     "silence": "nobody is heard",
 }
-STEPS = (1, 2, 5, 10, 20, 50, 100, 200, 500, 1_000, 2_000, 5_000, 10_000, 20_000, 50_000, 100_000, 200_000, 500_000)
 KNOB = 7.0
 GRIP = 6.0  # pixels around the end of a stage that take hold of it
 
@@ -53,11 +53,6 @@ def spans(plan: Plan) -> tuple[Span, ...]:
         found.append(Span(index, end, end + stage.rounds))
         end += stage.rounds
     return tuple(found)
-
-
-def tick_step(rounds: int, width: float, room: float) -> int:
-    """The smallest of the usual steps at which labels `room` pixels wide do not touch."""
-    return next((step for step in STEPS if width * step / max(rounds, 1) >= room), STEPS[-1])
 
 
 class Ruler(QAbstractSlider):
