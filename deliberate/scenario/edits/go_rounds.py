@@ -56,13 +56,13 @@ def add_joint_round(
 
     Each gives those she has not heard so far the average of what she gives now, or `points` of 100 each. Where
     the sketch falls into groups without an arrow between them, the plenary stages that follow become tables of
-    these groups, so that there everything stays as it was: the new arrows count in the joint stage only. Where
-    it hangs together, the new arrows count in the later plenary stages too, and get `SMALL_POINTS` by default.
+    these groups, so that there everything stays as it was: the new arrows count in the joint stage only. (Points
+    for the absent are then spread over all that is heard, also where they fell to the own view.) Where the sketch
+    hangs together, the new arrows count in the later plenary stages too, and get `SMALL_POINTS` by default.
     """
     one = variant_named(scenario, variant)
     groups = tuple(linked_groups(one))
-    with_voices = [group for group in groups if len(group) > 1]
-    apart = len(groups) > 1 and bool(with_voices)
+    apart = len(groups) > 1
     if apart:
         opened = _open_between(scenario, one, groups, points)
     else:
@@ -70,7 +70,7 @@ def add_joint_round(
     front = Stage(name=name, rounds=rounds)
 
     def change(before: Variant) -> Variant:
-        later = (_by_themselves(stage, with_voices) if apart else stage for stage in before.plan.stages)
+        later = (_by_themselves(stage, groups) if apart else stage for stage in before.plan.stages)
         return changed(before, plan=changed(before.plan, stages=(front, *later)))
 
     return change_variant(opened, variant, change)
@@ -125,8 +125,8 @@ def _opened(variant: Variant, listener: str, row: Row, newcomers: Iterable[str],
     return make_room(row, room) | heard
 
 
-def _by_themselves(stage: Stage, groups: list[tuple[str, ...]]) -> Stage:
+def _by_themselves(stage: Stage, groups: tuple[tuple[str, ...], ...]) -> Stage:
     """A plenary stage as tables of `groups`. `rescale` gives the points of the new arrows back to the old ones."""
     if stage.setting != "plenary":
         return stage
-    return changed(stage, setting="tables", tables=tuple(groups), unheard="rescale")
+    return changed(stage, setting="tables", tables=groups, unheard="rescale")
