@@ -24,12 +24,11 @@ usage: deliberate [FILE]
        deliberate check FILE
 
 Rehearse a contested meeting: who listens to whom, where talking leads, and why
-it stalls.
+it stalls. FILE is a scenario, `something.deliberate.json`.
 
-  deliberate [FILE]         open the window on FILE, a .deliberate.json scenario;
-                            without FILE on what was open last
-  deliberate rehearse FILE  print the rehearsal (`deliberate rehearse -h` for its
-                            options); needs no display
+  deliberate [FILE]         open the window on FILE, or on what was open last
+  deliberate rehearse FILE  print the rehearsal; needs no display. Its options:
+                            `deliberate rehearse -h`
   deliberate check FILE     say `ok`, or where the file is wrong and how
 
   -h, --help                show this and exit
@@ -151,9 +150,8 @@ def _window_parser() -> argparse.ArgumentParser:
 
 
 def _rehearse_parser() -> argparse.ArgumentParser:
-    parser = argparse.ArgumentParser(
-        "deliberate rehearse",
-        description="Play the meeting and say where the talking leads. A sketch, not a forecast.",
+    parser = _Parser(
+        "deliberate rehearse", "Play the meeting and say where the talking leads. A sketch, not a forecast."
     )
     parser.add_argument("file", metavar="FILE", help="a .deliberate.json scenario")
     parser.add_argument("--variant", metavar="NAME", help="the set-up to rehearse (default: the first)")

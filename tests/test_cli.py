@@ -3,6 +3,7 @@ import os
 import subprocess
 import sys
 from pathlib import Path
+from types import ModuleType
 
 import pytest
 
@@ -154,15 +155,11 @@ def test_help_and_version(arguments, capsys):
     assert all(len(line) <= 80 for line in out.splitlines())
 
 
-@pytest.fixture
-def opened(monkeypatch):
-    """What the window is asked to open."""
-    from deliberate.window import app
-
-    asked = []
-    monkeypatch.setattr(app, "check_screen", lambda: None)
-    monkeypatch.setattr(app, "run", lambda path: asked.append(path) or 0)
-    return asked
+def window(monkeypatch, run):
+    """Stand in for the window, which has tests of its own."""
+    app = ModuleType("deliberate.window.app")
+    app.check_screen, app.run = lambda: None, run
+    monkeypatch.setitem(sys.modules, app.__name__, app)
 
 
 @pytest.mark.parametrize(
@@ -176,16 +173,15 @@ def opened(monkeypatch):
         (["--", "-odd-name"], "-odd-name"),
     ],
 )
-def test_everything_else_opens_the_window(arguments, path, opened):
+def test_everything_else_opens_the_window(arguments, path, monkeypatch):
+    opened = []
+    window(monkeypatch, lambda path: opened.append(path) or 0)
     assert cli.main(arguments) == 0
     assert opened == [path]
 
 
 def test_a_bad_file_for_the_window_is_one_line_too(small, monkeypatch, capsys):
-    from deliberate.window import app
-
-    monkeypatch.setattr(app, "check_screen", lambda: None)
-    monkeypatch.setattr(app, "run", lambda path: deliberate.read(path) and 0)
+    window(monkeypatch, lambda path: deliberate.read(path) and 0)
     small.write_text("[]", encoding="utf-8")
     assert cli.main([str(small)]) == 2
     assert capsys.readouterr().err.startswith(f"{small}: must be an object")
