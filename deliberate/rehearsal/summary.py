@@ -62,7 +62,8 @@ class _Sketch:
         if not self.present.all():
             people += f", {amount(int(self.present.sum()))} present"
         rounds = count(variant.plan.rounds, "round", "rounds")
-        setup = f"{variant.name}: {people}; {rounds} ({_stages(variant)})."
+        again = ", again and again" if variant.plan.afterwards == "repeat" else ""
+        setup = f"{variant.name}: {people}; {rounds} ({_stages(variant)}){again}."
         return _wrapped([self.scenario.title, self.question.text, self._scale(), setup])
 
     def _scale(self) -> str:
@@ -72,6 +73,8 @@ class _Sketch:
             for value, label in ((question.low, question.low_label), (question.high, question.high_label))
         )
         text = f"Scale in {question.unit}: {low} to {high}" if question.unit else f"Scale: {low} to {high}"
+        if question.hearing_range is not None:
+            text += f"; views more than {number(question.hearing_range, question)} apart are not heard"
         if question.pass_mark is None:
             return f"{text}."
         marks = [f"for above {number(question.pass_mark + question.undecided, question)}"]
