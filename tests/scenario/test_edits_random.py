@@ -194,6 +194,7 @@ def _is_edit(one: object) -> bool:
     return inspect.isfunction(one) and inspect.signature(one).return_annotation == "Scenario"
 
 
+@settings(max_examples=200)
 @given(st.data(), scenarios(), st.lists(st.sampled_from(list(GIVEN)), min_size=1, max_size=12))
 def test_random_edits_leave_a_valid_meeting_and_undo_is_exact(data, scenario, chosen) -> None:
     history = [(scenario, files.encode(scenario))]
