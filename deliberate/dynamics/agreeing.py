@@ -16,8 +16,8 @@ from numpy.typing import ArrayLike
 
 from deliberate.dynamics.longrun import LongRun
 from deliberate.dynamics.network import Floats
-from deliberate.dynamics.process import Leg, Process, course
-from deliberate.dynamics.rounds import mover
+from deliberate.dynamics.process import Course, Leg, Process, course
+from deliberate.dynamics.rounds import Hearing, mover
 from deliberate.dynamics.turns import Turn, advance, followed_by, turn_of
 
 # Rounds that are played before turns are squared, and how large maps may be for that.
@@ -70,6 +70,8 @@ def agreeing(
         return Agreeing(0, False)
     track = long_run.course if hearing_range is not None else course(process)
     judge = _Judge(track.firmness, start, tolerance, SLACK * scale_width)
+    if track.held is not None:
+        return _after_untraced(process, judge, track, long_run, Hearing(process, hearing_range, scale_width))
     held = [start]
     for leg in track.before:
         held.append(advance((leg,), track.firmness, held[-1], start))
@@ -86,6 +88,28 @@ def agreeing(
     if last is not None:
         return Agreeing(track.rounds_before + last + 1, estimated)
     return Agreeing(_within(judge, track.before, held), False)
+
+
+def _after_untraced(process: Process, judge: _Judge, track: Course, long_run: LongRun, hearing: Hearing) -> Agreeing:
+    """The answer when the rounds before what lasts were too many to be kept: they are played again."""
+    held, last = judge.start, None
+    move = mover(judge.firmness, judge.start)
+    for at in range(track.rounds_before):
+        if judge.wide(held):
+            last = at
+        held = move(hearing.shares_at(at, held), held)
+    lasting = _Run(judge, track.lasting, _cycle_from(long_run, track.turns_before))
+    if lasting.never():
+        return Agreeing(None, False)
+    try:
+        later = lasting.last_wide_round(held, None)
+    except _TooLarge as too_large:
+        return Agreeing(
+            None if too_large.rounds is None else track.rounds_before + too_large.rounds + 1, estimated=True
+        )
+    if later is not None:
+        return Agreeing(track.rounds_before + later + 1, False)
+    return Agreeing(0 if last is None else last + 1, False)
 
 
 def _within(judge: _Judge, legs: Sequence[Leg], held: Sequence[Floats]) -> int:

@@ -65,18 +65,17 @@ class Course:
     """A process in the form the long run is worked out in: `before`, once, and then `lasting`, for ever.
 
     A *turn* is what goes on for ever: one round of the last leg, or one pass through a plan that is repeated.
-    turns_before: how many turns `before` amounts to, so that turns can be counted from round 0.
+    turns_before, rounds_before: how many turns and rounds `before` amounts to, so that they can be counted from
+        round 0.
+    held: (n,) beliefs after `before`, when its legs were too many to be kept (`before` is then empty).
     """
 
     firmness: Floats
     before: tuple[Leg, ...]
     lasting: tuple[Leg, ...]
     turns_before: int
-
-    @property
-    def rounds_before(self) -> int:
-        """How many single rounds come before the first turn."""
-        return sum(leg.rounds for leg in self.before)
+    rounds_before: int
+    held: Floats | None = None
 
     @property
     def rounds_in_turn(self) -> int:
@@ -88,6 +87,7 @@ def course(process: Process) -> Course:
     """The course of a process without a hearing range."""
     legs = process.legs
     if process.repeat:
-        return Course(process.firmness, (), legs, 0)
+        return Course(process.firmness, (), legs, 0, 0)
     before = legs[:-1]
-    return Course(process.firmness, before, (Leg(legs[-1].shares, 1),), sum(leg.rounds for leg in before))
+    rounds = sum(leg.rounds for leg in before)
+    return Course(process.firmness, before, (Leg(legs[-1].shares, 1),), rounds, rounds)

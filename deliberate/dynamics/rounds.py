@@ -7,7 +7,7 @@ from collections.abc import Callable, Iterator
 import numpy as np
 from numpy.typing import ArrayLike
 
-from deliberate.dynamics.network import Floats, Mask, Network
+from deliberate.dynamics.network import Floats, Mask
 from deliberate.dynamics.process import Process
 from deliberate.dynamics.shares import Shares, shares
 
@@ -89,22 +89,29 @@ class Hearing:
     def __init__(self, process: Process, hearing_range: float, scale_width: float) -> None:
         self._process = process
         self._reach = hearing_range + RANGE_SLACK * scale_width
-        self._built: dict[int, tuple[Mask, Shares]] = {}
+        self._rounds = sum(block.rounds for block in process.blocks)
+        self._built: dict[tuple[str, int], tuple[Mask, Shares]] = {}
 
-    def near(self, beliefs: Floats) -> Mask:
-        """(m,) True for the arrows whose two beliefs are within the hearing range."""
-        network: Network = self._process.network
-        return np.abs(beliefs[network.source] - beliefs[network.listener]) <= self._reach
+    def heard_at(self, at: int, beliefs: Floats) -> Mask:
+        """(m,) the arrows that count in round at + 1, when `beliefs` (n,) are held before it."""
+        network = self._process.network
+        near = np.abs(beliefs[network.source] - beliefs[network.listener]) <= self._reach
+        heard = self._process.blocks[block_at(self._process, at)].heard
+        return near if heard is None else near & heard
 
     def shares_at(self, at: int, beliefs: Floats) -> Shares:
-        """The shares of round at + 1, when `beliefs` are held before it."""
+        """The shares of round at + 1, when `beliefs` (n,) are held before it; the same object while they last."""
+        heard = self.heard_at(at, beliefs)
         index = block_at(self._process, at)
-        block = self._process.blocks[index]
-        heard = self.near(beliefs)
-        if block.heard is not None:
-            heard &= block.heard
-        if index in self._built and np.array_equal(self._built[index][0], heard):
-            return self._built[index][1]
-        matrix = shares(self._process.network, heard, block.unheard)
-        self._built[index] = (heard, matrix)
+        places = [("block", index)]
+        if self._process.repeat:
+            places.insert(0, ("round", at % self._rounds))
+        for place in places:
+            if place in self._built and np.array_equal(self._built[place][0], heard):
+                matrix = self._built[place][1]
+                break
+        else:
+            matrix = shares(self._process.network, heard, self._process.blocks[index].unheard)
+        for place in places:
+            self._built[place] = (heard, matrix)
         return matrix

@@ -2,52 +2,118 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Iterator
+
 import numpy as np
+from scipy.sparse import coo_array, csr_array
 
 from deliberate.dynamics.destination import Destination
-from deliberate.dynamics.network import Floats
+from deliberate.dynamics.large import LargeTurn
+from deliberate.dynamics.network import Floats, Indices
 from deliberate.dynamics.structure import Structure
 
-# Up to this size all eigenvalues are computed; up to the next the leading ones by squaring, checked; then Arnoldi.
+# Up to this many people in one component all eigenvalues are computed; up to the next number the leading ones by
+# squaring, checked; above, by Arnoldi steps.
 ALL_EIGENVALUES = 64
-BY_SQUARING = 400
+BY_SQUARING = 1000
 SQUARINGS = 8
 LEADING = 12
-ARNOLDI_STEPS = 60
+ARNOLDI_STEPS = 80
+# Near 1 Arnoldi steps are too coarse; up to this size the eigenvalue nearest to 1 is then found by solving.
+NEARLY_ONE = 0.9
+BY_SOLVING = 3000
 # Eigenvalues below this are rounding.
 ROUNDING = 1e-14
+ESTIMATE = "the rate is an estimate, because many people hear each other"
+
+Map = Callable[[Floats], Floats]
 
 
-def rate(kept: Floats, shape: Structure, reached: Destination) -> float:
-    """Spectral radius of `kept` (n, n) minus its limit, in [0, 1); every closed group must have period 1.
+def rate(kept: Floats | csr_array, shape: Structure, reached: Destination) -> tuple[float, bool]:
+    """Spectral radius of `kept` (n, n) minus its limit, in [0, 1), and whether it is exact.
 
-    Found component by component, so that one-way lines, whose eigenvalues a full solve gets wrong, are exact.
+    Every closed group must have period 1. Found component by component, so that one-way lines, whose eigenvalues
+    a full solve gets wrong, are exact.
     """
-    people = len(kept)
-    if not people:
-        return 0.0
+    if not kept.shape[0]:
+        return 0.0, True
     sizes = np.bincount(shape.labels)
-    single = (sizes[shape.labels] == 1) & (reached.group_of < 0)
-    largest = float(kept.diagonal()[single].max(initial=0.0))
-    order = np.argsort(shape.labels, kind="stable")
-    for members in np.split(order, np.cumsum(sizes)[:-1]):
-        if len(members) == 1:
-            continue
-        block = kept if len(members) == people else kept[np.ix_(members, members)]
-        share = reached.within[members] if reached.group_of[members[0]] >= 0 else None
-        largest = max(largest, _radius(block, share))
-    # Structure says that everything settles; rounding must not say otherwise.
-    return min(largest, float(np.nextafter(1.0, 0.0))) if largest > ROUNDING else 0.0
+    closed = reached.group_of >= 0
+    single = (sizes[shape.labels] == 1) & ~closed
+    largest, exact = float(kept.diagonal()[single].max(initial=0.0)), True
+    for members in _large_components(shape.labels, sizes):
+        block = _among(kept, members)
+        share = reached.within[members] if closed[members[0]] else None
+        if len(members) > BY_SQUARING:
+            found, well = _radius_of_large(block, share)
+            exact &= well
+        else:
+            found = _radius(block.toarray() if isinstance(block, csr_array) else block, share)
+        largest = max(largest, found)
+    for members, blocks in _small_components(kept, shape.labels, sizes):
+        moduli = np.sort(np.abs(np.linalg.eigvals(blocks)), axis=1)
+        largest = max(largest, float(np.where(closed[members[:, 0]], moduli[:, -2], moduli[:, -1]).max()))
+    return _below_one(largest), exact
+
+
+def rate_of_pass(turn: LargeTurn, reached: Destination) -> float:
+    """The rate per turn of a turn that is never written out; an estimate."""
+    nobody = np.zeros(turn.people)
+
+    def rest(beliefs: Floats) -> Floats:
+        return turn.apply(beliefs - reached.average(beliefs, nobody), nobody)
+
+    return _below_one(abs(_arnoldi(rest, turn.people)[0]))
+
+
+def _below_one(radius: float) -> float:
+    """Structure says that everything settles; rounding must not say otherwise."""
+    return min(radius, float(np.nextafter(1.0, 0.0))) if radius > ROUNDING else 0.0
+
+
+def _large_components(labels: Indices, sizes: Indices) -> Iterator[Indices]:
+    """The members of each component that is treated by itself."""
+    for label in np.flatnonzero(sizes > ALL_EIGENVALUES):
+        yield np.flatnonzero(labels == label)
+
+
+def _small_components(kept: Floats | csr_array, labels: Indices, sizes: Indices) -> Iterator[tuple[Indices, Floats]]:
+    """The other components of two people or more, those of one size together: (c, k) members, (c, k, k) blocks."""
+    wanted = (sizes > 1) & (sizes <= ALL_EIGENVALUES)
+    if len(sizes) == 1 and wanted[0]:
+        yield np.arange(sizes[0])[None, :], (kept.toarray() if isinstance(kept, csr_array) else kept)[None, :, :]
+        return
+    if not wanted.any():
+        return
+    entries = kept.tocoo() if isinstance(kept, csr_array) else coo_array(kept)
+    rows, columns = entries.coords
+    inside = (labels[rows] == labels[columns]) & wanted[labels[rows]]
+    rows, columns, values = rows[inside], columns[inside], entries.data[inside]
+    order = np.argsort(labels, kind="stable")
+    place = np.empty(len(labels), dtype=np.intp)
+    place[order] = np.arange(len(labels)) - np.repeat(np.cumsum(sizes) - sizes, sizes)
+    for size in np.unique(sizes[wanted]):
+        found = np.flatnonzero(sizes == size)
+        number = np.full(len(sizes), -1, dtype=np.intp)
+        number[found] = np.arange(len(found))
+        blocks = np.zeros((len(found), size, size))
+        chosen = number[labels[rows]] >= 0
+        blocks[number[labels[rows[chosen]]], place[rows[chosen]], place[columns[chosen]]] = values[chosen]
+        yield order[number[labels[order]] >= 0].reshape(len(found), size), blocks
+
+
+def _among(kept: Floats | csr_array, members: Indices) -> Floats | csr_array:
+    """The rows and columns of `members`."""
+    if len(members) == kept.shape[0]:
+        return kept
+    return kept[members][:, members] if isinstance(kept, csr_array) else kept[np.ix_(members, members)]
 
 
 def _radius(block: Floats, share: Floats | None) -> float:
     """Largest eigenvalue modulus of one strongly connected block, without the 1 of a closed group."""
-    if len(block) > BY_SQUARING:
-        return _radius_by_arnoldi(block, share)
-    if len(block) > ALL_EIGENVALUES:
-        found = _radius_by_squaring(block if share is None else block - share)
-        if found is not None:
-            return found
+    found = _radius_by_squaring(block if share is None else block - share)
+    if found is not None:
+        return found
     moduli = np.sort(np.abs(np.linalg.eigvals(block)))
     return float(moduli[-1] if share is None else moduli[-2])
 
@@ -72,26 +138,50 @@ def _radius_by_squaring(block: Floats) -> float | None:
     return radius if np.linalg.norm(missing) <= 1e-10 * radius else None
 
 
-def _radius_by_arnoldi(block: Floats, share: Floats | None) -> float:
-    """An estimate: the largest Ritz value after a number of Arnoldi steps."""
-    steps = min(ARNOLDI_STEPS, len(block))
-    basis = np.zeros((steps + 1, len(block)))
-    start = np.random.default_rng(0).standard_normal(len(block))
-    start = start if share is None else start - share @ start
-    basis[0] = start / np.linalg.norm(start)
+def _radius_of_large(block: Floats | csr_array, share: Floats | None) -> tuple[float, bool]:
+    """The same for a large block, by Arnoldi steps, and whether they have converged."""
+
+    def rest(beliefs: Floats) -> Floats:
+        return block @ beliefs if share is None else block @ beliefs - share @ beliefs
+
+    leading, exact = _arnoldi(rest, block.shape[0])
+    radius = abs(leading)
+    if exact or radius < NEARLY_ONE or block.shape[0] > BY_SOLVING:
+        return radius, exact
+    full = block.toarray() if isinstance(block, csr_array) else block
+    missing = np.eye(len(full)) - full
+    if share is not None:
+        missing += share
+    from scipy.linalg import lu_factor, lu_solve
+
+    factors = lu_factor(missing, check_finite=False)
+    inverse, exact = _arnoldi(lambda given: lu_solve(factors, given, check_finite=False), len(full))
+    nearest = abs(1 - 1 / inverse)
+    return max(radius, nearest), exact and nearest >= radius
+
+
+def _arnoldi(apply: Map, size: int) -> tuple[complex, bool]:
+    """The Ritz value of largest modulus after some Arnoldi steps, and whether it is right to 1e-9."""
+    steps = min(ARNOLDI_STEPS, size)
+    basis = np.zeros((steps + 1, size))
+    start = apply(np.random.default_rng(0).standard_normal(size))
+    length = np.linalg.norm(start)
+    if length < ROUNDING:
+        return 0.0, True
+    basis[0] = start / length
     small = np.zeros((steps + 1, steps))
     for step in range(steps):
-        after = block @ basis[step]
-        if share is not None:
-            after -= share @ after
+        after = apply(basis[step])
         for _ in range(2):
             part = basis[: step + 1] @ after
             small[: step + 1, step] += part
-            after -= part @ basis[: step + 1]
-        length = np.linalg.norm(after)
-        small[step + 1, step] = length
+            after = after - part @ basis[: step + 1]
+        small[step + 1, step] = length = np.linalg.norm(after)
         if length < ROUNDING:
             steps = step + 1
             break
         basis[step + 1] = after / length
-    return float(np.abs(np.linalg.eigvals(small[:steps, :steps])).max())
+    values, vectors = np.linalg.eig(small[:steps, :steps])
+    first = np.argmax(np.abs(values))
+    missing = small[steps, steps - 1] * abs(vectors[-1, first])
+    return complex(values[first]), bool(missing <= 1e-9 * abs(values[first]))

@@ -10,10 +10,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.sparse import csr_array
 from scipy.sparse.csgraph import breadth_first_order, connected_components
 
 from deliberate.dynamics.network import Indices, Mask
+
+FRONTIER = 8
 
 
 @dataclass(frozen=True, eq=False)
@@ -34,6 +37,33 @@ class Structure:
 
     labels: Indices
     closed: tuple[ClosedSet, ...]
+
+
+def full_structure(matrix: NDArray[np.float64], leaking: Mask) -> Structure:
+    """`structure` of a full array, in which every entry above 0 is an arrow; quick where most are."""
+    people = len(matrix)
+    if people and matrix.diagonal().any() and _reaches_all(matrix) and _reaches_all(matrix.T):
+        one = ClosedSet(np.arange(people), 1, np.zeros(people, dtype=np.intp))
+        return Structure(np.zeros(people, dtype=np.intp), () if leaking.any() else (one,))
+    return structure(csr_array(matrix), leaking)
+
+
+def _reaches_all(matrix: NDArray[np.float64]) -> bool:
+    """Arrows lead from node 0 to every other."""
+    seen = np.zeros(len(matrix), dtype=bool)
+    seen[0] = True
+    waiting = seen.copy()
+    while True:
+        (frontier,) = np.nonzero(waiting)
+        if not len(frontier):
+            return bool(seen.all())
+        some = frontier[:FRONTIER]  # a few rows often reach everything
+        waiting[some] = False
+        found = matrix[some].any(axis=0) & ~seen
+        seen |= found
+        waiting |= found
+        if seen.all():
+            return True
 
 
 def components(joined: csr_array) -> tuple[int, Indices]:

@@ -1,0 +1,263 @@
+"""The long run of networks that are too large for full arrays: by iteration, checked, with Krylov steps where slow.
+
+A turn is only ever applied, forwards to beliefs or backwards to what they count for, so whole passes through a
+plan cost no more memory than single rounds.
+"""
+
+from __future__ import annotations
+
+import warnings
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.sparse import csr_array
+
+from deliberate.dynamics.destination import Destination, group_numbers
+from deliberate.dynamics.elimination import stationary
+from deliberate.dynamics.network import Floats, Indices, sum_by
+from deliberate.dynamics.process import Leg
+from deliberate.dynamics.structure import ClosedSet, Structure, structure
+from deliberate.dynamics.turns import TINY, advance, give_back
+from deliberate.errors import DeliberateError
+
+# Above this many people nothing of size n x n is built.
+FULL_PEOPLE = 3000
+# Relative accuracy aimed at, and the one below which the reader is told.
+AIM = 1e-11
+ENOUGH = 1e-9
+# A part of the old shares is kept in every step, which makes groups that swing converge as well.
+HELD_BACK = 0.1
+STEPS = 400
+KRYLOV = 60
+KRYLOV_RESTARTS = 30
+MOST_LAYERED_ARROWS = 60_000_000
+NOT_EXACT = "the network is large and close to falling apart: long-run numbers may be off by more than 1e-9"
+
+
+@dataclass(frozen=True, eq=False)
+class LargeTurn:
+    """One turn, applied leg by leg. matrix: its share part (I - F) T as a `csr_array` when it is a single round."""
+
+    legs: tuple[Leg, ...]
+    firmness: Floats
+    matrix: csr_array | None
+
+    @property
+    def people(self) -> int:
+        """How many people there are."""
+        return len(self.firmness)
+
+    def apply(self, beliefs: Floats, starts: Floats) -> Floats:
+        """Beliefs one turn on."""
+        return advance(self.legs, self.firmness, beliefs, starts)
+
+    def give_back(self, voice: Floats) -> tuple[Floats, Floats]:
+        """What (n,) beliefs before the turn and (n,) starts count for in voice (n,) times beliefs after it."""
+        return give_back(self.legs, self.firmness, voice)
+
+
+def large_turn(legs: tuple[Leg, ...], firmness: Floats) -> LargeTurn:
+    """The turn made of `legs`."""
+    one_round = len(legs) == 1 and legs[0].rounds == 1
+    return LargeTurn(legs, firmness, _round_matrix(legs[0], firmness) if one_round else None)
+
+
+def _round_matrix(leg: Leg, firmness: Floats) -> csr_array:
+    shares = leg.shares.as_sparse
+    if not firmness.any():
+        return shares
+    rows = np.repeat(np.arange(len(firmness)), np.diff(shares.indptr))
+    kept = firmness[rows] < 1
+    data = np.maximum(shares.data * (1.0 - firmness[rows]), TINY)[kept]
+    return csr_array((data, (rows[kept], shares.indices[kept])), shape=shares.shape)
+
+
+def large_structure(turn: LargeTurn) -> Structure:
+    """Closed groups, periods and phases of a turn, by arrows alone.
+
+    A pass through a plan is followed round by round: node (round, person) hears nodes of the round before.
+    """
+    if turn.matrix is not None:
+        return structure(turn.matrix, turn.firmness > 0)
+    rounds = [leg.shares.as_sparse for leg in turn.legs for _ in range(leg.rounds)]
+    arrows, layers, people = sum(matrix.nnz for matrix in rounds), len(rounds), turn.people
+    if arrows > MOST_LAYERED_ARROWS:
+        raise DeliberateError(
+            f"a repeated plan may have {MOST_LAYERED_ARROWS:,} arrows in all its rounds together, has {arrows:,}"
+        )
+    # Layer 0 is the end of the pass, so that its nodes come first: it hears through the last round.
+    rounds = [rounds[-1], *rounds[:-1]]
+    indices = np.concatenate([m.indices + people * ((at - 1) % layers) for at, m in enumerate(rounds)])
+    indptr = np.concatenate([[0], *(m.indptr[1:] for m in rounds)]).astype(np.int64)
+    indptr[1:] += np.repeat(np.cumsum([0, *(m.nnz for m in rounds[:-1])]), people)
+    whole = csr_array((np.ones(arrows), indices, indptr), shape=(layers * people, layers * people))
+    found = structure(whole, np.tile(turn.firmness > 0, layers))
+    closed = tuple(_end_of_pass(group, people, layers) for group in found.closed)
+    return Structure(found.labels[:people], closed)
+
+
+def _end_of_pass(group: ClosedSet, people: int, layers: int) -> ClosedSet:
+    at_end = group.members < people
+    return ClosedSet(group.members[at_end], group.period // layers, group.phases[at_end] // layers)
+
+
+class Iterated(Destination):
+    """The long-run map of a large turn. `exact` turns False when some number could not be held to 1e-9."""
+
+    def __init__(self, turn: LargeTurn, groups: tuple[ClosedSet, ...]) -> None:
+        group_of = group_numbers(groups, turn.people)
+        within, self.exact = _influence(turn, groups, group_of)
+        super().__init__(groups, group_of, within, np.flatnonzero(turn.firmness))
+        self._turn = turn
+        self._inner = None if turn.matrix is None else turn.matrix[self.passing][:, self.passing]
+
+    def carry(self, views: Floats, starts: Floats) -> Floats:
+        """See `Destination`."""
+        held = np.zeros(self._turn.people)
+        held[self._settled] = views[self.group_of[self._settled]]
+        nothing = np.zeros(self._turn.people)
+
+        def inner(passing: Floats) -> Floats:
+            beliefs = nothing.copy()
+            beliefs[self.passing] = passing
+            return self._turn.apply(beliefs, nothing)[self.passing]
+
+        given = self._turn.apply(held, starts)[self.passing]
+        return self._solve(inner, given, transposed=False)
+
+    def trace(self, voice: Floats) -> tuple[Floats, Floats]:
+        """See `Destination`."""
+
+        def back(passing: Floats) -> Floats:
+            whole = np.zeros(self._turn.people)
+            whole[self.passing] = passing
+            return self._turn.give_back(whole)[0][self.passing]
+
+        whole = np.zeros(self._turn.people)
+        whole[self.passing] = self._solve(back, voice, transposed=True)
+        to_beliefs, to_starts = self._turn.give_back(whole)
+        return sum_by(self.group_of[self._settled], to_beliefs[self._settled], len(self.groups)), to_starts
+
+    def _solve(self, inner: Callable[[Floats], Floats], given: Floats, transposed: bool) -> Floats:
+        """x = inner(x) + given."""
+        answer = given
+        size = np.abs(given).max()
+        step = size
+        for _ in range(STEPS):
+            after = inner(answer) + given
+            before, step = step, np.abs(after - answer).max()
+            answer = after
+            if _left_over(step, before) <= AIM * np.abs(answer).max():
+                return answer
+        answer, exact = _direct(lambda x: x - inner(x), self._inner, given, transposed)
+        self.exact &= exact
+        return answer
+
+
+def _left_over(step: float, before: float) -> float:
+    """How far off an iteration still is, when its last two steps were this long."""
+    if step == 0:
+        return 0.0
+    ratio = step / before if before else 1.0
+    return step * ratio / (1 - ratio) if ratio < 1 else np.inf
+
+
+def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices) -> tuple[Floats, bool]:
+    """(n,) shares within each closed group, all groups at once; and whether all of them are exact."""
+    within = np.zeros(turn.people)
+    settled = np.flatnonzero(group_of >= 0)
+    if not len(settled):
+        return within, True
+    number = group_of[settled]
+    sizes = np.bincount(number, minlength=len(groups))
+    share = 1.0 / sizes[number]
+    step = np.inf
+    for _ in range(STEPS):
+        within[settled] = share
+        after = HELD_BACK * share + (1 - HELD_BACK) * turn.give_back(within)[0][settled]
+        after /= sum_by(number, after, len(groups))[number]
+        before, step = step, (np.abs(after - share) / after).max()
+        share = after
+        if _left_over(step, before) <= AIM:
+            within[settled] = share
+            return within, True
+    within[settled] = share
+    return _finished(turn, groups, number, settled, within)
+
+
+def _finished(
+    turn: LargeTurn, groups: tuple[ClosedSet, ...], number: Indices, settled: Indices, within: Floats
+) -> tuple[Floats, bool]:
+    """Does the groups again in which the iteration was too slow."""
+    moved = np.abs(turn.give_back(within)[0][settled] - within[settled]) / within[settled]
+    slow = np.unique(number[moved > 1e-14])
+    exact = True
+    for at in slow:
+        members = groups[at].members
+        if turn.matrix is not None and len(members) <= FULL_PEOPLE:
+            within[members] = stationary(turn.matrix[members][:, members].toarray())
+        else:
+            within[members], well = _influence_by_krylov(turn, members)
+            exact &= well
+    return within, exact
+
+
+def _influence_by_krylov(turn: LargeTurn, members: Indices) -> tuple[Floats, bool]:
+    """The shares of one large group: v - v P = 0, with the first member's share held at 1."""
+    whole = np.zeros(turn.people)
+    rest = members[1:]
+
+    def back(share: Floats) -> Floats:
+        whole[:] = 0.0
+        whole[rest] = share
+        return turn.give_back(whole)[0][rest]
+
+    whole[members[0]] = 1.0
+    given = turn.give_back(whole)[0][rest]
+    inner = None if turn.matrix is None else turn.matrix[rest][:, rest]
+    share, exact = _direct(lambda x: x - back(x), inner, given, transposed=True)
+    share = np.concatenate([[1.0], np.maximum(share, 0.0)])
+    return share / share.sum(), exact
+
+
+def _direct(
+    missing: Callable[[Floats], Floats], inner: csr_array | None, given: Floats, transposed: bool
+) -> tuple[Floats, bool]:
+    """Solves missing(x) = given with GMRES, or by a sparse factorisation where that does not get there.
+
+    inner: the matrix N with missing(x) = x - N x (x - x N when `transposed`), where there is one. Graphs on which
+    Krylov methods are slow hang together by few arrows, and these are the ones whose factors stay small.
+    """
+    from scipy.sparse.linalg import LinearOperator, gmres, splu
+
+    size = len(given)
+    operator = LinearOperator((size, size), matvec=missing, dtype=np.float64)
+
+    def by_krylov(wanted: Floats) -> Floats:
+        return gmres(operator, wanted, rtol=1e-10, atol=0.0, restart=KRYLOV, maxiter=KRYLOV_RESTARTS)[0]
+
+    answer, last = _refined(by_krylov, missing, given)
+    if last <= AIM or inner is None:
+        return answer, last <= ENOUGH
+    matrix = csr_array((np.ones(size), (np.arange(size), np.arange(size))), shape=(size, size)) - inner
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore")
+        factors = splu((matrix.T if transposed else matrix).tocsc())
+    answer, last = _refined(factors.solve, missing, given)
+    return answer, last <= ENOUGH
+
+
+def _refined(
+    solve: Callable[[Floats], Floats], missing: Callable[[Floats], Floats], given: Floats
+) -> tuple[Floats, float]:
+    """The answer with a few corrections, and how large the last one was beside it: how far it can be trusted."""
+    answer = solve(given)
+    last = np.inf
+    for _ in range(4):
+        correction = solve(given - missing(answer))
+        answer = answer + correction
+        before, last = last, np.abs(correction).max() / max(np.abs(answer).max(), TINY)
+        if last <= AIM / 100 or last > before / 2:
+            break
+    return answer, float(last)
