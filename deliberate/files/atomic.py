@@ -8,6 +8,7 @@ import os
 import secrets
 import stat
 from pathlib import Path
+from typing import NoReturn
 
 from deliberate.errors import DeliberateError
 
@@ -23,7 +24,11 @@ def replace_file(path: str | os.PathLike[str], data: bytes) -> None:
         old = _old_file(target)
         _replace(target, data, old)
     except (OSError, ValueError) as error:
-        raise DeliberateError(f"cannot be saved: {_why(error, Path(path))}") from None
+        _refuse(_why(error, Path(path)))
+
+
+def _refuse(why: str) -> NoReturn:
+    raise DeliberateError(f"cannot be saved: {why}") from None
 
 
 def _old_file(target: Path) -> os.stat_result | None:
@@ -34,9 +39,9 @@ def _old_file(target: Path) -> os.stat_result | None:
     if stat.S_ISDIR(old.st_mode):
         raise IsADirectoryError(errno.EISDIR, os.strerror(errno.EISDIR))
     if not stat.S_ISREG(old.st_mode):
-        raise ValueError("this is not a file but a device or a pipe")
-    if not os.access(target, os.W_OK):
-        raise ValueError("the file is read-only")
+        _refuse("this is not a file but a device or a pipe")
+    if not os.access(target, os.W_OK, effective_ids=os.access in os.supports_effective_ids):
+        _refuse("the file is read-only")
     return old
 
 
@@ -79,7 +84,7 @@ def _flush_folder(folder: Path) -> None:
 
 def _why(error: OSError | ValueError, path: Path) -> str:
     if not isinstance(error, OSError):
-        return str(error)
+        return "this is not a possible file name"
     folder = path.parent
     reasons = {
         errno.ENOSPC: "the disk is full",
