@@ -1,0 +1,454 @@
+"""The canvas: shows the picture, follows the session, and hands mouse, keys and commands to those who know them."""
+
+from __future__ import annotations
+
+import html
+
+import numpy as np
+from PySide6.QtCore import QElapsedTimer, QEvent, QPointF, QRectF, QSize, Qt, QTimer, Signal
+from PySide6.QtGui import (
+    QColor,
+    QContextMenuEvent,
+    QFocusEvent,
+    QFontMetricsF,
+    QHelpEvent,
+    QKeyEvent,
+    QMouseEvent,
+    QNativeGestureEvent,
+    QPainter,
+    QPaintEvent,
+    QResizeEvent,
+    QShowEvent,
+    QWheelEvent,
+)
+from PySide6.QtWidgets import QToolTip, QWidget
+
+from deliberate.window.canvas import grounds, overlays
+from deliberate.window.canvas.choosing import Choosing
+from deliberate.window.canvas.commands import Commands
+from deliberate.window.canvas.editors import Editors
+from deliberate.window.canvas.keys import Keys
+from deliberate.window.canvas.picture import Floats, Hit, Picture
+from deliberate.window.canvas.scene import Scene, scene_of
+from deliberate.window.canvas.tools import Mouse
+from deliberate.window.canvas.viewport import ZOOM_STEP, Viewport
+from deliberate.window.session import Session
+
+from deliberate.window.theme import Look
+
+REST_MS = 120  # after the last movement the picture is painted fine
+GLIDE_MS = 380
+FRAME_MS = 16
+
+
+class Canvas(QWidget):
+    """People, arrows and listening rings of the shown variant, and their editing in place."""
+
+    hint_changed = Signal(str)  # the sentence at the foot
+    zoom_changed = Signal(float)
+    choosing_changed = Signal(bool)
+    items_changed = Signal()  # people or arrows are others: for accessible children
+    focus_changed = Signal()
+
+    def __init__(self, session: Session, look: Look, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.session, self.look = session, look
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.setMouseTracking(True)
+        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
+        self.setAccessibleName("Picture of the committee")
+        self._remembered: dict[str, tuple[float, float]] = {}
+        self._fit_pending = self._follows_size = True
+        self._hint = ""
+        self._scenario_shown = session.scenario
+        self.picture = Picture(self._read(None), look.theme)
+        self.picture.font = self.font()
+        self.picture.starts = session.starts()
+        self._rest = QTimer(self, singleShot=True, interval=REST_MS)
+        self._rest.timeout.connect(self._settle)
+        self._glide = QTimer(self, interval=FRAME_MS)
+        self._glide.timeout.connect(self._glide_on)
+        self._glide_clock = QElapsedTimer()
+        self._glide_from = self.picture.scene.places
+        self.editors = Editors(self)
+        self.commands = Commands(self)
+        self.mouse, self.keys, self.choosing = Mouse(self), Keys(self), Choosing(self)
+        session.scenario_changed.connect(self._take_scenario)
+        session.rehearsal_changed.connect(self.update)
+        session.selection_changed.connect(self._take_selection)
+        session.lit_changed.connect(self._take_lit)
+        session.player.moved.connect(self._take_position)
+        look.changed.connect(self._dress)
+        self._take_selection()
+
+    # Commands for menus
+
+    def add_person(self) -> None:
+        """Put an editor for a new person's name on free ground."""
+        self.commands.add_person()
+
+    def rename_selected(self) -> None:
+        """Edit the selected person's name in place."""
+        self.commands.rename_selected()
+
+    def delete_selected(self) -> None:
+        """Remove the selected people and arrows."""
+        self.commands.delete_selected()
+
+    def select_all(self) -> None:
+        """Select all people."""
+        self.commands.select_all()
+
+    def cut(self) -> None:
+        """Copy the selected people, then remove them."""
+        self.commands.cut()
+
+    def copy(self) -> None:
+        """Put the selected people and the arrows among them on the clipboard."""
+        self.commands.copy()
+
+    def paste(self) -> None:
+        """Add the people on the clipboard."""
+        self.commands.paste()
+
+    def duplicate(self) -> None:
+        """Add copies of the selected people."""
+        self.commands.duplicate()
+
+    def turn_round(self) -> None:
+        """Turn the selected arrows round."""
+        self.commands.turn_round()
+
+    def arrange(self, kind: str) -> None:
+        """Place everybody anew: "circle", "groups", "hearing" or "grid"; one undoable step."""
+        before = self.picture.scene.places
+        if self.commands.arrange(kind):
+            self.fit()
+            self._start_glide(before)
+
+    def begin_choosing(self, stage: int) -> None:
+        """Let tables, speakers or pairs of a stage be chosen on the picture."""
+        self.choosing.begin(stage)
+
+    def end_choosing(self) -> None:
+        """Back to drawing."""
+        self.choosing.end()
+
+    def zoom_in(self) -> None:
+        """Nearer, around the middle."""
+        self.zoom_around(ZOOM_STEP, QPointF(self.width() / 2, self.height() / 2))
+
+    def zoom_out(self) -> None:
+        """Farther, around the middle."""
+        self.zoom_around(1 / ZOOM_STEP, QPointF(self.width() / 2, self.height() / 2))
+
+    def fit(self) -> None:
+        """Show everybody, and keep doing so when the window changes its size."""
+        self._follows_size = True
+        self.picture.fit()
+        self._view_changed()
+
+    def set_flow(self, flow: bool) -> None:
+        """Let arrows show the way beliefs travel instead of pointing at the person listened to."""
+        self.picture.flow = flow
+        self.picture.touch()
+        self.update()
+
+    def accept_typing(self) -> None:
+        """Take what is typed in the editor on the picture."""
+        self.editors.accept()
+
+    def cancel_typing(self) -> None:
+        """Leave the editor on the picture, with everything as it was."""
+        self.editors.cancel()
+
+    # The view
+
+    def zoom_around(self, factor: float, at: QPointF) -> None:
+        """Zoom with what is at a pixel staying there."""
+        self._follows_size = False
+        self.picture.look_at(self.picture.view.zoomed(factor, at.x(), at.y(), self.picture.scene.radius))
+        self._view_changed()
+
+    def pan(self, dx: float, dy: float) -> None:
+        """Move the picture by pixels."""
+        self._follows_size = False
+        self.picture.look_at(self.picture.view.moved(dx, dy))
+        self._view_changed()
+
+    def view(self) -> Viewport:
+        """The present zoom and place."""
+        return self.picture.view
+
+    def to_scene(self, at: QPointF) -> Floats:
+        """A pixel in scene units."""
+        return self.picture.view.to_scene(np.array([at.x(), at.y()]))
+
+    def stir(self) -> None:
+        """Something moves: paint coarse where that is needed, and fine a moment after the last time."""
+        self._rest.start()
+        self.update()
+
+    def _view_changed(self) -> None:
+        self.editors.follow()
+        self.zoom_changed.emit(self.picture.view.zoom)
+        self.stir()
+
+    def _settle(self) -> None:
+        self.update()
+
+    # Following the session
+
+    def beliefs(self) -> Floats:
+        """What people believe at the present position."""
+        beliefs = self.session.beliefs_at(self.session.player.position)
+        # While an edit is under way the rehearsal may still be one of other people.
+        return beliefs if len(beliefs) == len(self.picture.scene.ids) else self.session.starts()
+
+    def shown_stage(self) -> int:
+        """The stage whose voices the rings show."""
+        if self.choosing.stage is not None:
+            return self.choosing.stage
+        return self.session.stage_at(self.session.player.position)
+
+    def _read(self, before: Scene | None) -> Scene:
+        radius = None if before is None or self._fit_pending else before.radius
+        return scene_of(self.session.variant, self.session.question, self._remembered, radius, before)
+
+    def _take_scenario(self) -> None:
+        session = self.session
+        if session.undo_step is None and session.redo_step is None and session.scenario is not self._scenario_shown:
+            self._remembered.clear()
+            self._fit_pending = self._follows_size = True
+        before = self.picture.scene
+        same_variant = before.variant.name == session.variant.name
+        scene = self._read(before)
+        self.mouse.forget()
+        self.picture.show(scene)
+        self.picture.starts = session.starts()
+        self._scenario_shown = session.scenario
+        if self._fit_pending or (not same_variant and self._follows_size):
+            self._fit_pending = False
+            self.picture.fit()
+        self.choosing.check()
+        self._take_selection()
+        self._take_position()
+        self._take_lit()
+        self.items_changed.emit()
+        self.stir()
+
+    def _take_selection(self) -> None:
+        scene, selection, marks = self.picture.scene, self.session.selection, self.picture.emphasis
+        marks.people = {scene.index[one] for one in selection.people if one in scene.index}
+        marks.arrows = {scene.arrow_index[pair] for pair in selection.arrows if pair in scene.arrow_index}
+        self.keys.check_focus()
+        self.picture.touch()
+        self.refresh_hint()
+        self.stir()
+
+    def _take_lit(self) -> None:
+        self.refresh_grounds()
+        finding, marks, scene = self.session.lit, self.picture.emphasis, self.picture.scene
+        marks.lit_people = marks.lit_arrows = None
+        if finding is not None:
+            marks.lit_people = {scene.index[one] for one in finding.people if one in scene.index}
+            marks.lit_arrows = grounds.lit_arrows(finding, scene)
+        self.picture.touch()
+        self.stir()
+
+    def refresh_grounds(self) -> None:
+        """Read again which grounds there are."""
+        picture, finding = self.picture, self.session.lit
+        if finding is not None:
+            wanted = grounds.of_finding(finding, picture.scene)
+        else:
+            stage = self.session.variant.plan.stages[self.shown_stage()]
+            seats = picture.scene.places
+            wanted = grounds.of_stage(stage, picture.scene, seats, picture.scene.radius)
+        if wanted != picture.grounds:
+            picture.grounds = wanted
+            picture.touch()
+
+    def stage_shown_changed(self) -> None:
+        """The stage whose voices and grounds are shown may be another one."""
+        self.picture.touch()
+        self._take_position()
+        self.refresh_grounds()
+        self.stir()
+
+    def _take_position(self) -> None:
+        stage = self.shown_stage()
+        if stage != self.picture.stage:
+            self.picture.stage = stage
+            self.picture.touch()
+            self.refresh_grounds()
+            self._rest.start()
+        self.update()
+
+    def _dress(self) -> None:
+        self.picture.theme = self.look.theme
+        self.picture.touch()
+        self.stir()
+
+    # Gliding to new places
+
+    def _start_glide(self, before: Floats) -> None:
+        after = self.picture.scene.places
+        if self.look.still or len(before) != len(after) or np.array_equal(before, after):
+            return
+        self._glide_from = before
+        self.picture.move(np.ones(len(after), dtype=bool), before)
+        self._glide_clock.start()
+        self._glide.start()
+
+    def _glide_on(self) -> None:
+        share = self._glide_clock.elapsed() / GLIDE_MS
+        after = self.picture.scene.places
+        if share >= 1 or len(after) != len(self._glide_from):
+            self._glide.stop()
+            self.picture.move(None)
+        else:
+            eased = share * share * (3 - 2 * share)
+            self.picture.move(np.ones(len(after), dtype=bool), self._glide_from + (after - self._glide_from) * eased)
+        self.stir()
+
+    # What is said
+
+    def hit(self, at: QPointF) -> Hit:
+        """What is at a pixel."""
+        return self.picture.hit(at.x(), at.y())
+
+    def sentence(self, hit: Hit | None) -> str:
+        """A person or an arrow in words."""
+        scene = self.picture.scene
+        if hit is None or hit.index < 0:
+            return ""
+        if hit.kind == "arrow":
+            counting = self.picture.look().dashed[hit.index]
+            return scene.sentence(hit.index) + (", does not count in this stage" if counting else "")
+        return scene.about(hit.index, float(self.beliefs()[hit.index]))
+
+    def refresh_hint(self) -> None:
+        """Say again what is pointed at, focused or selected, or what to do."""
+        marks = self.picture.emphasis
+        text = self.editors.hint() or self.mouse.hint() or self.keys.hint()
+        text = text or self.sentence(marks.hover) or self.sentence(marks.focus)
+        if not text and len(marks.arrows) == 1 and not marks.people:
+            text = self.sentence(Hit("arrow", next(iter(marks.arrows))))
+        if text != self._hint:
+            self._hint = text
+            self.hint_changed.emit(text)
+            self.update()
+
+    # Qt's events
+
+    def sizeHint(self) -> QSize:
+        return QSize(620, 560)
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(240, 200)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        del event
+        picture, player, theme = self.picture, self.session.player, self.look.theme
+        if picture.ratio != self.devicePixelRatioF():
+            picture.resize(self.width(), self.height(), self.devicePixelRatioF())
+        position = player.position
+        whole = abs(position - round(position)) < 1e-9
+        resting = not self._rest.isActive() and picture.moving is None
+        with QPainter(self) as painter:
+            painter.setFont(self.font())
+            picture.paint(painter, self.beliefs(), gliding=not whole, at_start=position < 0.5, resting=resting)
+            self.choosing.paint(painter)
+            self.mouse.paint(painter)
+            painter.setFont(self.font())
+            self._paint_words(painter)
+            if not picture.scene.ids and not self.editors.open_for_name:
+                overlays.paint_empty(painter, QRectF(self.rect()), theme)
+            if self.hasFocus():
+                painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
+                painter.setBrush(Qt.BrushStyle.NoBrush)
+                painter.setPen(QColor(theme.accent) if self.keys.shows_focus else QColor(theme.line))
+                painter.drawRect(self.rect().adjusted(0, 0, -1, -1))
+
+    def _paint_words(self, painter: QPainter) -> None:
+        theme, question = self.look.theme, self.session.question
+        if self.choosing.stage is None:
+            room = overlays.scale_width(QFontMetricsF(self.font()), question)
+            overlays.paint_legend(painter, self.width(), self.picture.legend(), theme, room)
+            if self.picture.scene.ids and self.width() > 420:
+                overlays.paint_scale(painter, self.width(), question, theme)
+        overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme, strong=True)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        self.picture.resize(self.width(), self.height(), self.devicePixelRatioF())
+        if self._follows_size:
+            self._fit_pending = False
+            self.picture.fit()
+        self.choosing.lay_out()
+        self._view_changed()
+        super().resizeEvent(event)
+
+    def showEvent(self, event: QShowEvent) -> None:
+        self._rest.stop()
+        super().showEvent(event)
+
+    def changeEvent(self, event: QEvent) -> None:
+        if event.type() in (QEvent.Type.FontChange, QEvent.Type.ApplicationFontChange) and hasattr(self, "picture"):
+            self.picture.font = self.font()
+            self.picture.touch(names=True)
+            self.update()
+        super().changeEvent(event)
+
+    def event(self, event: QEvent) -> bool:
+        if isinstance(event, QHelpEvent) and event.type() == QEvent.Type.ToolTip:
+            text = self.sentence(self.hit(QPointF(event.pos())))
+            if text:
+                QToolTip.showText(event.globalPos(), f"<span>{html.escape(text)}</span>", self)
+            else:
+                QToolTip.hideText()
+            return True
+        if isinstance(event, QNativeGestureEvent) and event.gestureType() == Qt.NativeGestureType.ZoomNativeGesture:
+            self.zoom_around(1 + event.value(), event.position())
+            return True
+        return super().event(event)
+
+    def mousePressEvent(self, event: QMouseEvent) -> None:
+        self.mouse.press(event)
+
+    def mouseMoveEvent(self, event: QMouseEvent) -> None:
+        self.mouse.move(event)
+
+    def mouseReleaseEvent(self, event: QMouseEvent) -> None:
+        self.mouse.release(event)
+
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        self.mouse.double_click(event)
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        self.mouse.wheel(event)
+
+    def leaveEvent(self, event: QEvent) -> None:
+        self.mouse.leave()
+        super().leaveEvent(event)
+
+    def contextMenuEvent(self, event: QContextMenuEvent) -> None:
+        # The mouse's own menu opens at release, because dragging with the right button pans.
+        if event.reason() != QContextMenuEvent.Reason.Mouse:
+            self.commands.show_menu(self.keys.menu_place())
+        event.accept()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if not self.keys.press(event):
+            super().keyPressEvent(event)
+
+    def focusNextPrevChild(self, forward: bool) -> bool:
+        return self.keys.tab(forward) or super().focusNextPrevChild(forward)
+
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        self.keys.focus_in(event.reason())
+        super().focusInEvent(event)
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        self.keys.focus_out()
+        super().focusOutEvent(event)

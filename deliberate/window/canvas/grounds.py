@@ -1,0 +1,56 @@
+"""Which grounds the picture needs: those of a finding that is pointed at, or the tables of the present stage."""
+
+from __future__ import annotations
+
+from deliberate.rehearsal.results import Finding
+from deliberate.scenario.values import Stage
+from deliberate.window.canvas.hulls import Ground, tidy
+from deliberate.window.canvas.scene import Floats, Scene
+
+_LETTERS = "ABCDEFGHIJKLMNOPQRSTUVWXYZ"
+
+
+def of_finding(finding: Finding, scene: Scene) -> list[Ground]:
+    """One ground for each group of a finding, with what joins them written on it."""
+    groups = [tuple(scene.index[one] for one in group if one in scene.index) for group in finding.groups]
+    groups = [group for group in groups if group]
+    return [Ground(group, _title(finding.kind, number, len(groups))) for number, group in enumerate(groups)]
+
+
+def of_stage(stage: Stage, scene: Scene, points: Floats, radius: float, *, always: bool = False) -> list[Ground]:
+    """A ground for each table, unless they would run through each other."""
+    if stage.setting != "tables" or len(stage.tables) < 2:
+        return []
+    groups = [tuple(scene.index[one] for one in table if one in scene.index) for table in stage.tables]
+    if not always and not tidy(points, groups, radius):
+        return []
+    return [Ground(group, f"Table {number}", lit=False) for number, group in enumerate(groups, start=1) if group]
+
+
+def lit_arrows(finding: Finding, scene: Scene) -> set[int]:
+    """The arrows to light up: those that the finding names, else those inside its groups."""
+    if finding.arrows:
+        return {scene.arrow_index[pair] for pair in finding.arrows if pair in scene.arrow_index}
+    together = finding.groups or ((finding.people,) if len(finding.people) > 1 else ())
+    if finding.kind == "swing":  # its arrows run from phase to phase
+        together = (finding.people,)
+    result: set[int] = set()
+    for group in together:
+        members = set(group)
+        result |= {place for pair, place in scene.arrow_index.items() if pair[0] in members and pair[1] in members}
+    return result
+
+
+def _title(kind: str, number: int, count: int) -> str:
+    letter = _LETTERS[number % len(_LETTERS)]
+    match kind:
+        case "closed-groups":
+            return "hear only each other"
+        case "swing":
+            return f"phase {letter}"
+        case "outside":
+            return "outside"
+        case _ if count > 1:
+            return f"side {letter}" if count == 2 else f"group {letter}"
+        case _:
+            return ""

@@ -1,0 +1,128 @@
+"""Where names go: below the person, or wherever they cover no disc, no other name and as few arrows as may be.
+
+Free of Qt. All in pixels; sizes are those of the measured texts.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+Floats = NDArray[np.float64]
+Indices = NDArray[np.intp]
+
+CELL = 6.0  # pixels of the grid in which arrows are looked up
+GAP = 5.0  # between ring and name
+_OVER_DISC, _OVER_ARROW = 60.0, 1.0
+# Middle of the name relative to the person: columns times (radius + gap + half a name), rows likewise. Later places
+# are only taken when they are better by the price in the last column.
+_PLACES = np.array(
+    [
+        (0.0, 1.0, 0.0),
+        (0.0, -1.0, 1.5),
+        (1.0, 0.0, 2.5),
+        (-1.0, 0.0, 2.5),
+        (0.75, 0.8, 3.0),
+        (-0.75, 0.8, 3.0),
+        (0.75, -0.8, 3.5),
+        (-0.75, -0.8, 3.5),
+    ]
+)
+
+
+OVER_NAME = 90.0  # what covering another name costs
+
+
+def place_labels(places: Floats, radius: float, sizes: Floats, arrow_lines: Floats) -> tuple[Indices, Floats]:
+    """Which place each name takes (for `offsets`), and what it covers there (0: nothing at all).
+
+    `places` (people, 2), `sizes` (people, 2), `arrow_lines` rows (x1, y1, x2, y2). Shapes (people,).
+    """
+    count = len(places)
+    if count == 0:
+        return np.zeros(0, dtype=np.intp), np.zeros(0)
+    half = sizes / 2
+    middle = places[:, None] + _PLACES[None, :, :2] * _steps(radius, half)[:, None]  # (people, candidates, 2)
+    price = np.broadcast_to(_PLACES[:, 2], middle.shape[:2]) + _Ink(arrow_lines).under(middle, half) * _OVER_ARROW
+    price = price + _discs_covered(middle, half, places, radius) * _OVER_DISC
+    return _choose(middle, half, price)
+
+
+def offsets(chosen: Indices, radius: float, sizes: Floats) -> Floats:
+    """Middles of the names relative to their people, at places chosen before, shape (people, 2)."""
+    result: Floats = _PLACES[chosen, :2] * _steps(radius, sizes / 2)
+    return result
+
+
+def _steps(radius: float, half: Floats) -> Floats:
+    """How far a name moves away from the middle of its person, sideways and up or down, shape (people, 2)."""
+    return np.stack([radius + GAP * 1.6 + half[:, 0], radius + GAP + half[:, 1]], axis=1)
+
+
+def _choose(middle: Floats, half: Floats, price: Floats) -> tuple[Indices, Floats]:
+    """One place for each, those with the least choice first, and no name on another."""
+    count = len(middle)
+    rows = np.arange(count)
+    chosen = np.zeros(count, dtype=np.intp)
+    done = np.zeros(count, dtype=bool)
+    order = np.argsort(-np.sort(price, axis=1)[:, 1], kind="stable")
+    cost = np.zeros(count)
+    for person in order:
+        own = price[person]
+        if done.any():
+            taken = middle[rows[done], chosen[done]]
+            apart = np.abs(taken[None] - middle[person][:, None]) - (half[done][None] + half[person])
+            own = own + (apart < 0).all(axis=-1).sum(axis=1) * OVER_NAME
+        best = int(own.argmin())
+        chosen[person], done[person] = best, True
+        cost[person] = own[best] - _PLACES[best, 2]
+    return chosen, cost
+
+
+def _discs_covered(middle: Floats, half: Floats, places: Floats, radius: float) -> Floats:
+    """How many people each candidate lies on, her own disc included."""
+    covered = np.zeros(middle.shape[:2])
+    for candidate in range(middle.shape[1]):
+        away = np.abs(middle[:, candidate, None] - places[None]) - half[:, None]
+        covered[:, candidate] = (np.hypot(*np.moveaxis(np.maximum(away, 0.0), -1, 0)) < radius + 1).sum(axis=1)
+    return covered
+
+
+class _Ink:
+    """Arrow ink per cell as a summed-area table (Crow 1984), so that any rectangle is looked up in four reads."""
+
+    def __init__(self, lines: Floats) -> None:
+        points = _sampled(lines)
+        self._low = points.min(axis=0) if len(points) else np.zeros(2)
+        cells = np.floor((points - self._low) / CELL).astype(np.intp)
+        shape = cells.max(axis=0) + 1 if len(points) else np.array([1, 1])
+        flat = np.bincount(cells[:, 0] * shape[1] + cells[:, 1], minlength=shape[0] * shape[1]) if len(points) else 0
+        table = np.zeros((shape[0] + 1, shape[1] + 1))
+        if len(points):
+            table[1:, 1:] = np.minimum(flat.reshape(shape), 1).cumsum(axis=0).cumsum(axis=1)
+        self._table = table
+
+    def under(self, middle: Floats, half: Floats) -> Floats:
+        """Inked cells under each candidate rectangle."""
+        reach = np.array(self._table.shape) - 1
+        low = np.clip(np.floor((middle - half[:, None] - self._low) / CELL), 0, reach).astype(np.intp)
+        high = np.clip(np.ceil((middle + half[:, None] - self._low) / CELL), 0, reach).astype(np.intp)
+        t = self._table
+        inked: Floats = (
+            t[high[..., 0], high[..., 1]]
+            - t[low[..., 0], high[..., 1]]
+            - t[high[..., 0], low[..., 1]]
+            + t[low[..., 0], low[..., 1]]
+        )
+        return inked
+
+
+def _sampled(lines: Floats) -> Floats:
+    """Points along the lines, about one per cell."""
+    if len(lines) == 0:
+        return np.zeros((0, 2))
+    length = np.hypot(lines[:, 2] - lines[:, 0], lines[:, 3] - lines[:, 1])
+    pieces = np.maximum(1, np.ceil(length / CELL)).astype(np.intp)
+    owner = np.repeat(np.arange(len(lines)), pieces)
+    share = (np.arange(len(owner)) - np.repeat(np.cumsum(pieces) - pieces, pieces)) / pieces[owner]
+    return lines[owner, :2] + (lines[owner, 2:] - lines[owner, :2]) * share[:, None]

@@ -1,0 +1,116 @@
+"""Names on the canvas: wrapped over two lines, placed clear of discs and arrows, painted from cached layouts."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+from PySide6.QtCore import QPointF, QSizeF, Qt
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QStaticText, QTextOption
+
+from deliberate.window.canvas.labels import OVER_NAME, offsets, place_labels
+from deliberate.window.theme import Theme
+
+Floats = NDArray[np.float64]
+Indices = NDArray[np.intp]
+
+LEAST_PX = 7.0  # radius below which names are shown only for those selected or pointed at
+_HALO = ((-1, 0), (1, 0), (0, -1), (0, 1), (-1, -1), (1, 1), (-1, 1), (1, -1))
+
+
+class Names:
+    """Measured names of one set of people at one size, and where they go."""
+
+    def __init__(self) -> None:
+        self._texts: dict[tuple[str, int], tuple[QStaticText, QSizeF]] = {}
+        self._font: QFont | None = None
+        self._chosen = np.zeros(0, dtype=np.intp)
+        self.sizes = np.zeros((0, 2))
+        self.crowded = np.zeros(0)
+        self._shown: list[QStaticText] = []
+
+    def place(
+        self, names: tuple[str, ...], points: Floats, radius: float, arrow_lines: Floats, font: QFont, room: float
+    ) -> None:
+        """Measure and place the names of people at `points` (pixels); `room` is how wide a line may be."""
+        if self._font != font or len(self._texts) > 4000:
+            self._texts.clear()
+            self._font = QFont(font)
+        laid = [self._laid(name, room) for name in names]
+        self._shown = [text for text, _ in laid]
+        self.sizes = np.array([(size.width(), size.height()) for _, size in laid]).reshape(len(names), 2)
+        self._chosen, self.crowded = place_labels(points, radius, self.sizes, arrow_lines)
+
+    def readable(self) -> NDArray[np.bool_]:
+        """Whose name does not lie on another's, shape (people,)."""
+        return self.crowded < OVER_NAME
+
+    def areas(self, points: Floats, radius: float) -> Floats:
+        """Where the names are, as rows (left, top, width, height)."""
+        corner = points + offsets(self._chosen, radius, self.sizes) - self.sizes / 2
+        return np.concatenate([corner, self.sizes], axis=1)
+
+    def paint(
+        self, painter: QPainter, points: Floats, radius: float, which: Indices, theme: Theme, pale: NDArray[np.bool_]
+    ) -> None:
+        """Paint the names of `which`, with a halo of the paper where something lies behind."""
+        if self._font is None:
+            return
+        painter.setFont(self._font)
+        ink, muted, paper = QColor(theme.ink), QColor(theme.muted), QColor(theme.canvas)
+        corner = self.areas(points, radius)[:, :2]
+        for index in which.tolist():
+            x, y = corner[index]
+            text = self._shown[index]
+            if self.crowded[index] > 0.5:
+                painter.setPen(paper)
+                for dx, dy in _HALO:
+                    painter.drawStaticText(QPointF(x + dx * 1.2, y + dy * 1.2), text)
+            painter.setPen(muted if pale[index] else ink)
+            painter.drawStaticText(QPointF(x, y), text)
+
+    def _laid(self, name: str, room: float) -> tuple[QStaticText, QSizeF]:
+        key = (name, round(room))
+        if key not in self._texts:
+            assert self._font is not None
+            lines = wrapped(name, self._font, room)
+            metrics = QFontMetricsF(self._font)
+            width = max(metrics.horizontalAdvance(line) for line in lines)
+            text = QStaticText("\n".join(lines).replace("\n", "\u2028"))
+            text.setTextFormat(Qt.TextFormat.PlainText)
+            option = QTextOption(Qt.AlignmentFlag.AlignHCenter)
+            option.setWrapMode(QTextOption.WrapMode.ManualWrap)
+            text.setTextOption(option)
+            text.setTextWidth(width + 2)
+            text.prepare(font=self._font)
+            self._texts[key] = (text, QSizeF(width + 2, metrics.height() * len(lines)))
+        return self._texts[key]
+
+
+def wrapped(name: str, font: QFont, room: float) -> list[str]:
+    """`name` on one line, or on two of which the second is shortened; broken at a space where there is one."""
+    metrics = QFontMetricsF(font)
+    if metrics.horizontalAdvance(name) <= room:
+        return [name]
+    words = name.split(" ")
+    first = words[0]
+    used = 1
+    while used < len(words) and metrics.horizontalAdvance(f"{first} {words[used]}") <= room:
+        first += f" {words[used]}"
+        used += 1
+    rest = " ".join(words[used:])
+    if metrics.horizontalAdvance(first) > room or not rest:
+        cut = max(1, _fitting(name, metrics, room))
+        first, rest = name[:cut], name[cut:]
+    return [first, metrics.elidedText(rest, Qt.TextElideMode.ElideRight, room)]
+
+
+def _fitting(text: str, metrics: QFontMetricsF, room: float) -> int:
+    """How many characters of `text` fit into `room`."""
+    low, high = 0, len(text)
+    while low < high:
+        middle = (low + high + 1) // 2
+        if metrics.horizontalAdvance(text[:middle]) <= room:
+            low = middle
+        else:
+            high = middle - 1
+    return low
