@@ -45,6 +45,7 @@ class Engine(QObject):
         self._pool.setMaxThreadCount(1)
         self._loaded = False
         self._latest: Ask | None = None
+        self._answered: Ask | None = None  # the latest ask whose findings are out, or that failed
         self._came.connect(self._deliver)
         self._broke.connect(self._report)
 
@@ -60,15 +61,19 @@ class Engine(QObject):
             try:
                 rehearsal = self._rehearse(ask)
             except DeliberateError as error:
-                self.failed.emit(ask, str(error))
+                self._fail(ask, error)
                 return
             self.rehearsed.emit(ask, rehearsal)
             if len(ask.variant.people) <= FINDINGS_AT_ONCE_PEOPLE:
-                self.found.emit(ask, self._find(ask, rehearsal))
+                self._finish(ask, self._find(ask, rehearsal))
             else:
                 self._start(ask, lambda: self._find(ask, rehearsal))
             return
         self._start(ask, lambda: self._rehearse(ask))
+
+    def idle(self) -> bool:
+        """Whether the latest ask is answered in full."""
+        return self._answered is self._latest
 
     def stop(self) -> None:
         """Forget what is asked and wait for the worker."""
@@ -107,10 +112,18 @@ class Engine(QObject):
             self.rehearsed.emit(ask, result)
             self._start(ask, lambda: self._find(ask, result))
         else:
-            self.found.emit(ask, result)
+            self._finish(ask, result)
 
     def _report(self, ask: Ask, error: Exception) -> None:
         if not isinstance(error, DeliberateError):
             raise error
         if ask is self._latest:
-            self.failed.emit(ask, str(error))
+            self._fail(ask, error)
+
+    def _finish(self, ask: Ask, findings: tuple[Finding, ...]) -> None:
+        self._answered = ask
+        self.found.emit(ask, findings)
+
+    def _fail(self, ask: Ask, error: DeliberateError) -> None:
+        self._answered = ask
+        self.failed.emit(ask, str(error))

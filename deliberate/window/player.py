@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import math
+
 from PySide6.QtCore import QElapsedTimer, QObject, Qt, QTimer, Signal
 
 FRAME_MS = 16
+STEP_SECONDS = 0.45
 REST_SHARE = 0.35  # of each round's time the picture rests on the round, so that it can be read
 SPEEDS = (0.25, 0.5, 1.0, 2.0, 4.0, 8.0)  # rounds a second
 
@@ -102,8 +105,8 @@ class Player(QObject):
         """Glide to the next whole round (`by` = 1) or the one before (-1)."""
         self.pause()
         here = self._target if self._target is not None else self.position
-        target = int(here + 1e-9) + 1 if by > 0 else -int(-here + 1e-9) - 1
-        self._glide_to(float(min(max(target, 0), self.last)), seconds=0.45)
+        target = math.floor(here + 1e-9) + 1 if by > 0 else math.ceil(here - 1e-9) - 1
+        self._glide_to(float(min(max(target, 0), self.last)), seconds=STEP_SECONDS)
 
     def _set_off(self) -> None:
         if self.position >= self.last:
@@ -114,6 +117,10 @@ class Player(QObject):
         self._glide_to(float(self.round + 1), seconds=1.0 / self.speed)
 
     def _glide_to(self, target: float, seconds: float) -> None:
+        if target == self.position:
+            self._target = None
+            self._timer.stop()
+            return
         self._from, self._target, self._seconds = self.position, target, seconds
         if self.still and not self._playing:
             self._arrive()

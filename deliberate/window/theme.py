@@ -113,12 +113,12 @@ def contrast(one: QColor, other: QColor) -> float:
     return (high + 0.05) / (low + 0.05)
 
 
-INK_ON_FILL = (QColor("#17181c"), QColor("#ffffff"))
+INK_ON_FILL = (QColor("#000000"), QColor("#ffffff"))  # only these two reach 4.5:1 on every fill
 
 
 @lru_cache(maxsize=1024)
 def ink_on(rgb: int) -> QColor:
-    """Near-black or white, whichever reads better on a fill given as ``QColor.rgb()``."""
+    """Black or white, whichever reads better on a fill given as ``QColor.rgb()``."""
     fill = QColor.fromRgb(rgb)
     return max(INK_ON_FILL, key=lambda ink: contrast(ink, fill))
 

@@ -6,11 +6,17 @@ import gc
 import threading
 import time
 from collections.abc import Callable, Iterator
+from pathlib import Path
 
 import pytest
-from PySide6.QtCore import QCoreApplication, QEvent, QObject, QThread, QThreadPool, QTimer
+from PySide6.QtCore import QCoreApplication, QEvent, QObject, QSettings, QThread, QThreadPool, QTimer
 from PySide6.QtWidgets import QApplication
+from pytestqt.qtbot import QtBot
 from shiboken6 import isValid
+
+from deliberate.scenario.values import Scenario
+from deliberate.window.session import Session
+from deliberate.window.theme import Look
 
 # A worker that was told to stop may need a moment; one that was not is still there after it.
 GRACE_SECONDS = 5.0
@@ -64,3 +70,30 @@ def _living(kind: type[QObject]) -> list[QObject]:
 
 def _without(before: list[object], now: list[object]) -> list[object]:
     return [thing for thing in now if not any(thing is other for other in before)]
+
+
+@pytest.fixture
+def look(tmp_path: Path, qapp: QApplication) -> Look:
+    """The light appearance, with settings of its own."""
+    kept = Look(QSettings(str(tmp_path / "settings.ini"), QSettings.Format.IniFormat))
+    kept.choose("light")
+    return kept
+
+
+@pytest.fixture
+def open_session(qtbot: QtBot) -> Iterator[Callable[..., Session]]:
+    """Opens sessions, rehearsed unless told otherwise, and closes them at the end."""
+    opened: list[Session] = []
+
+    def open_one(scenario: Scenario, *, rehearsed: bool = True) -> Session:
+        session = Session(scenario)
+        opened.append(session)
+        if rehearsed:
+            session.rehearse()
+            qtbot.waitUntil(lambda: session.rehearsal is not None, timeout=20_000)
+            qtbot.waitUntil(session.engine.idle, timeout=20_000)
+        return session
+
+    yield open_one
+    for session in opened:
+        session.close()
