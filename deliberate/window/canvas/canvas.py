@@ -5,9 +5,8 @@ from __future__ import annotations
 import html
 
 import numpy as np
-from PySide6.QtCore import QElapsedTimer, QEvent, QPointF, QRectF, QSize, Qt, QTimer, Signal
+from PySide6.QtCore import QEvent, QPointF, QRectF, QSize, Qt, QTimer, Signal
 from PySide6.QtGui import (
-    QColor,
     QContextMenuEvent,
     QFocusEvent,
     QFontMetricsF,
@@ -27,18 +26,16 @@ from deliberate.window.canvas import grounds, overlays
 from deliberate.window.canvas.choosing import Choosing
 from deliberate.window.canvas.commands import Commands
 from deliberate.window.canvas.editors import Editors
+from deliberate.window.canvas.glide import Glide
 from deliberate.window.canvas.keys import Keys
 from deliberate.window.canvas.picture import Floats, Hit, Picture
 from deliberate.window.canvas.scene import Scene, scene_of
 from deliberate.window.canvas.tools import Mouse
 from deliberate.window.canvas.viewport import ZOOM_STEP, Viewport
 from deliberate.window.session import Session
-
 from deliberate.window.theme import Look
 
 REST_MS = 120  # after the last movement the picture is painted fine
-GLIDE_MS = 380
-FRAME_MS = 16
 
 
 class Canvas(QWidget):
@@ -66,10 +63,7 @@ class Canvas(QWidget):
         self.picture.starts = session.starts()
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
         self._rest.timeout.connect(self._settle)
-        self._glide = QTimer(self, interval=FRAME_MS)
-        self._glide.timeout.connect(self._glide_on)
-        self._glide_clock = QElapsedTimer()
-        self._glide_from = self.picture.scene.places
+        self._glide = Glide(self)
         self.editors = Editors(self)
         self.commands = Commands(self)
         self.mouse, self.keys, self.choosing = Mouse(self), Keys(self), Choosing(self)
@@ -79,7 +73,9 @@ class Canvas(QWidget):
         session.lit_changed.connect(self._take_lit)
         session.player.moved.connect(self._take_position)
         look.changed.connect(self._dress)
+        self._take_position()
         self._take_selection()
+        self._take_lit()
 
     # Commands for menus
 
@@ -124,7 +120,7 @@ class Canvas(QWidget):
         before = self.picture.scene.places
         if self.commands.arrange(kind):
             self.fit()
-            self._start_glide(before)
+            self._glide.begin(before)
 
     def begin_choosing(self, stage: int) -> None:
         """Let tables, speakers or pairs of a stage be chosen on the picture."""
@@ -224,6 +220,7 @@ class Canvas(QWidget):
         same_variant = before.variant.name == session.variant.name
         scene = self._read(before)
         self.mouse.forget()
+        self._glide.stop()
         self.picture.show(scene)
         self.picture.starts = session.starts()
         self._scenario_shown = session.scenario
@@ -290,28 +287,6 @@ class Canvas(QWidget):
         self.picture.touch()
         self.stir()
 
-    # Gliding to new places
-
-    def _start_glide(self, before: Floats) -> None:
-        after = self.picture.scene.places
-        if self.look.still or len(before) != len(after) or np.array_equal(before, after):
-            return
-        self._glide_from = before
-        self.picture.move(np.ones(len(after), dtype=bool), before)
-        self._glide_clock.start()
-        self._glide.start()
-
-    def _glide_on(self) -> None:
-        share = self._glide_clock.elapsed() / GLIDE_MS
-        after = self.picture.scene.places
-        if share >= 1 or len(after) != len(self._glide_from):
-            self._glide.stop()
-            self.picture.move(None)
-        else:
-            eased = share * share * (3 - 2 * share)
-            self.picture.move(np.ones(len(after), dtype=bool), self._glide_from + (after - self._glide_from) * eased)
-        self.stir()
-
     # What is said
 
     def hit(self, at: QPointF) -> Hit:
@@ -350,7 +325,7 @@ class Canvas(QWidget):
 
     def paintEvent(self, event: QPaintEvent) -> None:
         del event
-        picture, player, theme = self.picture, self.session.player, self.look.theme
+        picture, player = self.picture, self.session.player
         if picture.ratio != self.devicePixelRatioF():
             picture.resize(self.width(), self.height(), self.devicePixelRatioF())
         position = player.position
@@ -363,22 +338,19 @@ class Canvas(QWidget):
             self.mouse.paint(painter)
             painter.setFont(self.font())
             self._paint_words(painter)
-            if not picture.scene.ids and not self.editors.open_for_name:
-                overlays.paint_empty(painter, QRectF(self.rect()), theme)
-            if self.hasFocus():
-                painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
-                painter.setBrush(Qt.BrushStyle.NoBrush)
-                painter.setPen(QColor(theme.accent) if self.keys.shows_focus else QColor(theme.line))
-                painter.drawRect(self.rect().adjusted(0, 0, -1, -1))
 
     def _paint_words(self, painter: QPainter) -> None:
-        theme, question = self.look.theme, self.session.question
+        theme, question, picture = self.look.theme, self.session.question, self.picture
         if self.choosing.stage is None:
             room = overlays.scale_width(QFontMetricsF(self.font()), question)
-            overlays.paint_legend(painter, self.width(), self.picture.legend(), theme, room)
-            if self.picture.scene.ids and self.width() > 420:
+            overlays.paint_legend(painter, self.width(), picture.legend(), theme, room)
+            if picture.scene.ids and self.width() > 420:
                 overlays.paint_scale(painter, self.width(), question, theme)
-        overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme, strong=True)
+        overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme)
+        if not picture.scene.ids and not self.editors.open_for_name:
+            overlays.paint_empty(painter, QRectF(self.rect()), theme)
+        if self.hasFocus():
+            overlays.paint_edge(painter, self.rect(), theme, strong=self.keys.shows_focus)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         self.picture.resize(self.width(), self.height(), self.devicePixelRatioF())

@@ -14,9 +14,11 @@ Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
 Flags = NDArray[np.bool_]
 
-PART = 0.085  # how far two arrows between the same two people stand apart in the middle, each, of their length
-BENDS = (0.0, 0.1, -0.1, 0.18, -0.18, 0.28, -0.28)
-BENDS_OF_PAIRS = (PART, 0.16, 0.24, 0.32)
+# How far arrows pass from the straight line in the middle, in radii of a person.
+PART = 0.3  # the two between the same two people, each to its right
+AROUND = (0.0, 1.25, -1.25, 2.2, -2.2)  # tried in this order where somebody stands in between
+AROUND_OF_PAIRS = (PART, 1.25, 1.6, 2.2)
+MOST_BENT = 0.26  # of their length
 MOST_TO_BEND = 60_000  # arrows times people: beyond it arrows may run behind others' discs
 _SAMPLES = np.linspace(0.0, 1.0, 17)
 
@@ -60,21 +62,28 @@ def bends(places: Floats, listener: Indices, source: Indices, radius: float) -> 
     Arrows of a two-way pair are bent apart; others are straight unless somebody stands in between.
     """
     pairs = two_way(listener, source, len(places))
-    result = np.where(pairs, PART, 0.0)
+    length = np.maximum(np.hypot(*(places[source] - places[listener]).T), 1e-9)
+    result = np.where(pairs, _bend(PART, radius, length), 0.0)
     if len(listener) == 0 or len(listener) * len(places) > MOST_TO_BEND:
         return result
-    for which, candidates in ((~pairs, BENDS), (pairs, BENDS_OF_PAIRS)):
+    for which, candidates in ((~pairs, AROUND), (pairs, AROUND_OF_PAIRS)):
         waiting = np.flatnonzero(which)
         fewest = np.full(len(listener), np.inf)
         for candidate in candidates:
             if len(waiting) == 0:
                 break
-            hits = _discs_hit(places, listener[waiting], source[waiting], candidate, radius * 1.12)
-            better = hits < fewest[waiting]
-            result[waiting[better]] = candidate
+            bend = _bend(candidate, radius, length[waiting])
+            hits = _discs_hit(places, listener[waiting], source[waiting], bend, radius * 1.12)
+            better = hits < fewest[waiting] - 0.05
+            result[waiting[better]] = bend[better]
             fewest[waiting[better]] = hits[better]
             waiting = waiting[fewest[waiting] > 0]
     return result
+
+
+def _bend(offset: float, radius: float, length: Floats) -> Floats:
+    """An offset in the middle, in radii, as a part of the length; never a loop."""
+    return np.clip(offset * radius / length, -MOST_BENT, MOST_BENT)
 
 
 def curves(
@@ -167,12 +176,12 @@ def within(places: Floats, corner: Floats, other: Floats) -> Indices:
     return np.flatnonzero(((places >= low) & (places <= high)).all(axis=1))
 
 
-def _discs_hit(places: Floats, listener: Indices, source: Indices, bend: float, radius: float) -> Floats:
+def _discs_hit(places: Floats, listener: Indices, source: Indices, bend: Floats, radius: float) -> Floats:
     """How many other people each arrow would run behind with this bend, counted by depth so that less is better."""
     here, there = places[listener], places[source]
     along = there - here
     right = np.stack([-along[:, 1], along[:, 0]], axis=1)
-    control = (here + there) / 2 + right * 2 * bend
+    control = (here + there) / 2 + right * (2 * bend)[:, None]
     points = Curves(here, control, there).at(_SAMPLES[1:-1])
     offset = points[:, :, None] - places[None, None]
     distance = np.sqrt((offset**2).sum(axis=-1).min(axis=1))

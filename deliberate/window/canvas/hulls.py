@@ -28,11 +28,11 @@ class Ground:
 
 
 def paint_grounds(
-    painter: QPainter, grounds: list[Ground], points: Floats, radius: float, below: float, theme: Theme
+    painter: QPainter, grounds: list[Ground], points: Floats, radius: float, names: float, theme: Theme
 ) -> None:
-    """Paint all grounds, then all titles. `below` is the room that names take under a person."""
+    """Paint all grounds, then all titles. `names` is how high a name is."""
     painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-    outlines = [outline(points, np.array(ground.people, dtype=np.intp), radius, below) for ground in grounds]
+    outlines = [outline(points, np.array(ground.people, dtype=np.intp), radius, names) for ground in grounds]
     for number, (ground, path) in enumerate(zip(grounds, outlines, strict=True)):
         if ground.lit:
             pen = QPen(mix(theme.accent, theme.canvas, 0.2), 1.6)
@@ -59,7 +59,7 @@ def tidy(points: Floats, groups: list[tuple[int, ...]], radius: float) -> bool:
     return True
 
 
-def outline(points: Floats, people: Indices, radius: float, below: float) -> QPainterPath:
+def outline(points: Floats, people: Indices, radius: float, names: float) -> QPainterPath:
     """A rounded outline around people: their convex hull, or where that would take in others a band along the
     shortest tree that joins them."""
     pad = radius * 1.45 + 6
@@ -79,8 +79,8 @@ def outline(points: Floats, people: Indices, radius: float, below: float) -> QPa
             skeleton.moveTo(QPointF(*own[one]))
             skeleton.lineTo(QPointF(*own[other]))
         band = _band(skeleton, pad * 0.9) if len(own) > 1 else band
-    if below > 0:
-        band = band.united(band.translated(0, below * 0.6))
+    if names > 0:  # room for names below and above, and for the title
+        band = band.united(band.translated(0, names * 0.7)).united(band.translated(0, -names * 1.5))
     return band.simplified()
 
 
@@ -143,7 +143,7 @@ def _write(painter: QPainter, ground: Ground, area: QRectF, theme: Theme) -> Non
     painter.setFont(font)
     metrics = QFontMetricsF(font)
     size = QRectF(0, 0, metrics.horizontalAdvance(ground.title) + 16, metrics.height() + 4)
-    size.moveCenter(QPointF(area.center().x(), area.top()))
+    size.moveCenter(QPointF(area.center().x(), area.top() + 1))
     painter.setPen(Qt.PenStyle.NoPen)
     painter.setBrush(QColor(theme.canvas))
     painter.drawRoundedRect(size, size.height() / 2, size.height() / 2)

@@ -74,10 +74,8 @@ class Keys:
         total = len(scene.ids) + (len(scene.share) if self.listener is None else 0)
         if total == 0:
             return False
-        if self._order is None:
-            order = 0 if forward else total - 1
-        else:
-            order = self._order + (1 if forward else -1)
+        before = (-1 if forward else total) if self._order is None else self._order
+        order = before + (1 if forward else -1)
         if self.listener is not None:
             order %= total
         if not 0 <= order < total:

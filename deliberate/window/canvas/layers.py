@@ -41,14 +41,23 @@ class ArrowLook:
 def manners(scene: Scene, counting: Flags, marked: Flags, lit: Flags | None) -> Indices:
     """How each arrow is drawn. `marked` belong to the selection; `lit`, where a finding is pointed at, to it."""
     manner = np.full(len(scene.share), PLAIN)
-    if len(scene.rank) > STRONG:
-        manner[scene.rank >= STRONG] = WEAK
+    manner[weak(scene)] = WEAK
     manner[~counting] = PALE
     if lit is not None:
         manner[:] = QUIET
         manner[lit] = MARKED
     manner[marked] = MARKED
     return manner
+
+
+def weak(scene: Scene) -> Flags:
+    """In a crowd, the arrows weaker than the `STRONG` strongest; equal ones are treated alike unless that would
+    leave too many."""
+    if len(scene.share) <= STRONG:
+        return np.zeros(len(scene.share), dtype=bool)
+    least = scene.share[scene.rank == STRONG - 1]
+    fainter = scene.share < least * (1 - 1e-9)
+    return fainter if int((~fainter).sum()) <= 2 * STRONG else scene.rank >= STRONG
 
 
 def screen_curves(scene: Scene, view: Viewport, which: Flags | Indices) -> Curves:
@@ -66,7 +75,7 @@ def screen_curves(scene: Scene, view: Viewport, which: Flags | Indices) -> Curve
 def widths(scene: Scene, view: Viewport, which: Flags | Indices, manner: Indices) -> Floats:
     """Thickness of arrows in pixels."""
     scale = np.clip(scene.radius * view.zoom / 30, 0.45, 1.3)
-    wide = (1.3 + 5.4 * scene.share[which] ** 0.9) * scale
+    wide = (1.2 + 4.8 * scene.share[which] ** 0.9) * scale
     wide = np.where(manner[which] == WEAK, np.minimum(wide, 1.0) * 0.9, wide)
     return np.maximum(np.rint(wide / _WIDTH_STEP), 2) * _WIDTH_STEP
 
@@ -96,7 +105,7 @@ def paint_arrows(
     wide = widths(scene, view, which, look.manner)
     manner, dashed = look.manner[which], look.dashed[which]
     scale = min(max(scene.radius * view.zoom / 30, 0.5), 1.2)
-    long, half = (5.5 + 2.1 * wide) * scale, (2.6 + 1.05 * wide) * scale
+    long, half = (5.0 + 1.9 * wide) * scale, (2.3 + 0.95 * wide) * scale
     lines = geometry.shortened(arrows, long * 0.8)
     triangles = geometry.heads(arrows, long, half)
     group = manner * 2000 + np.rint(wide / _WIDTH_STEP).astype(np.intp) * 2 + dashed

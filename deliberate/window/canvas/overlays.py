@@ -6,7 +6,7 @@ from collections.abc import Iterable
 
 import numpy as np
 from numpy.typing import NDArray
-from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtCore import QPointF, QRect, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QLinearGradient, QPainter, QPen, QPolygonF
 
 from deliberate.rehearsal.words import number
@@ -119,7 +119,7 @@ def _ends(question: Question) -> tuple[str, str]:
     return number(question.low, question), number(question.high, question)
 
 
-def paint_foot(painter: QPainter, width: float, height: float, sentence: str, theme: Theme, *, strong: bool) -> None:
+def paint_foot(painter: QPainter, width: float, height: float, sentence: str, theme: Theme) -> None:
     """The sentence at the foot, on the paper so that it can be read over the picture."""
     if not sentence:
         return
@@ -134,7 +134,7 @@ def paint_foot(painter: QPainter, width: float, height: float, sentence: str, th
     ground.setAlpha(225)
     painter.setBrush(ground)
     painter.drawRoundedRect(area, 4, 4)
-    painter.setPen(QColor(theme.ink if strong else theme.muted))
+    painter.setPen(QColor(theme.ink))
     painter.drawText(area.adjusted(6, 0, 0, 0), Qt.AlignmentFlag.AlignVCenter | Qt.AlignmentFlag.AlignLeft, text)
 
 
@@ -154,3 +154,11 @@ def paint_empty(painter: QPainter, area: QRectF, theme: Theme) -> None:
     text = area.adjusted(EDGE, 0, -EDGE, 0)
     text.setTop(middle.y() + 48)
     painter.drawText(text, Qt.AlignmentFlag.AlignHCenter | Qt.TextFlag.TextWordWrap, EMPTY)
+
+
+def paint_edge(painter: QPainter, area: QRect, theme: Theme, *, strong: bool) -> None:
+    """The edge of a canvas that has the focus; in accent where the focus came by key."""
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
+    painter.setBrush(Qt.BrushStyle.NoBrush)
+    painter.setPen(QColor(theme.accent) if strong else QColor(theme.line))
+    painter.drawRect(area.adjusted(0, 0, -1, -1))

@@ -19,6 +19,7 @@ from deliberate.window.canvas.hulls import Ground, paint_grounds
 from deliberate.window.canvas.layers import (
     MARKED,
     PLAIN,
+    WEAK,
     ArrowLook,
     GroundLayer,
     manners,
@@ -28,7 +29,7 @@ from deliberate.window.canvas.layers import (
 )
 from deliberate.window.canvas.names import LEAST_PX, Names
 from deliberate.window.canvas.people import PeoplePainter
-from deliberate.window.canvas.scene import DRAWN, STRONG, Scene
+from deliberate.window.canvas.scene import STRONG, Scene
 from deliberate.window.canvas.viewport import Viewport, fitted
 from deliberate.window.theme import Theme
 
@@ -144,7 +145,7 @@ class Picture:
             counting = scene.counting(self.stage)
             lit = None if marks.lit_arrows is None else self._flags(marks.lit_arrows, len(scene.share))
             marked = arrows | (selected[scene.listener] & (lit is None))
-            shown = scene.shown(selected, arrows | (lit if lit is not None else False))
+            shown = scene.shown(counting, selected, arrows | (lit if lit is not None else False))
             self._look = ArrowLook(shown, manners(scene, counting, marked, lit), ~counting, self.flow)
         return self._look
 
@@ -199,12 +200,17 @@ class Picture:
 
     def legend(self) -> list[str]:
         """What has to be said about the arrows."""
-        lines = [overlays.TRAVEL if self.flow else overlays.LISTENED] if len(self.scene.share) else []
-        if len(self.scene.share) > DRAWN:
-            hidden = int((~self.look().shown).sum())
-            lines.append(f"{amount(hidden)} weak arrows are not shown: select somebody to see hers")
-        elif len(self.scene.share) > STRONG:
-            lines.append(f"The {STRONG} strongest arrows are drawn in full, the others thin")
+        total, look = len(self.scene.share), self.look()
+        lines = [overlays.TRAVEL if self.flow else overlays.LISTENED] if total else []
+        if total <= STRONG:
+            return lines
+        idle, weak = int((~look.shown & look.dashed).sum()), int((~look.shown & ~look.dashed).sum())
+        if idle:
+            lines.append(f"{amount(idle)} arrows that do not count in this stage are not shown")
+        if weak:
+            lines.append(f"{amount(weak)} weak arrows are not shown: select somebody to see hers")
+        elif int((look.shown & (look.manner == WEAK)).sum()):
+            lines.append("The weaker arrows are drawn thin")
         return lines
 
     def _refresh(self, resting: bool) -> None:

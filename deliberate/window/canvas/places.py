@@ -52,16 +52,18 @@ def free_place(taken: Floats, near: Floats, spacing: float = SPACING) -> Floats:
 
 
 def disc_radius(placed: Floats) -> float:
-    """Radius of a person: `RADIUS`, unless the places were drawn up in quite other units, where it fits those."""
+    """Radius of a person for these places: `RADIUS` at the usual spacing, larger where there is more room."""
     if len(placed) < 2:
         return RADIUS
     sample = placed if len(placed) <= 400 else placed[:: len(placed) // 400 + 1]
     distance = np.hypot(sample[:, None, 0] - placed[None, :, 0], sample[:, None, 1] - placed[None, :, 1])
     distance[distance == 0] = np.inf
-    typical = float(np.median(distance.min(axis=1)))
-    if not np.isfinite(typical) or 2.2 * RADIUS <= typical <= 20 * RADIUS:
+    typical = float(np.percentile(distance.min(axis=1), 20))
+    if not np.isfinite(typical):
         return RADIUS
-    return typical * RADIUS / SPACING
+    if 0.6 * SPACING <= typical <= 6 * SPACING:
+        return min(RADIUS * max(typical / SPACING, 1.0) ** 0.75 * 1.08, 2 * RADIUS)
+    return typical * RADIUS / SPACING  # drawn up in quite other units
 
 
 def _stored(x: float | None, y: float | None) -> tuple[float, float]:

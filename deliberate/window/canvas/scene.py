@@ -124,11 +124,13 @@ class Scene:
         role = f", {who.role}" if who.role else ""
         return f"{self.told_apart[person]}{role}: {', '.join(parts)}"
 
-    def shown(self, people: Flags, arrows: Flags) -> Flags:
-        """Which arrows are drawn: all, or in a crowd the strongest, those of `people` and those of `arrows`."""
-        if len(self.rank) <= DRAWN:
+    def shown(self, counting: Flags, people: Flags, arrows: Flags) -> Flags:
+        """Which arrows are drawn: all, or in a crowd the strongest of those `counting` in the stage, those of
+        `people` and those of `arrows`."""
+        if len(self.rank) <= STRONG:
             return np.ones(len(self.rank), dtype=bool)
-        return (self.rank < DRAWN) | people[self.listener] | people[self.source] | arrows
+        usual = counting & (self.rank < DRAWN)
+        return usual | people[self.listener] | people[self.source] | arrows
 
     def moved_to(self, new: Floats) -> Scene:
         """The same people and arrows at other places."""
@@ -182,7 +184,9 @@ def _same_points(one: Variant, other: Variant) -> bool:
         return True
     if one.arrows is not other.arrows or len(one.people) != len(other.people):
         return False
-    return all(a is b or (a.id, a.own_weight) == (b.id, b.own_weight) for a, b in zip(one.people, other.people))
+    return all(
+        a is b or (a.id, a.own_weight) == (b.id, b.own_weight) for a, b in zip(one.people, other.people, strict=True)
+    )
 
 
 def _arrows(variant: Variant) -> tuple[Indices, Indices, Floats]:

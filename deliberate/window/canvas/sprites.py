@@ -12,7 +12,6 @@ import numpy as np
 from numpy.typing import NDArray
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPen, QPixmap
-
 from shiboken6 import Shiboken
 
 from deliberate.rehearsal.voices import Voices

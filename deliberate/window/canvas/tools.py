@@ -169,7 +169,7 @@ class Mouse:
         if source is not None:
             scene = picture.scene
             if (scene.ids[source], scene.ids[listener]) in scene.arrow_index:
-                bend = geometry.PART
+                bend = geometry.PART * picture.radius / float(np.hypot(*(there - here)))
             overlays.circle_people(painter, picture.points, [source], picture.radius, theme, gap=2.0, width=2.6)
         reach = picture.radius if source is not None else min(picture.radius, float(np.hypot(*(there - here))) * 0.4)
         curve = geometry.curves(places, np.array([0]), np.array([1]), np.array([bend]), reach)
