@@ -25,6 +25,9 @@ def scenario_schema() -> dict[str, Any]:
     """The schema (draft 2020-12) of a scenario file, version 1."""
     made = msgspec.json.schema(Scenario)
     definitions = made["$defs"]
+    for definition in definitions.values():
+        # the docstring, which some versions of Python and msgspec indent and others do not
+        definition["description"] = " ".join(definition["description"].split())
     _require_head(definitions["Scenario"])
     _tell_agreement_tests_apart(definitions["AgreementTest"])
     _bind_scale_of_rand_ucla(definitions["Question"])
