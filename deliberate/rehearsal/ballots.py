@@ -83,7 +83,7 @@ class Electorate:
 
     def _weigh(self, people: Sequence[Person]) -> None:
         """Bring all ballots to whole numbers of 1/`_unit`."""
-        as_written = {person.ballots: exact(person.ballots) for person in people}
+        as_written = {ballots: exact(ballots) for ballots in {person.ballots for person in people}}
         self._unit = math.lcm(*(weight.denominator for weight in as_written.values()))
         whole = {given: int(weight * self._unit) for given, weight in as_written.items()}
         self._eligible_weight = sum(whole[person.ballots] for person in people)
