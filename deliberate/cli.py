@@ -104,24 +104,23 @@ def _check(options: argparse.Namespace) -> None:
 
 def _window(path: str | None) -> int:
     try:
-        from deliberate.window.app import check_screen, run
-
-        check_screen()
-    except (ImportError, DeliberateError) as error:
-        if isinstance(error, ImportError) and (error.name or "").startswith("deliberate"):
+        from deliberate.window.app import NoScreenError, run
+    except ImportError as error:
+        if (error.name or "").startswith("deliberate"):
             raise
-        _say(f"deliberate: {_no_window(error)}")
+        _say(f"deliberate: {_no_qt(error)}")
         return OTHERWISE
     try:
         return run(path)
+    except NoScreenError as error:
+        _say(f"deliberate: {error}")
+        return OTHERWISE
     except DeliberateError as error:
         _say(f"{path or 'deliberate'}: {error}")
         return BAD_INPUT
 
 
-def _no_window(error: Exception) -> str:
-    if isinstance(error, DeliberateError):
-        return str(error)
+def _no_qt(error: ImportError) -> str:
     return (
         f"the window cannot open, because a part of Qt is missing ({error}): install PySide6-Essentials, and on"
         " Debian or Ubuntu libegl1 and libgl1. `deliberate rehearse FILE` works without."

@@ -158,7 +158,7 @@ def test_help_and_version(arguments, capsys):
 def window(monkeypatch, run):
     """Stand in for the window, which has tests of its own."""
     app = ModuleType("deliberate.window.app")
-    app.check_screen, app.run = lambda: None, run
+    app.NoScreenError, app.run = type("NoScreenError", (deliberate.DeliberateError,), {}), run
     monkeypatch.setitem(sys.modules, app.__name__, app)
 
 

@@ -6,6 +6,8 @@ import ctypes
 import os
 import sys
 import traceback
+from collections.abc import Iterator
+from contextlib import contextmanager
 from pathlib import Path
 from types import TracebackType
 
@@ -29,11 +31,18 @@ DEBIAN_LIBRARIES = (
 )
 
 
+class NoScreenError(DeliberateError):
+    """The window has nowhere to open, or a system library for it is missing."""
+
+
 def run(path: str | None = None) -> int:
-    """Open the window on `path` and stay until it is closed. Returns the exit status."""
+    """Open the window on `path` and stay until it is closed. Returns the exit status.
+
+    Raises NoScreenError where it cannot open, and DeliberateError when `path` cannot be read.
+    """
     os.environ.setdefault("QT_NO_GUI_THREADPOOL", "1")  # raster fills are far slower from the thread pool
-    check_screen()
-    app = QApplication.instance() or QApplication(sys.argv[:1])
+    with screen():
+        app = QApplication.instance() or QApplication(sys.argv[:1])
     app.setApplicationName("Deliberate")
     app.setApplicationDisplayName("")
     app.setStyle("Fusion")
@@ -62,36 +71,50 @@ def first_meeting(path: str | None, settings: QSettings) -> tuple[Scenario, Path
     return (files.read(first), None) if first else (new_meeting(), None)
 
 
-def check_screen() -> None:
-    """Qt ends the process when it finds no display; say what is missing in one sentence instead."""
+@contextmanager
+def screen() -> Iterator[None]:
+    """Qt ends the process when it finds no display; say what is missing in one sentence instead.
+
+    The connection that was tried stays open until Qt has its own: a display server may start afresh when its last
+    client leaves.
+    """
     if not sys.platform.startswith("linux") or os.environ.get("QT_QPA_PLATFORM", "xcb").split(":")[0] != "xcb":
+        yield
         return
     if os.environ.get("WAYLAND_DISPLAY"):
+        yield
         return
     if not os.environ.get("DISPLAY"):
-        raise DeliberateError(
+        raise NoScreenError(
             "there is no screen to open the window on (neither DISPLAY nor WAYLAND_DISPLAY is set): start it from "
             f"a desktop. {WITHOUT_SCREEN}"
         )
+    xcb = _loaded_xcb()
+    xcb.xcb_connect.restype = ctypes.c_void_p
+    connection = ctypes.c_void_p(xcb.xcb_connect(None, None))
+    try:
+        if xcb.xcb_connection_has_error(connection):
+            raise NoScreenError(
+                f"the screen “{os.environ['DISPLAY']}” (DISPLAY) does not answer: start it from a desktop. "
+                f"{WITHOUT_SCREEN}"
+            )
+        yield
+    finally:
+        xcb.xcb_disconnect(connection)
+
+
+def _loaded_xcb() -> ctypes.CDLL:
+    """The library that talks to an X display, once Qt's own plugin for it is known to load."""
     plugin = Path(QLibraryInfo.path(QLibraryInfo.LibraryPath.PluginsPath)) / "platforms" / "libqxcb.so"
     try:
         ctypes.CDLL(str(plugin))
-        xcb = ctypes.CDLL("libxcb.so.1")
+        return ctypes.CDLL("libxcb.so.1")
     except OSError as error:
         library = str(error).split(":")[0]
-        raise DeliberateError(
+        raise NoScreenError(
             f"the window needs a system library that is missing ({library}): on Debian or Ubuntu install it with "
             f"“sudo apt install {DEBIAN_LIBRARIES}”. {WITHOUT_SCREEN}"
         ) from None
-    xcb.xcb_connect.restype = ctypes.c_void_p
-    connection = xcb.xcb_connect(None, None)
-    broken = xcb.xcb_connection_has_error(ctypes.c_void_p(connection))
-    xcb.xcb_disconnect(ctypes.c_void_p(connection))
-    if broken:
-        raise DeliberateError(
-            f"the screen “{os.environ['DISPLAY']}” (DISPLAY) does not answer: start it from a desktop. "
-            f"{WITHOUT_SCREEN}"
-        )
 
 
 class _Loud:

@@ -144,8 +144,11 @@ class MainWindow(QMainWindow):
         self.vote = QLabel(self)
         self.vote.setTextFormat(Qt.TextFormat.PlainText)
         self.statusBar().setSizeGripEnabled(False)
+        caution = QLabel(CAUTION, self)
+        caution.setProperty("muted", True)
+        caution.setContentsMargins(12, 0, 14, 0)
         self.statusBar().addPermanentWidget(self.vote)
-        self.statusBar().addPermanentWidget(QLabel(CAUTION, self))
+        self.statusBar().addPermanentWidget(caution)
 
     # What it says
 

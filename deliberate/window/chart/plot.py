@@ -42,6 +42,7 @@ class StillItem(pg.GraphicsObject):
         return self.viewRect() or QRectF()
 
     def viewTransformChanged(self) -> None:
+        super().viewTransformChanged()
         self.prepareGeometryChange()
         self.update()
 
