@@ -22,14 +22,14 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QToolTip, QWidget
 
-from deliberate.window.canvas import grounds, overlays
+from deliberate.window.canvas import accessible, overlays
 from deliberate.window.canvas.choosing import Choosing
 from deliberate.window.canvas.commands import Commands
 from deliberate.window.canvas.editors import Editors
+from deliberate.window.canvas.follow import Follower
 from deliberate.window.canvas.glide import Glide
 from deliberate.window.canvas.keys import Keys
 from deliberate.window.canvas.picture import Floats, Hit, Picture
-from deliberate.window.canvas.scene import Scene, scene_of
 from deliberate.window.canvas.tools import Mouse
 from deliberate.window.canvas.viewport import ZOOM_STEP, Viewport
 from deliberate.window.session import Session
@@ -44,8 +44,6 @@ class Canvas(QWidget):
     hint_changed = Signal(str)  # the sentence at the foot
     zoom_changed = Signal(float)
     choosing_changed = Signal(bool)
-    items_changed = Signal()  # people or arrows are others: for accessible children
-    focus_changed = Signal()
 
     def __init__(self, session: Session, look: Look, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -54,28 +52,20 @@ class Canvas(QWidget):
         self.setMouseTracking(True)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setAccessibleName("Picture of the committee")
-        self._remembered: dict[str, tuple[float, float]] = {}
-        self._fit_pending = self._follows_size = True
+        accessible.install(Canvas)
+        self.items: accessible.AccessibleCanvas | None = None  # once somebody asks for it
+        self.follows_size = True
         self._hint = ""
-        self._scenario_shown = session.scenario
-        self.picture = Picture(self._read(None), look.theme)
+        self.follow = Follower(self, session)
+        self.picture = Picture(self.follow.first_scene, look.theme)
         self.picture.font = self.font()
-        self.picture.starts = session.starts()
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
-        self._rest.timeout.connect(self._settle)
+        self._rest.timeout.connect(self.update)
         self._glide = Glide(self)
-        self.editors = Editors(self)
-        self.commands = Commands(self)
+        self.editors, self.commands = Editors(self), Commands(self)
         self.mouse, self.keys, self.choosing = Mouse(self), Keys(self), Choosing(self)
-        session.scenario_changed.connect(self._take_scenario)
-        session.rehearsal_changed.connect(self.update)
-        session.selection_changed.connect(self._take_selection)
-        session.lit_changed.connect(self._take_lit)
-        session.player.moved.connect(self._take_position)
         look.changed.connect(self._dress)
-        self._take_position()
-        self._take_selection()
-        self._take_lit()
+        self.follow.begin()
 
     # Commands for menus
 
@@ -140,7 +130,7 @@ class Canvas(QWidget):
 
     def fit(self) -> None:
         """Show everybody, and keep doing so when the window changes its size."""
-        self._follows_size = True
+        self.follows_size = True
         self.picture.fit()
         self._view_changed()
 
@@ -158,17 +148,27 @@ class Canvas(QWidget):
         """Leave the editor on the picture, with everything as it was."""
         self.editors.cancel()
 
+    def stop_moving(self) -> None:
+        """End what is under way: the picture is another one."""
+        self.mouse.forget()
+        self._glide.stop()
+
+    def forget_items(self) -> None:
+        """People and arrows are others now, for screen readers too."""
+        if self.items is not None:
+            self.items.forget()
+
     # The view
 
     def zoom_around(self, factor: float, at: QPointF) -> None:
         """Zoom with what is at a pixel staying there."""
-        self._follows_size = False
+        self.follows_size = False
         self.picture.look_at(self.picture.view.zoomed(factor, at.x(), at.y(), self.picture.scene.radius))
         self._view_changed()
 
     def pan(self, dx: float, dy: float) -> None:
         """Move the picture by pixels."""
-        self._follows_size = False
+        self.follows_size = False
         self.picture.look_at(self.picture.view.moved(dx, dy))
         self._view_changed()
 
@@ -190,98 +190,6 @@ class Canvas(QWidget):
         self.zoom_changed.emit(self.picture.view.zoom)
         self.stir()
 
-    def _settle(self) -> None:
-        self.update()
-
-    # Following the session
-
-    def beliefs(self) -> Floats:
-        """What people believe at the present position."""
-        beliefs = self.session.beliefs_at(self.session.player.position)
-        # While an edit is under way the rehearsal may still be one of other people.
-        return beliefs if len(beliefs) == len(self.picture.scene.ids) else self.session.starts()
-
-    def shown_stage(self) -> int:
-        """The stage whose voices the rings show."""
-        if self.choosing.stage is not None:
-            return self.choosing.stage
-        return self.session.stage_at(self.session.player.position)
-
-    def _read(self, before: Scene | None) -> Scene:
-        radius = None if before is None or self._fit_pending else before.radius
-        return scene_of(self.session.variant, self.session.question, self._remembered, radius, before)
-
-    def _take_scenario(self) -> None:
-        session = self.session
-        if session.undo_step is None and session.redo_step is None and session.scenario is not self._scenario_shown:
-            self._remembered.clear()
-            self._fit_pending = self._follows_size = True
-        before = self.picture.scene
-        same_variant = before.variant.name == session.variant.name
-        scene = self._read(before)
-        self.mouse.forget()
-        self._glide.stop()
-        self.picture.show(scene)
-        self.picture.starts = session.starts()
-        self._scenario_shown = session.scenario
-        if self._fit_pending or (not same_variant and self._follows_size):
-            self._fit_pending = False
-            self.picture.fit()
-        self.choosing.check()
-        self._take_selection()
-        self._take_position()
-        self._take_lit()
-        self.items_changed.emit()
-        self.stir()
-
-    def _take_selection(self) -> None:
-        scene, selection, marks = self.picture.scene, self.session.selection, self.picture.emphasis
-        marks.people = {scene.index[one] for one in selection.people if one in scene.index}
-        marks.arrows = {scene.arrow_index[pair] for pair in selection.arrows if pair in scene.arrow_index}
-        self.keys.check_focus()
-        self.picture.touch()
-        self.refresh_hint()
-        self.stir()
-
-    def _take_lit(self) -> None:
-        self.refresh_grounds()
-        finding, marks, scene = self.session.lit, self.picture.emphasis, self.picture.scene
-        marks.lit_people = marks.lit_arrows = None
-        if finding is not None:
-            marks.lit_people = {scene.index[one] for one in finding.people if one in scene.index}
-            marks.lit_arrows = grounds.lit_arrows(finding, scene)
-        self.picture.touch()
-        self.stir()
-
-    def refresh_grounds(self) -> None:
-        """Read again which grounds there are."""
-        picture, finding = self.picture, self.session.lit
-        if finding is not None:
-            wanted = grounds.of_finding(finding, picture.scene)
-        else:
-            stage = self.session.variant.plan.stages[self.shown_stage()]
-            seats = picture.scene.places
-            wanted = grounds.of_stage(stage, picture.scene, seats, picture.scene.radius)
-        if wanted != picture.grounds:
-            picture.grounds = wanted
-            picture.touch()
-
-    def stage_shown_changed(self) -> None:
-        """The stage whose voices and grounds are shown may be another one."""
-        self.picture.touch()
-        self._take_position()
-        self.refresh_grounds()
-        self.stir()
-
-    def _take_position(self) -> None:
-        stage = self.shown_stage()
-        if stage != self.picture.stage:
-            self.picture.stage = stage
-            self.picture.touch()
-            self.refresh_grounds()
-            self._rest.start()
-        self.update()
-
     def _dress(self) -> None:
         self.picture.theme = self.look.theme
         self.picture.touch()
@@ -301,7 +209,7 @@ class Canvas(QWidget):
         if hit.kind == "arrow":
             counting = self.picture.look().dashed[hit.index]
             return scene.sentence(hit.index) + (", does not count in this stage" if counting else "")
-        return scene.about(hit.index, float(self.beliefs()[hit.index]))
+        return scene.about(hit.index, float(self.follow.beliefs()[hit.index]))
 
     def refresh_hint(self) -> None:
         """Say again what is pointed at, focused or selected, or what to do."""
@@ -333,7 +241,7 @@ class Canvas(QWidget):
         resting = not self._rest.isActive() and picture.moving is None
         with QPainter(self) as painter:
             painter.setFont(self.font())
-            picture.paint(painter, self.beliefs(), gliding=not whole, at_start=position < 0.5, resting=resting)
+            picture.paint(painter, self.follow.beliefs(), gliding=not whole, at_start=position < 0.5, resting=resting)
             self.choosing.paint(painter)
             self.mouse.paint(painter)
             painter.setFont(self.font())
@@ -354,8 +262,7 @@ class Canvas(QWidget):
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         self.picture.resize(self.width(), self.height(), self.devicePixelRatioF())
-        if self._follows_size:
-            self._fit_pending = False
+        if self.follows_size:
             self.picture.fit()
         self.choosing.lay_out()
         self._view_changed()

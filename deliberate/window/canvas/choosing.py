@@ -83,7 +83,7 @@ class Choosing:
             return
         self.stage = self._first = None
         self.banner.hide()
-        self._canvas.stage_shown_changed()
+        self._canvas.follow.take_stage()
         self._canvas.choosing_changed.emit(False)
         self._canvas.setFocus(Qt.FocusReason.OtherFocusReason)
 
@@ -178,7 +178,7 @@ class Choosing:
         self.lay_out()
         self.banner.show()
         self.banner.raise_()
-        self._canvas.stage_shown_changed()
+        self._canvas.follow.take_stage()
 
     def _stage(self) -> Stage:
         assert self.stage is not None

@@ -5,7 +5,7 @@ from __future__ import annotations
 from deliberate.rehearsal.results import Finding
 from deliberate.scenario.values import Stage
 from deliberate.window.canvas.hulls import Ground, tidy
-from deliberate.window.canvas.scene import Floats, Scene
+from deliberate.window.canvas.scene import Scene
 
 _LETTERS = "ABCDEFGHIJKLMNOPQRSTUVWXYZ"
 
@@ -17,12 +17,12 @@ def of_finding(finding: Finding, scene: Scene) -> list[Ground]:
     return [Ground(group, _title(finding.kind, number, len(groups))) for number, group in enumerate(groups)]
 
 
-def of_stage(stage: Stage, scene: Scene, points: Floats, radius: float, *, always: bool = False) -> list[Ground]:
+def of_stage(stage: Stage, scene: Scene) -> list[Ground]:
     """A ground for each table, unless they would run through each other."""
     if stage.setting != "tables" or len(stage.tables) < 2:
         return []
     groups = [tuple(scene.index[one] for one in table if one in scene.index) for table in stage.tables]
-    if not always and not tidy(points, groups, radius):
+    if not tidy(scene.places, groups, scene.radius):
         return []
     return [Ground(group, f"Table {number}", lit=False) for number, group in enumerate(groups, start=1) if group]
 

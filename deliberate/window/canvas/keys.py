@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtGui import QKeyEvent, QKeySequence
 
+from deliberate.window.canvas.accessible import tell_focus
 from deliberate.window.canvas.picture import Hit
 
 if TYPE_CHECKING:
@@ -37,7 +38,7 @@ class Keys:
         people = len(self._canvas.picture.scene.ids)
         self._order = None if hit is None else hit.index + (people if hit.kind == "arrow" else 0)
         if shown:
-            self._canvas.focus_changed.emit()
+            tell_focus(self._canvas)
 
     def focus_person(self, person: str) -> None:
         """Select a person and continue from her."""

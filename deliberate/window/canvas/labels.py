@@ -82,9 +82,11 @@ def _choose(middle: Floats, half: Floats, price: Floats) -> tuple[Indices, Float
 def _discs_covered(middle: Floats, half: Floats, places: Floats, radius: float) -> Floats:
     """How many people each candidate lies on, her own disc included."""
     covered = np.zeros(middle.shape[:2])
+    reach = (radius + 1) ** 2
     for candidate in range(middle.shape[1]):
-        away = np.abs(middle[:, candidate, None] - places[None]) - half[:, None]
-        covered[:, candidate] = (np.hypot(*np.moveaxis(np.maximum(away, 0.0), -1, 0)) < radius + 1).sum(axis=1)
+        across = np.maximum(np.abs(middle[:, candidate, None, 0] - places[None, :, 0]) - half[:, None, 0], 0.0)
+        down = np.maximum(np.abs(middle[:, candidate, None, 1] - places[None, :, 1]) - half[:, None, 1], 0.0)
+        covered[:, candidate] = (across * across + down * down < reach).sum(axis=1)
     return covered
 
 

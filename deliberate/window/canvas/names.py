@@ -50,9 +50,17 @@ class Names:
         return np.concatenate([corner, self.sizes], axis=1)
 
     def paint(
-        self, painter: QPainter, points: Floats, radius: float, which: Indices, theme: Theme, pale: NDArray[np.bool_]
+        self,
+        painter: QPainter,
+        points: Floats,
+        radius: float,
+        which: Indices,
+        theme: Theme,
+        pale: NDArray[np.bool_],
+        *,
+        halo: bool,
     ) -> None:
-        """Paint the names of `which`, with a halo of the paper where something lies behind."""
+        """Paint the names of `which`, with a `halo` of the paper where something lies behind."""
         if self._font is None:
             return
         painter.setFont(self._font)
@@ -61,7 +69,7 @@ class Names:
         for index in which.tolist():
             x, y = corner[index]
             text = self._shown[index]
-            if self.crowded[index] > 0.5:
+            if halo and self.crowded[index] > 0.5:
                 painter.setPen(paper)
                 for dx, dy in _HALO:
                     painter.drawStaticText(QPointF(x + dx * 1.2, y + dy * 1.2), text)

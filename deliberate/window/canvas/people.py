@@ -28,7 +28,7 @@ Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
 
 ALONE = 0.88  # radius of a disc without a ring, as a part of the whole
-LEAST_NUMBER_PX = 9.5  # of the disc
+LEAST_NUMBER_PX = 10.5  # of the disc
 _TEXTS_KEPT = 3000
 
 

@@ -39,6 +39,7 @@ Flags = NDArray[np.bool_]
 
 FINE_AT_ONCE = 160  # so many arrows are painted fine even while something moves
 FINE_ALIVE = 60
+HALO_ALIVE = 60  # so many names get a halo while something moves
 FIT_MARGINS = (44.0, 56.0, 44.0, 72.0)
 
 
@@ -80,6 +81,7 @@ class Picture:
         self.people, self.names = PeoplePainter(), Names()
         self._ground = GroundLayer()
         self._ground_stale = self._names_stale = True
+        self._names_baked = False
         self._look: ArrowLook | None = None
 
     # What has changed
@@ -195,7 +197,7 @@ class Picture:
         self._paint_selection(painter, points)
         self.people.prepare(scene, self.stage, radius, self.ratio, theme, self.starts, sharp=resting)
         self.people.paint(painter, scene, points, radius, beliefs, theme, gliding=gliding, at_start=at_start)
-        self.names.paint(painter, points, radius, np.flatnonzero(self._named()), theme, ~scene.present)
+        self._paint_names(painter, points, baked=self._names_baked and self.moving is None)
         self._paint_focus(painter, points)
 
     def legend(self) -> list[str]:
@@ -215,16 +217,17 @@ class Picture:
 
     def _refresh(self, resting: bool) -> None:
         light = int(self.look().shown.sum()) <= FINE_AT_ONCE
-        if self._ground_stale or (resting and not self._ground.fine):
+        if (self._names_stale and resting) or len(self.names.sizes) != len(self.scene.ids):
+            self._place_names()
+            self._names_stale, self._ground_stale = False, True
+        if self._ground_stale or (resting and not self._names_baked):
             fine = resting or light
+            self._names_baked = resting
             self._ground.paint(
                 self.width, self.height, self.ratio, self.view, self.theme, fine,
                 lambda painter: self._paint_ground(painter, fine),
             )  # fmt: skip
             self._ground_stale = False
-        if (self._names_stale and resting) or len(self.names.sizes) != len(self.scene.ids):
-            self._place_names()
-            self._names_stale = False
 
     def _paint_ground(self, painter: QPainter, fine: bool) -> None:
         painter.setFont(self.font)
@@ -235,6 +238,18 @@ class Picture:
             moving = self.moving[self.scene.listener] | self.moving[self.scene.source]
             look = ArrowLook(look.shown & ~moving, look.manner, look.dashed, look.flow)
         paint_arrows(painter, self.scene, self.view, look, self.theme, fine=fine)
+        if self._names_baked:
+            everybody = np.flatnonzero(self._named())
+            self.names.paint(painter, self.points, self.radius, everybody, self.theme, ~self.scene.present, halo=True)
+
+    def _paint_names(self, painter: QPainter, points: Floats, *, baked: bool) -> None:
+        """Names over the people: all, or where the ground layer has them only those that came up since."""
+        named = self._named()
+        if baked:
+            named &= self._special()
+        which = np.flatnonzero(named)
+        halo = len(which) <= HALO_ALIVE
+        self.names.paint(painter, points, self.radius, which, self.theme, ~self.scene.present, halo=halo)
 
     def _paint_moving(self, painter: QPainter) -> None:
         assert self.moving is not None
@@ -298,17 +313,18 @@ class Picture:
 
     def _named(self) -> Flags:
         """Whose names are painted."""
-        count, marks = len(self.scene.ids), self.emphasis
+        count = len(self.scene.ids)
         if len(self.names.sizes) != count:
             return np.zeros(count, dtype=bool)
-        named = self.names.readable() & (self.radius >= LEAST_PX)
-        special = [
+        return (self.names.readable() & (self.radius >= LEAST_PX)) | self._special()
+
+    def _special(self) -> Flags:
+        """Whose names are painted whatever lies below: those pointed at, focused, and the few selected."""
+        marks = self.emphasis
+        special = {
             hit.index for hit in (marks.hover, marks.focus) if hit is not None and hit.kind in ("person", "ring")
-        ]
-        if len(marks.people) <= 30:
-            special.extend(marks.people)
-        named[special] = True
-        return named
+        }
+        return self._flags(special | marks.people if len(marks.people) <= 30 else special, len(self.scene.ids))
 
     def _name_height(self) -> float:
         return QFontMetricsF(self.font).height() if self.radius >= LEAST_PX else 0.0
