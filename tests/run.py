@@ -53,6 +53,8 @@ def bench(python: Path, arguments: Sequence[str]) -> int:
     options = [
         "-o",
         "addopts=--strict-markers -p no:cacheprovider",
+        "-o",
+        "python_files=bench_*.py",
         "--benchmark-only",
         "--benchmark-columns=median,min,max,rounds",
     ]
