@@ -103,7 +103,7 @@ def push_apart(places: Floats, spacing: float, sweeps: int = 60, fixed: NDArray[
 
 def _shelves(reach: Sequence[float]) -> list[Floats]:
     """Middles for circles of these radii, side by side in rows of about the picture's proportion."""
-    widest = max(math.sqrt(sum((2 * r) ** 2 for r in reach) * 1.5), 2 * max(reach))
+    widest = max(math.sqrt(sum((2 * r) ** 2 for r in reach) * 1.5), 2 * max(reach, default=0.0))
     middles: list[Floats] = []
     x = y = high = 0.0
     for r in reach:
