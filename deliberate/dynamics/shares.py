@@ -84,7 +84,7 @@ def shares(network: Network, heard: Mask | None = None, unheard: Unheard = "own"
     largest = own.copy()
     np.maximum.at(largest, listener[counted], weight[counted])
     largest[largest == 0] = 1.0
-    points = np.maximum(weight / largest[listener], TINY)
+    points = np.maximum(np.where(counted, weight, 0.0) / largest[listener], TINY)
     to_own = np.where(own > 0, np.maximum(own / largest, TINY), 0.0)
     if unheard == "own":
         to_own += sum_by(listener, points * (drawn & ~heeded), count)
