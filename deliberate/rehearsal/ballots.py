@@ -90,7 +90,7 @@ class Electorate:
         thresholds = [_threshold(test)[1] for test in self.ballot.tests]
         largest = max((max(limit.numerator, limit.denominator) for limit in thresholds), default=1)
         # Counts are multiplied by numerators and denominators: beyond 64 bits Python's integers take over.
-        self._whole_type = np.int64 if self._eligible_weight * largest < 2**63 else object
+        self._whole_type = np.int64 if max(self._eligible_weight, 1) * largest < 2**63 else object
         self._weights = np.array([whole[people[at].ballots] for at in self.voters], dtype=self._whole_type)
         self._ones = np.ones(len(self.voters), dtype=self._whole_type)
 

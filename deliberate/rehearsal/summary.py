@@ -24,6 +24,7 @@ CAUTION = "A sketch, not a forecast of people."
 COLUMNS = 79
 SHOWN_STAGES = 8
 SHOWN_SWING = 4
+OUTCOME = "vote"
 
 
 def summary(scenario: Scenario, rehearsal: Rehearsal, findings: Sequence[Finding]) -> str:
@@ -85,21 +86,34 @@ class _Sketch:
         return f"{text}. Votes: {', '.join(marks)}."
 
     def table(self) -> str:
-        """Beliefs and the ballot at the start, after each stage, and in the long run."""
+        """Beliefs and the ballot at the start, after each stage, and in the long run; below each other where they
+        do not fit side by side."""
         moments = list(self._moments())
-        figures = numbers([figure for _, beliefs in moments for figure in self._figures(beliefs)], self.question)
-        rows = [["", "low", "mean", "high", "spread"]]
-        rows += [[name, *figures[4 * row : 4 * row + 4]] for row, (name, _) in enumerate(moments)]
-        if self.question.pass_mark is not None and len(self.variant.people):
-            electorate = Electorate(self.question, self.scenario.ballot, self.variant.people)
-            tallies = list(electorate.tally(np.array([beliefs for _, beliefs in moments])))
-            objecting = self.question.objection_mark is not None
-            rows[0] += ["for", "against", "abstain", *(["object"] if objecting else []), "vote"]
-            for row, tally in zip(rows[1:], tallies, strict=True):
-                row += [amount(votes) for votes in (tally.in_favour, tally.against, tally.abstain)]
-                row += [amount(tally.objecting)] if objecting else []
-                row.append(_outcome(tally))
-        return _aligned(rows)
+        names = [["", *(name for name, _ in moments)]]
+        lists = [beliefs for _, beliefs in moments]
+        views, votes = self._view_columns(lists), self._vote_columns(lists)
+        side_by_side = _aligned(names + views + votes)
+        if not votes or max(map(len, side_by_side.splitlines())) <= COLUMNS:
+            return side_by_side
+        return f"{_aligned(names + views)}\n\n{_aligned(names + votes)}"
+
+    def _view_columns(self, lists: Sequence[Floats]) -> list[list[str]]:
+        figures = numbers([figure for beliefs in lists for figure in self._figures(beliefs)], self.question)
+        return [[head, *figures[at::4]] for at, head in enumerate(("low", "mean", "high", "spread"))]
+
+    def _vote_columns(self, lists: Sequence[Floats]) -> list[list[str]]:
+        if self.question.pass_mark is None or not self.variant.people:
+            return []
+        electorate = Electorate(self.question, self.scenario.ballot, self.variant.people)
+        tallies = list(electorate.tally(np.array(lists)))
+        columns = [
+            ["for", *(amount(tally.in_favour) for tally in tallies)],
+            ["against", *(amount(tally.against) for tally in tallies)],
+            ["abstain", *(amount(tally.abstain) for tally in tallies)],
+        ]
+        if self.question.objection_mark is not None:
+            columns.append(["object", *(amount(tally.objecting) for tally in tallies)])
+        return [*columns, [OUTCOME, *map(_outcome, tallies)]]
 
     def _moments(self) -> Iterator[tuple[str, Floats]]:
         rounds = self.rehearsal.rounds
@@ -245,18 +259,15 @@ def _standing_out(findings: Sequence[Finding], variant: Variant) -> str:
     return "\n".join(lines)
 
 
-def _aligned(rows: Sequence[Sequence[str]]) -> str:
-    """Columns two spaces apart, figures to the right; names and outcomes to the left."""
-    widths = [max(map(len, column)) for column in zip(*rows, strict=True)]
-    last = len(widths) - 1 if rows[0][-1] == "vote" else -1
+def _aligned(columns: Sequence[Sequence[str]]) -> str:
+    """Columns two spaces apart, figures to the right, words to the left."""
+    widths = [max(map(len, column)) for column in columns]
+    to_left = [column[0] in ("", OUTCOME) for column in columns]
     lines = []
-    for row in rows:
-        cells = [
-            cell.ljust(width) if place in (0, last) else cell.rjust(width)
-            for place, (cell, width) in enumerate(zip(row, widths, strict=True))
-        ]
-        lines.append("  ".join(cells).rstrip())
-    return "\n".join(lines)
+    for row in zip(*columns, strict=True):
+        cells = zip(row, widths, to_left, strict=True)
+        lines.append("  ".join(cell.ljust(width) if left else cell.rjust(width) for cell, width, left in cells))
+    return "\n".join(line.rstrip() for line in lines)
 
 
 def _labelled(facts: Sequence[tuple[str, str]]) -> str:

@@ -311,3 +311,10 @@ def test_many_lists_are_counted_as_one_by_one(rows):
     electorate = Electorate(MOTION, TWO_THIRDS, electors([1, 2.5, 0, 1, 1], absent=[3]))
     together = list(electorate.tally(np.array(rows)))
     assert together == [next(iter(electorate.tally(np.array([row])))) for row in rows]
+
+
+def test_a_threshold_as_small_as_doubles_get():
+    rule = Ballot(tests=(BallotTest("for", more_than=5e-324),))
+    (one,) = tally(MOTION, rule, electors([1, 0]), np.array([[1.0, 1]]))
+    assert one.passes
+    assert not next(iter(tally(MOTION, rule, electors([0]), np.array([[1.0]])))).passes

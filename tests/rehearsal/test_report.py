@@ -4,10 +4,13 @@ from typing import Any
 import msgspec
 import pytest
 from hypothesis import given
+from hypothesis import strategies as st
 from meetings import meeting, meetings
+from strategies import scenarios
 
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.report import to_json
+from deliberate.rehearsal.summary import CAUTION, summary
 from deliberate.scenario.values import AgreementTest, Question
 
 NUMBER = (int, float)
@@ -121,3 +124,16 @@ def test_nobody_at_all_can_be_written():
     assert data["rounds"] == [[], []]
     assert data["spread"] == [0, 0]
     assert data["influence"] == {}
+
+
+@given(scenarios(), st.data())
+def test_any_valid_meeting_gives_finite_numbers_and_a_readable_page(scenario, data):
+    """Weights from 1e-300 to 1e300, scales from 1 to millions, any settings."""
+    variant = data.draw(st.sampled_from([variant.name for variant in scenario.variants]))
+    question = data.draw(st.sampled_from([question.id for question in scenario.questions]))
+    rehearsal = rehearse(scenario, variant, question, rounds=data.draw(st.integers(0, 9)))
+    assert all(math.isfinite(number) for number in numbers_in(to_json(rehearsal)))
+    assert rehearsal.influence.sum() == pytest.approx(1 if rehearsal.people else 0, rel=1e-12)
+    page = summary(scenario, rehearsal, ())
+    assert page.endswith(f"{CAUTION}\n")
+    assert all(len(line) <= 80 for line in page.splitlines() if line.isascii())

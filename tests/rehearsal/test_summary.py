@@ -131,3 +131,10 @@ def test_every_page_is_readable_at_80_columns_and_ends_with_the_caution(scenario
     assert text.endswith(f"\n\n{CAUTION}\n")
     assert text.isascii()
     assert "nan" not in text
+
+
+def test_a_table_too_wide_for_the_page_becomes_two():
+    question = Question("q", "What is it worth?", 1e9, 9e9, pass_mark=2e9, objection_mark=1.5e9)
+    text = said(meeting([[1, 1], [1, 2]], [1e9, 9e9], question=question))
+    assert "\n\n          for  against  abstain  object  vote\n" in text
+    assert max(map(len, text.splitlines())) <= 80
