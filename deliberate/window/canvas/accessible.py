@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import weakref
 from functools import cache
 from typing import TYPE_CHECKING
 
@@ -9,6 +10,7 @@ import numpy as np
 from PySide6.QtCore import QObject, QPoint, QRect
 from PySide6.QtGui import QAccessible, QAccessibleEvent, QAccessibleInterface, QColor
 from PySide6.QtWidgets import QAccessibleWidget
+from shiboken6 import Shiboken
 
 from deliberate.window.canvas.geometry import Curves
 from deliberate.window.canvas.picture import Hit
@@ -17,6 +19,8 @@ if TYPE_CHECKING:
     from deliberate.window.canvas.canvas import Canvas
 
 MOST_CHILDREN = 20_000
+# Qt deletes interfaces when their widget goes. One that Python lets go of earlier would be deleted twice.
+_alive: set[QAccessibleInterface] = set()
 
 
 class Item(QAccessibleInterface):
@@ -24,9 +28,18 @@ class Item(QAccessibleInterface):
 
     def __init__(self, canvas: Canvas, hit: Hit) -> None:
         super().__init__()
-        self._canvas, self._hit = canvas, hit
+        self._reference, self._hit = weakref.ref(canvas), hit
+
+    @property
+    def _canvas(self) -> Canvas:
+        canvas = self._reference()
+        assert canvas is not None
+        return canvas
 
     def isValid(self) -> bool:
+        canvas = self._reference()
+        if canvas is None or not Shiboken.isValid(canvas):
+            return False
         scene = self._canvas.picture.scene
         return self._hit.index < (len(scene.share) if self._hit.kind == "arrow" else len(scene.ids))
 
@@ -101,9 +114,17 @@ class AccessibleCanvas(QAccessibleWidget):
 
     def __init__(self, canvas: Canvas) -> None:
         super().__init__(canvas, QAccessible.Role.List, "Picture of the committee")
-        self._canvas = canvas
-        canvas.items = self
+        self._reference = weakref.ref(canvas)
         self._items: dict[int, Item] = {}
+        canvas.items = weakref.proxy(self)
+        # The slot belongs to no QObject of its own, because it has to outlive the canvas.
+        canvas.destroyed.connect(self.forget_all)
+
+    @property
+    def _canvas(self) -> Canvas:
+        canvas = self._reference()
+        assert canvas is not None
+        return canvas
 
     def childCount(self) -> int:
         scene = self._canvas.picture.scene
@@ -140,8 +161,13 @@ class AccessibleCanvas(QAccessibleWidget):
     def forget(self) -> None:
         """People and arrows are others now: their numbers mean somebody else."""
         for item in self._items.values():
-            QAccessible.deleteAccessibleInterface(QAccessible.uniqueId(item))
+            if Shiboken.isValid(item):
+                QAccessible.deleteAccessibleInterface(QAccessible.uniqueId(item))
         self._items.clear()
+
+    def forget_all(self, _canvas: QObject) -> None:
+        """The canvas has gone."""
+        self.forget()
 
 
 @cache
@@ -149,7 +175,12 @@ def install(canvas_type: type) -> None:
     """Tell Qt, once, how widgets of this type are read."""
 
     def interface(_key: str, thing: QObject) -> QAccessibleInterface | None:
-        return AccessibleCanvas(thing) if isinstance(thing, canvas_type) else None
+        if not isinstance(thing, canvas_type):
+            return None
+        _alive.difference_update({one for one in _alive if not Shiboken.isValid(one)})
+        made = AccessibleCanvas(thing)
+        _alive.add(made)
+        return made
 
     QAccessible.installFactory(interface)
 

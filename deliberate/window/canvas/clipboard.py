@@ -12,6 +12,7 @@ from deliberate.scenario.values import Person
 FORMAT = "application/x-deliberate-people+json"
 MOST_BYTES = 64_000_000
 MOST_NAMES = 500
+NOBODY = "there is nobody on the clipboard"
 
 
 def to_mime(clip: Clip) -> QMimeData:
@@ -22,11 +23,13 @@ def to_mime(clip: Clip) -> QMimeData:
     return data
 
 
-def from_mime(data: QMimeData) -> Clip:
+def from_mime(data: QMimeData | None) -> Clip:
     """The clip on the clipboard, checked; names from another program, one a line, become people.
 
     Raises DeliberateError where there is nothing that can be pasted.
     """
+    if data is None:
+        raise DeliberateError(NOBODY)
     if data.hasFormat(FORMAT):
         raw = data.data(FORMAT).data()
         if len(raw) > MOST_BYTES:
@@ -43,7 +46,7 @@ def from_mime(data: QMimeData) -> Clip:
     names = ["".join(letter for letter in name if letter.isprintable())[:200] for name in names if name]
     names = [name for name in names if name]
     if not names:
-        raise DeliberateError("there is nobody on the clipboard")
+        raise DeliberateError(NOBODY)
     if len(names) > MOST_NAMES:
         raise DeliberateError(
             f"there are {len(names)} lines on the clipboard: paste up to {MOST_NAMES} names at a time"
