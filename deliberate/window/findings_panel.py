@@ -10,14 +10,14 @@ from dataclasses import dataclass
 
 from PySide6.QtCore import QEvent, QRectF, QSize, Qt, Signal
 from PySide6.QtGui import QColor, QEnterEvent, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPaintEvent
-from PySide6.QtWidgets import QFrame, QLabel, QPushButton, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
 
 from deliberate.rehearsal.results import Finding, Rehearsal, Suggestion
 from deliberate.rehearsal.suggestions import apply, words
 from deliberate.rehearsal.words import with_unit
 from deliberate.scenario.values import Question
 from deliberate.window.session import Session
-from deliberate.window.text import plain_label, strong, with_ampersands
+from deliberate.window.text import WrappingButton, plain_label, strong
 from deliberate.window.theme import Look
 
 MARK_WIDTH = 4
@@ -41,9 +41,7 @@ class FindingCard(QWidget):
         self.says = plain_label(self)
         strong(self.says)
         self.why = plain_label(self, muted=True)
-        self.button = QPushButton(self)
-        self.button.setProperty("quiet", True)
-        self.button.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+        self.button = WrappingButton(look, self)
         self.button.clicked.connect(self._try)
         column = QVBoxLayout(self)
         column.setContentsMargins(16, 7, 10, 7)
@@ -56,8 +54,7 @@ class FindingCard(QWidget):
         self.finding = finding
         self.says.setText(finding.says)
         self.why.setText(finding.why)
-        self.button.setText(with_ampersands(f"Try: {change}") if change else "")
-        self.button.setToolTip(f"<span>{with_tags_shown(change)}</span>" if change else "")
+        self.button.setText(f"Try: {change}" if change else "")
         self.button.setAccessibleName(f"Try as a variant: {change}" if change else "")
         self.setAccessibleName(finding.says)
         self.setAccessibleDescription(finding.why)
@@ -122,11 +119,6 @@ class FindingCard(QWidget):
                 painter.setBrush(Qt.BrushStyle.NoBrush)
                 painter.setPen(QColor(theme.accent))
                 painter.drawRoundedRect(QRectF(self.rect()).adjusted(0.5, 0.5, -0.5, -0.5), 6, 6)
-
-
-def with_tags_shown(text: str) -> str:
-    """Text of a file made safe for a tooltip, which would take it for rich text."""
-    return text.replace("&", "&amp;").replace("<", "&lt;").replace(">", "&gt;")
 
 
 @dataclass(frozen=True)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QShowEvent
+from PySide6.QtGui import QCloseEvent, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
@@ -25,7 +25,7 @@ from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.styles import style_sheet
-from deliberate.window.text import plain_label, strong
+from deliberate.window.text import elided, plain_label, strong, tooltip
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
 
@@ -52,6 +52,8 @@ class TopBar(QWidget):
         self.question.setMinimumContentsLength(18)
         self.question.activated.connect(self._choose)
         self.question_label.setBuddy(self.question)
+        self.only_question = plain_label(self)
+        self.only_question.setWordWrap(False)
         row = QHBoxLayout(self)
         row.setContentsMargins(16, 5, 12, 5)
         row.setSpacing(10)
@@ -59,6 +61,7 @@ class TopBar(QWidget):
         row.addWidget(self.variants, 6)
         row.addWidget(self.question_label)
         row.addWidget(self.question, 3)
+        row.addWidget(self.only_question, 3)
         session.scenario_changed.connect(self.refresh)
         session.file_changed.connect(self.refresh)
         self.refresh()
@@ -67,14 +70,27 @@ class TopBar(QWidget):
         """Read title and questions again."""
         scenario = self._session.scenario
         self.title.setText(scenario.title + (" · edited" if self._session.modified else ""))
-        self.title.setToolTip("")
+        self.title.setToolTip(tooltip(scenario.title))
         self.question.clear()
         for question in scenario.questions:
             self.question.addItem(question.text, question.id)
         self.question.setCurrentIndex([q.id for q in scenario.questions].index(self._session.question.id))
         several = len(scenario.questions) > 1
-        self.question.setEnabled(several)
-        self.question.setToolTip("" if several else "Add questions under “Question” in the left bar")
+        self.question.setVisible(several)
+        self.question_label.setVisible(several)
+        self.only_question.setVisible(not several)
+        self._fit_question()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit_question()
+
+    def _fit_question(self) -> None:
+        """A single question stands as text, as much of it as there is room for."""
+        text = self._session.question.text
+        self.only_question.setText(elided(text, self.only_question.font(), self.width() * 0.27))
+        self.only_question.setAccessibleName(f"Question: {text}")
+        self.only_question.setToolTip(tooltip(text))
 
     def _choose(self, place: int) -> None:
         self._session.show_question(self.question.itemData(place))

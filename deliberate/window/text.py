@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt
-from PySide6.QtGui import QFont, QFontMetricsF
-from PySide6.QtWidgets import QLabel, QWidget
+from html import escape
+
+from PySide6.QtCore import QRect, QSize, Qt
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPaintEvent
+from PySide6.QtWidgets import QAbstractButton, QLabel, QSizePolicy, QWidget
+
+from deliberate.window.theme import Look
 
 
 def plain_label(parent: QWidget, *, muted: bool = False, text: str = "") -> QLabel:
@@ -29,6 +33,55 @@ def with_ampersands(text: str) -> str:
     return text.replace("&", "&&")
 
 
+def tooltip(text: str) -> str:
+    """Text for a tooltip, which would take tags in it for markup; long lines wrap."""
+    return f"<span>{escape(text)}</span>"
+
+
 def elided(text: str, font: QFont, width: float) -> str:
     """`text` shortened at its end to fit into `width` pixels."""
     return QFontMetricsF(font).elidedText(text, Qt.TextElideMode.ElideRight, width)
+
+
+class WrappingButton(QAbstractButton):
+    """A button of words alone, in the accent, that wraps its text as a paragraph instead of cutting it."""
+
+    PADDING = 4
+
+    def __init__(self, look: Look, parent: QWidget) -> None:
+        super().__init__(parent)
+        self._look = look
+        policy = QSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Fixed)
+        policy.setHeightForWidth(True)
+        self.setSizePolicy(policy)
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.setAttribute(Qt.WidgetAttribute.WA_Hover)
+        self.setCursor(Qt.CursorShape.PointingHandCursor)
+        strong(self)
+
+    def sizeHint(self) -> QSize:
+        return QSize(200, self.heightForWidth(200))
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(80, self.fontMetrics().height() + 2 * self.PADDING)
+
+    def heightForWidth(self, width: int) -> int:
+        room = QRect(0, 0, max(width - 2 * self.PADDING, 1), 10_000)
+        wrapped = self.fontMetrics().boundingRect(room, Qt.TextFlag.TextWordWrap, self.text())
+        return max(wrapped.height() + 2 * self.PADDING, 24)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        theme = self._look.theme
+        with QPainter(self) as painter:
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            if self.underMouse() or self.isDown():
+                painter.setPen(Qt.PenStyle.NoPen)
+                painter.setBrush(QColor(theme.raised if self.isDown() else theme.tint))
+                painter.drawRoundedRect(self.rect(), 4, 4)
+            if self.hasFocus():
+                painter.setPen(QColor(theme.accent))
+                painter.setBrush(Qt.BrushStyle.NoBrush)
+                painter.drawRoundedRect(self.rect().adjusted(0, 0, -1, -1), 4, 4)
+            painter.setPen(QColor(theme.accent))
+            inside = self.rect().adjusted(self.PADDING, 0, -self.PADDING, 0)
+            painter.drawText(inside, Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextWordWrap, self.text())

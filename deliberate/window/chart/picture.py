@@ -166,11 +166,10 @@ def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: The
         painter.drawLine(QLineF(frame.rect.left(), y, frame.rect.right(), y))
     if content.endings.warning:
         words = elided(content.endings.warning, font, frame.rect.width() - 12)
-        box = QRectF(frame.rect.right() - metrics.horizontalAdvance(words) - 6, frame.rect.top() + 3, 0, 0)
-        box.setSize(metrics.boundingRect(words).size())
+        box = QRectF(frame.rect.left() + 8, frame.rect.top() + 3, metrics.horizontalAdvance(words), metrics.height())
         _paint_label(painter, box, words, theme)
         taken.append(box)
-    for value, words in content.endings.lines:
+    for value, words in sorted(content.endings.lines, reverse=True):
         width = metrics.horizontalAdvance(words)
         y = float(frame.y(value))
         box = QRectF(frame.rect.right() - width - 6, y - metrics.height() - 2, width, metrics.height())

@@ -7,7 +7,7 @@ from collections.abc import Callable
 import numpy as np
 import pyqtgraph as pg
 from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QImage, QKeyEvent, QPainter, QPixmap, QTransform
+from PySide6.QtGui import QColor, QImage, QKeyEvent, QMouseEvent, QPainter, QPixmap, QTransform
 from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 from deliberate.rehearsal.words import number, shown_names
@@ -135,7 +135,6 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self.beliefs.addItem(self.hint, ignoreBounds=True)
         self.hinted = ""
 
-        self.scene().sigMouseMoved.connect(self._hover)
         self.scene().sigMouseClicked.connect(self._click)
         self.beliefs.getViewBox().sigRangeChanged.connect(self._tell_zoom)
         for signal in (
@@ -157,6 +156,9 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             axes["left"] = StripAxis(words)
         plot = self.addPlot(row=row, col=0, axisItems=axes)
         plot.setMenuEnabled(False)
+        entries = [action.menu() for action in plot.ctrlMenu.actions()]
+        for menu in (plot.ctrlMenu, *filter(None, entries)):
+            menu.setParent(self, menu.windowFlags())  # never shown; ours, so that they go when the chart goes
         plot.hideButtons()
         plot.hideAxis("bottom")
         plot.getAxis("left").setWidth(AXIS_WIDTH)
@@ -315,6 +317,11 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         person = int(np.argmin(away))
         per_round = 1 / size[0]
         return (person, round_) if away[person] <= NEAR and away_x <= max(NEAR, per_round / 2) else None
+
+    def mouseMoveEvent(self, event: QMouseEvent) -> None:
+        super().mouseMoveEvent(event)
+        # Not the scene's own signal: it drops the last of moves that come close together.
+        self._hover(self.mapToScene(event.position().toPoint()))
 
     def _hover(self, at: QPointF) -> None:
         found = self.near(at)

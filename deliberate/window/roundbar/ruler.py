@@ -23,7 +23,7 @@ from deliberate.scenario import edits
 from deliberate.scenario.values import Plan
 from deliberate.window.rounds_ruler import tick_step
 from deliberate.window.session import Session
-from deliberate.window.text import elided
+from deliberate.window.text import elided, tooltip
 from deliberate.window.theme import Look, mix
 
 SETTING_WORDS = {
@@ -256,9 +256,8 @@ class Ruler(QAbstractSlider):
         if index < 0:
             return ""
         stage = self._session.variant.plan.stages[index]
-        name = stage.name.replace("&", "&amp;").replace("<", "&lt;")
         rounds = "1 round" if stage.rounds == 1 else f"{stage.rounds} rounds"
-        return f"<span>{name}: {rounds}, {SETTING_WORDS[stage.setting]}. Click to change.</span>"
+        return tooltip(f"{stage.name}: {rounds}, {SETTING_WORDS[stage.setting]}. Click to change.")
 
     # Painting
 
