@@ -101,9 +101,8 @@ def test_a_wheel_does_not_read_from_the_checkout(wheel: Path, tmp_path: Path) ->
     assert len(paths) > 10
 
 
+@pytest.mark.parametrize("installed", ["wheel", "editable"], indirect=True)
 def test_the_commands_are_installed(installed: Path, tmp_path: Path) -> None:
-    if "checkout" in str(installed):
-        pytest.skip("a checkout has no commands of its own")
     demo = min((CHECKOUT / "scenarios").glob("*.deliberate.json"))
     assert run(installed.with_name("deliberate"), "check", demo, cwd=tmp_path).strip() == "ok"
     assert installed.with_name("deliberate-window").exists()
