@@ -101,13 +101,30 @@ class Electorate:
             return True
         return len(self.voters) >= exact(self.ballot.quorum) * self.eligible
 
+    @property
+    def marks(self) -> tuple[float, ...]:
+        """The beliefs at which a vote or an objection becomes another."""
+        marks = (self._for_above, self._against_below)
+        return marks if self._objects_below is None else (*marks, self._objects_below)
+
+    @property
+    def deciding(self) -> NDArray[np.intp]:
+        """The voters, and the holder of the casting vote."""
+        return self.voters if self._casting is None else np.union1d(self.voters, [self._casting])
+
+    def sides(self, beliefs: Floats) -> dict[str, NDArray[np.bool_]]:
+        """Which voters are for, against and objecting with k lists of beliefs: (k, voters) each."""
+        held = beliefs[:, self.voters]
+        nobody = np.zeros(held.shape, dtype=bool)
+        return {
+            "for": held > self._for_above,
+            "against": held < self._against_below,
+            "objecting": nobody if self._objects_below is None else held < self._objects_below,
+        }
+
     def tally(self, beliefs: Floats) -> Tallies:
         """Count k lists of beliefs, shape (k, people)."""
-        held = beliefs[:, self.voters]
-        sides = {"for": held > self._for_above, "against": held < self._against_below}
-        sides["objecting"] = (
-            np.zeros_like(sides["for"]) if self._objects_below is None else held < self._objects_below
-        )
+        sides = self.sides(beliefs)
         votes = {side: self._count(chosen, self._weights) for side, chosen in sides.items()}
         cast = votes["for"] + votes["against"]
         passes = (cast > 0).astype(bool) & self.quorum_met

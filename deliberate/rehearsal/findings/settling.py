@@ -1,0 +1,192 @@
+"""Whether views settle, on what, and how soon: settles, lasting-gap, unfinished, slow."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from deliberate.rehearsal.findings.sketch import Sketch, ending, halves, is_are, points, round_name, rounds
+from deliberate.rehearsal.findings.suggesting import introduction, joint_round
+from deliberate.rehearsal.results import Finding
+from deliberate.rehearsal.words import count, percent
+
+MUCH_OWN_VIEW = 0.75
+MUCH_INFLUENCE = 2.0  # times an equal share; beyond it `carries` tells more
+
+
+def settles(sketch: Sketch) -> Iterator[Finding]:
+    """A common view. Where all come to one view that does not move, `fixed_view` says it."""
+    view = sketch.common_view
+    if view is None or (sketch.still & sketch.heard).any():
+        return
+    agreed = sketch.agreed
+    where, within = sketch.view(view), f"within {sketch.tolerance} of each other"
+    if agreed == 0:
+        says = f"All start {within}, and they settle on {where}."
+    elif agreed is not None and agreed <= sketch.end:
+        says = f"All settle on {where} in the sketch, {within} from {round_name(agreed)} on."
+    else:
+        says = f"If they talked on, all would settle on {where} in the sketch."
+    yield Finding(
+        kind="settles",
+        says=says,
+        why=_why_settles(sketch),
+        people=sketch.ids(sketch.here),
+        figures={"view": view} | ({} if agreed is None else {"rounds_to_agree": agreed}),
+    )
+
+
+def _why_settles(sketch: Sketch) -> str:
+    groups = sketch.closed
+    if sketch.question.hearing_range is not None:
+        return "Word gets round among all who take part, though views too far apart are not heard at first."
+    if len(groups) != 1:
+        return "They do not all hear each other for ever, but come near enough while they do, or start so."
+    if len(groups[0]) == len(sketch.here):
+        top = float(sketch.influence.max())
+        if top > MUCH_INFLUENCE / len(sketch.here):
+            return "Everybody hears everybody, directly or through others, so views draw together round by round."
+        return (
+            f"Everybody hears everybody, directly or through others, and no start makes up more than {percent(top)}."
+        )
+    group = sketch.names(groups[0])
+    return f"All hear {group}, directly or through others, and these hear each other, so views draw together."
+
+
+def lasting_gap(sketch: Sketch) -> Iterator[Finding]:
+    """No common view, however long they talk, for reasons other than closed groups."""
+    limit = sketch.rehearsal.limit
+    if limit is None or len(sketch.here) < 2 or (len(sketch.closed) > 1 and not _all_still(sketch)):
+        return
+    gap = sketch.spread(limit)
+    if gap <= sketch.rehearsal.tolerance:
+        return
+    low, high = (int(sketch.here[at(limit[sketch.here])]) for at in (np.argmin, np.argmax))
+    views = f"{sketch.number(limit[low])} and {sketch.number(limit[high])}"
+    fixed = np.flatnonzero(sketch.still & sketch.heard)
+    apart = [introduction(sketch, fixed[at : at + 1], np.delete(fixed, at)) for at in range(min(len(fixed), 8))]
+    yield Finding(
+        kind="lasting-gap",
+        says=f"No common view, however long they talk: a gap of {sketch.number(gap)} stays in the sketch.",
+        why=f"{_why_gap(sketch)}; in the end {sketch.names([low])} and {sketch.names([high])} hold {views}.",
+        people=sketch.ids([low, high]),
+        figures={"gap": gap, "lowest": float(limit[low]), "highest": float(limit[high])},
+        suggestion=next(filter(None, apart), None),
+    )
+
+
+def _all_still(sketch: Sketch) -> bool:
+    """Every closed group is a person whose view never moves."""
+    return all(len(group) == 1 and sketch.still[group[0]] for group in sketch.closed)
+
+
+def _why_gap(sketch: Sketch) -> str:
+    firm = sketch.here[(sketch.firmness[sketch.here] > 0) & ~sketch.still[sketch.here]]
+    fixed = sketch.here[sketch.still[sketch.here]]
+    if len(firm):
+        lowest, highest = sketch.firmness[firm].min(), sketch.firmness[firm].max()
+        part = percent(lowest) if lowest == highest else f"{points(lowest)} to {percent(highest)}"
+        whom = f"All {len(firm)}" if len(firm) == len(sketch.here) else sketch.names(firm)
+        verb = ending(len(firm)) if len(firm) != len(sketch.here) else ""
+        return f"{whom} bring{verb} back {part} of the start in every round"
+    if len(fixed) == len(sketch.here):
+        return "Nobody hears anybody in any stage, so every view stays where it starts"
+    if len(fixed):
+        return f"The views of {sketch.names(fixed)} do not move, and the others are drawn to more than one of them"
+    distance = sketch.question.hearing_range
+    if distance is not None:
+        return f"Views more than {sketch.number(distance)} apart are not heard"
+    return "Not all can hear each other in the stage that goes on for ever"
+
+
+def unfinished(sketch: Sketch) -> Iterator[Finding]:
+    """The plan ends before views have come to where they are going."""
+    limit = sketch.rehearsal.limit
+    if limit is None or len(sketch.here) < 2:
+        return
+    view = sketch.common_view
+    if view is None:
+        yield from _still_moving(sketch)
+        return
+    spread = sketch.spread(sketch.ends)
+    if spread <= sketch.rehearsal.tolerance:
+        return
+    agreed = sketch.agreed
+    when = f"only from {round_name(agreed)} on" if agreed is not None else "only after very many rounds"
+    low, high = (int(sketch.here[at(sketch.ends[sketch.here])]) for at in (np.argmin, np.argmax))
+    suggestion = joint_round(sketch) if sketch.end > 0 else None
+    yield Finding(
+        kind="unfinished",
+        says=f"The plan ends before views meet: {sketch.at_end} they are still {sketch.number(spread)} apart.",
+        why=f"{_furthest(sketch, low, high)}; {_as_it_goes_on(sketch)} all would be within {sketch.tolerance} of each"
+        f" other {when}, and the plan has {rounds(sketch.plan_rounds)}.",
+        people=sketch.ids([low, high]),
+        figures={"spread": spread, "plan_rounds": sketch.plan_rounds}
+        | ({} if agreed is None else {"rounds_to_agree": agreed}),
+        suggestion=suggestion,
+    )
+
+
+def _furthest(sketch: Sketch, low: int, high: int) -> str:
+    views = f"{sketch.number(sketch.ends[low])} and {sketch.number(sketch.ends[high])}"
+    return f"{sketch.names([low])} and {sketch.names([high])} then hold {views}"
+
+
+def _as_it_goes_on(sketch: Sketch) -> str:
+    stages = sketch.variant.plan.stages
+    if sketch.variant.plan.afterwards == "repeat":
+        return "if the plan were repeated"
+    return "if the last stage went on" if len(stages) > 1 else "if talk went on"
+
+
+def _still_moving(sketch: Sketch) -> Iterator[Finding]:
+    """Without a common view: somebody is still on the way at the plan's end."""
+    away = np.abs(sketch.rehearsal.limit - sketch.ends)[sketch.here]
+    furthest = int(sketch.here[np.argmax(away)])
+    if away.max() <= sketch.rehearsal.tolerance:
+        return
+    moving = sketch.here[away > sketch.rehearsal.tolerance]
+    start, end = sketch.ends[furthest], sketch.rehearsal.limit[furthest]
+    yield Finding(
+        kind="unfinished",
+        says=f"The plan ends before views settle: {count(len(moving), 'view', 'views')}"
+        f" {is_are(len(moving))} still on the move {sketch.at_end}.",
+        why=f"The view of {sketch.names([furthest])} is at {sketch.number(start, beside=end)} then and would settle"
+        f" on {sketch.number(end, beside=start)} {_as_it_goes_on(sketch)}.",
+        people=sketch.ids(moving),
+        figures={"furthest": float(away.max()), "plan_rounds": sketch.plan_rounds},
+    )
+
+
+def slow(sketch: Sketch) -> Iterator[Finding]:
+    """In the whole plan what is left of the way to a common view does not even halve."""
+    halving, view = sketch.rehearsal.rounds_to_halve, sketch.common_view
+    if halving is None or view is None or halving < sketch.plan_rounds:
+        return
+    if sketch.spread(sketch.ends) <= sketch.rehearsal.tolerance:
+        return
+    people, reason = _why_slow(sketch)
+    yield Finding(
+        kind="slow",
+        says=f"Views draw together slowly: what is left of the gap {halves(halving)}.",
+        why=reason,
+        people=people,
+        figures={"rounds_to_halve": halving, "plan_rounds": sketch.plan_rounds},
+    )
+
+
+def _why_slow(sketch: Sketch) -> tuple[tuple[str, ...], str]:
+    own = np.asarray(sketch.drawn.matrix.diagonal())[sketch.here]
+    most = np.flatnonzero(own >= MUCH_OWN_VIEW)
+    if 0 < len(most) < len(sketch.here):
+        keepers = sketch.here[most]
+        part = points(own[most].min())
+        bound = part if len(most) == 1 else f"{part} or more"
+        return sketch.ids(keepers), (
+            f"{sketch.names(keepers)} keep{ending(len(most))} {bound} of 100 points for the own view,"
+            " and the rest wait for that to move."
+        )
+    if len(most) == len(sketch.here):
+        return sketch.ids(sketch.here), "Everybody keeps most of the 100 points for the own view, so little is heard."
+    return (), "Word gets round only bit by bit: views far apart reach each other through few points or many people."

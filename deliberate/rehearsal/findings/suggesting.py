@@ -1,0 +1,70 @@
+"""Simple changes of process that would help, where there is one."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+import numpy as np
+
+from deliberate.rehearsal.findings.sketch import Indices, Sketch
+from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView
+
+INTRODUCED_POINTS = 10.0
+KEPT_POINTS = 20.0
+CANDIDATES = 8  # of the most influential on either side
+# A joint round gives 2 of 100 points to each new voice, so there must be room for all of them.
+JOINT_PEOPLE = 40
+
+
+def introduction(sketch: Sketch, listeners: Indices, sources: Indices) -> Introduce | None:
+    """An arrow from one of `listeners` to one of `sources`, the most influential first, that is not drawn yet and
+    would count for ever; None where there is none or a hearing range decides who is heard."""
+    if sketch.question.hearing_range is not None:
+        return None
+    network = sketch.assembly.process.network
+    hearing = listeners[sketch.firmness[listeners] < 1]
+    for listener in _by_weight(sketch, hearing)[:CANDIDATES].tolist():
+        known = set(network.source[network.listener == listener].tolist())
+        for source in _by_weight(sketch, sources)[:CANDIDATES].tolist():
+            if source not in known and source != listener and _would_count(sketch, listener, source):
+                return Introduce(*sketch.ids([listener, source]), INTRODUCED_POINTS)
+    return None
+
+
+def own_views(sketch: Sketch, people: Iterable[int]) -> KeepOwnView:
+    """A part of the own view kept by all of these."""
+    return KeepOwnView(sketch.ids(people), KEPT_POINTS)
+
+
+def joint_round(sketch: Sketch) -> JointRound | None:
+    """A round in which everybody hears everybody, where that brings together some who do not hear each other."""
+    many = int(sketch.present.sum())
+    if many > JOINT_PEOPLE or sketch.question.hearing_range is not None:
+        return None
+    process = sketch.assembly.process
+    plenary = any(block.heard is None for block in process.blocks)
+    everybody_heard = int(sketch.counts.sum()) == many * (many - 1)
+    return None if plenary and everybody_heard else JointRound(1)
+
+
+def _by_weight(sketch: Sketch, people: Indices) -> Indices:
+    """The people, those first whose start counts most, then those who are given most points."""
+    given = np.asarray(sketch.drawn.matrix.sum(axis=0)).ravel()
+    return people[np.lexsort((-given[people], -sketch.influence[people]))]
+
+
+def _would_count(sketch: Sketch, listener: int, source: int) -> bool:
+    """Whether an arrow between the two would be heard in a stage that goes on for ever."""
+    plan = sketch.variant.plan
+    hears, heard = sketch.ids([listener, source])
+    for stage in plan.stages if plan.afterwards == "repeat" else plan.stages[-1:]:
+        match stage.setting:
+            case "plenary":
+                return True
+            case "tables" if any(hears in table and heard in table for table in stage.tables):
+                return True
+            case "panel" if heard in stage.speakers:
+                return True
+            case "pairs" if (hears, heard) in stage.pairs or (heard, hears) in stage.pairs:
+                return True
+    return False
