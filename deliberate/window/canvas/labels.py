@@ -13,7 +13,8 @@ Indices = NDArray[np.intp]
 
 CELL = 6.0  # pixels of the grid in which arrows are looked up
 GAP = 5.0  # between ring and name
-_OVER_DISC, _OVER_ARROW = 60.0, 1.0
+OVER_SOMETHING = 60.0  # what covering a disc costs, or another name
+_ALL_INK = 20.0  # what lying wholly on arrows costs
 # Middle of the name relative to the person: columns times (radius + gap + half a name), rows likewise. Later places
 # are only taken when they are better by the price in the last column.
 _PLACES = np.array(
@@ -30,9 +31,6 @@ _PLACES = np.array(
 )
 
 
-OVER_NAME = 90.0  # what covering another name costs
-
-
 def place_labels(places: Floats, radius: float, sizes: Floats, arrow_lines: Floats) -> tuple[Indices, Floats]:
     """Which place each name takes (for `offsets`), and what it covers there (0: nothing at all).
 
@@ -43,8 +41,8 @@ def place_labels(places: Floats, radius: float, sizes: Floats, arrow_lines: Floa
         return np.zeros(0, dtype=np.intp), np.zeros(0)
     half = sizes / 2
     middle = places[:, None] + _PLACES[None, :, :2] * _steps(radius, half)[:, None]  # (people, candidates, 2)
-    price = np.broadcast_to(_PLACES[:, 2], middle.shape[:2]) + _Ink(arrow_lines).under(middle, half) * _OVER_ARROW
-    price = price + _discs_covered(middle, half, places, radius) * _OVER_DISC
+    price = np.broadcast_to(_PLACES[:, 2], middle.shape[:2]) + _Ink(arrow_lines).under(middle, half) * _ALL_INK
+    price = price + _discs_covered(middle, half, places, radius) * OVER_SOMETHING
     return _choose(middle, half, price)
 
 
@@ -72,7 +70,7 @@ def _choose(middle: Floats, half: Floats, price: Floats) -> tuple[Indices, Float
         if done.any():
             taken = middle[rows[done], chosen[done]]
             apart = np.abs(taken[None] - middle[person][:, None]) - (half[done][None] + half[person])
-            own = own + (apart < 0).all(axis=-1).sum(axis=1) * OVER_NAME
+            own = own + (apart < 0).all(axis=-1).sum(axis=1) * OVER_SOMETHING * 1.5
         best = int(own.argmin())
         chosen[person], done[person] = best, True
         cost[person] = own[best] - _PLACES[best, 2]
@@ -105,18 +103,18 @@ class _Ink:
         self._table = table
 
     def under(self, middle: Floats, half: Floats) -> Floats:
-        """Inked cells under each candidate rectangle."""
+        """Which part of each candidate rectangle has ink under it, 0 to 1."""
         reach = np.array(self._table.shape) - 1
         low = np.clip(np.floor((middle - half[:, None] - self._low) / CELL), 0, reach).astype(np.intp)
         high = np.clip(np.ceil((middle + half[:, None] - self._low) / CELL), 0, reach).astype(np.intp)
         t = self._table
-        inked: Floats = (
+        inked = (
             t[high[..., 0], high[..., 1]]
             - t[low[..., 0], high[..., 1]]
             - t[high[..., 0], low[..., 1]]
             + t[low[..., 0], low[..., 1]]
         )
-        return inked
+        return inked / np.maximum((high - low).prod(axis=-1), 1)
 
 
 def _sampled(lines: Floats) -> Floats:

@@ -84,7 +84,7 @@ def colors(theme: Theme) -> tuple[QColor, ...]:
     """Opaque colours of the manners."""
     return (
         mix(theme.mark, theme.canvas, 0.68),
-        mix(theme.mark, theme.canvas, 0.5),
+        mix(theme.mark, theme.canvas, 0.6),
         mix(theme.mark, theme.canvas, 0.35),
         QColor(theme.mark),
         QColor(theme.accent),

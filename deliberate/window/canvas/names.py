@@ -7,13 +7,15 @@ from numpy.typing import NDArray
 from PySide6.QtCore import QPointF, QSizeF, Qt
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QStaticText, QTextOption
 
-from deliberate.window.canvas.labels import OVER_NAME, offsets, place_labels
+from deliberate.window.canvas.labels import OVER_SOMETHING, offsets, place_labels
 from deliberate.window.theme import Theme
 
 Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
 
-LEAST_PX = 7.0  # radius below which names are shown only for those selected or pointed at
+LEAST_PX, LEAST_PX_IN_CROWDS = 8.0, 14.0  # radius below which names are shown only for those selected or pointed at
+COMMITTEE = 60  # people; of more, names that would lie on something wait until they are pointed at
+CROWD = 200  # people; names of so many only cover the picture
 _HALO = ((-1, 0), (1, 0), (0, -1), (0, 1), (-1, -1), (1, 1), (-1, 1), (1, -1))
 
 
@@ -40,9 +42,16 @@ class Names:
         self.sizes = np.array([(size.width(), size.height()) for _, size in laid]).reshape(len(names), 2)
         self._chosen, self.crowded = place_labels(points, radius, self.sizes, arrow_lines)
 
-    def readable(self) -> NDArray[np.bool_]:
-        """Whose name does not lie on another's, shape (people,)."""
-        return self.crowded < OVER_NAME
+    def clear(self) -> NDArray[np.bool_]:
+        """Whose name lies on no disc and no other name, shape (people,)."""
+        return self.crowded < OVER_SOMETHING
+
+    def readable(self, radius: float) -> NDArray[np.bool_]:
+        """Whose name is painted at a radius in pixels: in a committee everybody's, in a crowd the clear ones."""
+        count = len(self.crowded)
+        if not has_room(count, radius):
+            return np.zeros(count, dtype=bool)
+        return self.clear() if count > COMMITTEE else np.ones(count, dtype=bool)
 
     def areas(self, points: Floats, radius: float) -> Floats:
         """Where the names are, as rows (left, top, width, height)."""
@@ -92,6 +101,11 @@ class Names:
             text.prepare(font=self._font)
             self._texts[key] = (text, QSizeF(width + 2, metrics.height() * len(lines)))
         return self._texts[key]
+
+
+def has_room(people: int, radius: float) -> bool:
+    """Whether names are painted at all for so many people of a radius in pixels."""
+    return radius >= (LEAST_PX_IN_CROWDS if people > CROWD else LEAST_PX)
 
 
 def wrapped(name: str, font: QFont, room: float) -> list[str]:

@@ -71,7 +71,11 @@ def paint_legend(painter: QPainter, width: float, lines: Iterable[str], theme: T
     painter.setPen(QColor(theme.muted))
     top = float(EDGE - 4)
     for line in lines:
-        text = metrics.elidedText(line, Qt.TextElideMode.ElideRight, max(width - right_room - 2 * EDGE, 60))
+        text = metrics.elidedText(line, Qt.TextElideMode.ElideRight, max(width - right_room - 3 * EDGE, 60))
+        _ground(
+            painter, QRectF(EDGE - 6, top - 1, metrics.horizontalAdvance(text) + 12, metrics.lineSpacing() + 1), theme
+        )
+        painter.setPen(QColor(theme.muted))
         painter.drawText(QPointF(EDGE, top + metrics.ascent()), text)
         top += metrics.lineSpacing()
 
@@ -91,6 +95,9 @@ def paint_scale(painter: QPainter, width: float, question: Question, theme: Them
     line = metrics.height()
     right = width - EDGE - metrics.horizontalAdvance(high)
     bar = QRectF(right - 8 - _BAR, EDGE - 4 + (line - 8) / 2, _BAR, 8)
+    rows = 2 if question.pass_mark is not None else 1
+    left_end = bar.left() - 14 - metrics.horizontalAdvance(low)
+    _ground(painter, QRectF(left_end, EDGE - 6, width - EDGE + 6 - left_end, line * rows + 6), theme)
     painter.setPen(QColor(theme.muted))
     painter.drawText(QPointF(right, EDGE - 4 + metrics.ascent()), high)
     painter.drawText(QPointF(bar.left() - 8 - metrics.horizontalAdvance(low), EDGE - 4 + metrics.ascent()), low)
@@ -128,14 +135,19 @@ def paint_foot(painter: QPainter, width: float, height: float, sentence: str, th
     area = QRectF(
         EDGE - 6, height - EDGE - metrics.height() - 2, metrics.horizontalAdvance(text) + 12, metrics.height() + 6
     )
-    painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
-    painter.setPen(Qt.PenStyle.NoPen)
-    ground = QColor(theme.canvas)
-    ground.setAlpha(225)
-    painter.setBrush(ground)
-    painter.drawRoundedRect(area, 4, 4)
+    _ground(painter, area, theme)
     painter.setPen(QColor(theme.ink))
     painter.drawText(area.adjusted(6, 0, 0, 0), Qt.AlignmentFlag.AlignVCenter | Qt.AlignmentFlag.AlignLeft, text)
+
+
+def _ground(painter: QPainter, area: QRectF, theme: Theme) -> None:
+    """Paper behind words, so that they can be read over the picture."""
+    ground = QColor(theme.canvas)
+    ground.setAlpha(215)
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
+    painter.setPen(Qt.PenStyle.NoPen)
+    painter.setBrush(ground)
+    painter.drawRoundedRect(area, 4, 4)
 
 
 def paint_empty(painter: QPainter, area: QRectF, theme: Theme) -> None:

@@ -70,14 +70,14 @@ class PeoplePainter:
 
     def paint(
         self, painter: QPainter, scene: Scene, points: Floats, radius: float, beliefs: Floats, theme: Theme,
-        *, gliding: bool, at_start: bool,
+        *, gliding: bool, at_start: bool, sharp: bool,
     ) -> None:  # fmt: skip
         """Paint everybody at `points` (pixels) in the colours of `beliefs`."""
         if len(points) == 0 or self._atlas is None:
             return
         shade = shade_indices(beliefs, scene.question)
         here = np.flatnonzero(scene.present)
-        painter.setRenderHint(QPainter.RenderHint.SmoothPixmapTransform, True)
+        painter.setRenderHint(QPainter.RenderHint.SmoothPixmapTransform, sharp)
         disc = radius * self.disc_part(scene, radius)
         if self._rings is not None:
             self._paint_rings(painter, points, radius, shade, here)

@@ -9,7 +9,6 @@ from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
-from PySide6.QtCore import QPointF, QRectF
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter
 
 from deliberate.rehearsal.words import amount
@@ -27,7 +26,7 @@ from deliberate.window.canvas.layers import (
     screen_curves,
     widths,
 )
-from deliberate.window.canvas.names import LEAST_PX, Names
+from deliberate.window.canvas.names import Names, has_room
 from deliberate.window.canvas.people import PeoplePainter
 from deliberate.window.canvas.scene import STRONG, Scene
 from deliberate.window.canvas.viewport import Viewport, fitted
@@ -40,7 +39,7 @@ Flags = NDArray[np.bool_]
 FINE_AT_ONCE = 160  # so many arrows are painted fine even while something moves
 FINE_ALIVE = 60
 HALO_ALIVE = 60  # so many names get a halo while something moves
-FIT_MARGINS = (44.0, 56.0, 44.0, 72.0)
+FIT_MARGINS = (44.0, 76.0, 44.0, 72.0)  # room for legend, names and the sentence at the foot
 
 
 @dataclass
@@ -196,7 +195,9 @@ class Picture:
         points = self.points
         self._paint_selection(painter, points)
         self.people.prepare(scene, self.stage, radius, self.ratio, theme, self.starts, sharp=resting)
-        self.people.paint(painter, scene, points, radius, beliefs, theme, gliding=gliding, at_start=at_start)
+        self.people.paint(
+            painter, scene, points, radius, beliefs, theme, gliding=gliding, at_start=at_start, sharp=resting
+        )
         self._paint_names(painter, points, baked=self._names_baked and self.moving is None)
         self._paint_focus(painter, points)
 
@@ -239,14 +240,14 @@ class Picture:
             look = ArrowLook(look.shown & ~moving, look.manner, look.dashed, look.flow)
         paint_arrows(painter, self.scene, self.view, look, self.theme, fine=fine)
         if self._names_baked:
-            everybody = np.flatnonzero(self._named())
+            everybody = np.flatnonzero(self._named() & self.names.clear())
             self.names.paint(painter, self.points, self.radius, everybody, self.theme, ~self.scene.present, halo=True)
 
     def _paint_names(self, painter: QPainter, points: Floats, *, baked: bool) -> None:
         """Names over the people: all, or where the ground layer has them only those that came up since."""
         named = self._named()
         if baked:
-            named &= self._special()
+            named &= self._special() | ~self.names.clear()
         which = np.flatnonzero(named)
         halo = len(which) <= HALO_ALIVE
         self.names.paint(painter, points, self.radius, which, self.theme, ~self.scene.present, halo=halo)
@@ -306,7 +307,7 @@ class Picture:
             font.setPointSizeF(max(5.0, round(font.pointSizeF() * scale * 2) / 2))
         shown = np.flatnonzero(self.look().shown)
         lines = np.zeros((0, 4))
-        if radius >= LEAST_PX:
+        if has_room(len(scene.ids), radius):
             lines, _ = geometry.strokes(self.curves(shown), np.full(len(shown), 6))
         room = min(max(radius * 4.4, 56.0), 190.0)
         self.names.place(scene.names, self.view.to_screen(scene.places), radius, lines, font, room)
@@ -316,7 +317,7 @@ class Picture:
         count = len(self.scene.ids)
         if len(self.names.sizes) != count:
             return np.zeros(count, dtype=bool)
-        return (self.names.readable() & (self.radius >= LEAST_PX)) | self._special()
+        return self.names.readable(self.radius) | self._special()
 
     def _special(self) -> Flags:
         """Whose names are painted whatever lies below: those pointed at, focused, and the few selected."""
@@ -327,15 +328,10 @@ class Picture:
         return self._flags(special | marks.people if len(marks.people) <= 30 else special, len(self.scene.ids))
 
     def _name_height(self) -> float:
-        return QFontMetricsF(self.font).height() if self.radius >= LEAST_PX else 0.0
+        return QFontMetricsF(self.font).height() if has_room(len(self.scene.ids), self.radius) else 0.0
 
     @staticmethod
     def _flags(which: set[int], count: int) -> Flags:
         flags = np.zeros(count, dtype=bool)
         flags[list(which)] = True
         return flags
-
-
-def area_of(point: Floats, reach: float) -> QRectF:
-    """The square around a point."""
-    return QRectF(QPointF(point[0] - reach, point[1] - reach), QPointF(point[0] + reach, point[1] + reach))

@@ -24,7 +24,7 @@ Flags = NDArray[np.bool_]
 Pair = tuple[str, str]
 
 STRONG = 300  # so many arrows are drawn in full, the strongest
-DRAWN = 1200  # and so many in all, the weaker ones thin; the rest only where their people are selected
+DRAWN = 1000  # and so many in all, the weaker ones thin; the rest only where their people are selected
 
 
 @dataclass(frozen=True, eq=False)

@@ -125,7 +125,7 @@ def test_names_on_each_other_are_reported(places: np.ndarray) -> None:
     over = (apart < -1e-9).all(axis=-1)
     np.fill_diagonal(over, False)
     # Of two names that lie on each other at least one says so, and is not painted.
-    readable = cost < labels.OVER_NAME
+    readable = cost < labels.OVER_SOMETHING
     assert not over[np.ix_(readable, readable)].any()
 
 
