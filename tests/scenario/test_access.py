@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import pytest
-from meetings import AS_IT_STANDS, HARBOUR, LEVY, MIXED, NOOR
+from harbour import AS_IT_STANDS, HARBOUR, LEVY, MIXED, NOOR
 
 from deliberate.errors import DeliberateError
 from deliberate.scenario import access

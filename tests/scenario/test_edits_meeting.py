@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 import pytest
-from meetings import ARROWS, AS_IT_STANDS, HARBOUR, INES, MIXED
+from harbour import ARROWS, AS_IT_STANDS, HARBOUR, INES, MIXED
 
 from deliberate.errors import DeliberateError
 from deliberate.scenario import edits, rules

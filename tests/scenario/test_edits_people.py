@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 import pytest
-from meetings import AS_IT_STANDS, HARBOUR, MIXED
+from harbour import AS_IT_STANDS, HARBOUR, MIXED
 
 from deliberate.errors import DeliberateError
 from deliberate.scenario import edits

@@ -6,9 +6,9 @@ import math
 from fractions import Fraction
 
 import pytest
+from harbour import AS_IT_STANDS, HARBOUR, MIXED
 from hypothesis import assume, given
 from hypothesis import strategies as st
-from meetings import AS_IT_STANDS, HARBOUR, MIXED
 from strategies import scenarios
 
 from deliberate.errors import DeliberateError

@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 
 import pytest
+from harbour import DAYS, HARBOUR, LEVY
 from hypothesis import given
 from hypothesis import strategies as st
-from meetings import DAYS, HARBOUR, LEVY
 from strategies import SCALES, scenarios
 
 from deliberate.errors import DeliberateError

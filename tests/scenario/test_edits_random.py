@@ -6,9 +6,9 @@ import inspect
 from collections.abc import Callable
 
 import pytest
+from harbour import HARBOUR
 from hypothesis import assume, event, given, settings
 from hypothesis import strategies as st
-from meetings import HARBOUR
 from strategies import (
     agreement_tests,
     ballot_tests,

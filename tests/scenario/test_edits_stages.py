@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import pytest
+from harbour import AS_IT_STANDS, HARBOUR, MIXED
 from hypothesis import given
 from hypothesis import strategies as st
-from meetings import AS_IT_STANDS, HARBOUR, MIXED
 
 from deliberate.errors import DeliberateError
 from deliberate.scenario import edits

@@ -1,4 +1,4 @@
-"""An invented meeting with something of everything in it, for tests: ``from meetings import HARBOUR``."""
+"""An invented meeting with something of everything in it, for tests: ``from harbour import HARBOUR``."""
 
 from __future__ import annotations
 
