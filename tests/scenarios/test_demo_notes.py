@@ -52,7 +52,9 @@ def test_air_sensor_label(demo: Demo) -> None:
     assert demo.run(tables).rounds_to_agree == demo.within_a_point(tables) == 6
     assert demo.variant(tables).plan.stages[0].rounds == 3
     assert "closed-groups" in demo.kinds()
+    assert "bridge" in demo.kinds(meet)
     assert not {"closed-groups", "lasting-gap"} & (demo.kinds(meet) | demo.kinds(tables))
+    assert not {"bridge", "knife-edge"} & demo.kinds(tables)
 
 
 def test_reservoir_board(demo: Demo) -> None:
@@ -241,6 +243,7 @@ def test_fever_guideline(demo: Demo) -> None:
     assert demo.variant(split).plan.stages[0].setting == "silence"
     assert demo.verdicts(split, "first")[:2] == demo.verdicts(split, "again")[:2] == ["agreement"] * 2
     assert demo.verdicts(split, "everyone")[:2] == ["disagreement"] * 2
+    assert "agreement" in demo.kinds(NOW, "everyone") & demo.kinds(split, "first") & demo.kinds(split, "again")
 
 
 def test_seabed_survey(demo: Demo) -> None:
