@@ -149,9 +149,7 @@ class _Sketch:
             facts.append(("Agree", f"within {within} of each other {when}"))
         if rehearsal.rounds_to_halve is not None:
             facts.append(("Pace", _halving(rehearsal.rounds_to_halve)))
-        voices = f"{rehearsal.effective_voices:.1f}".removesuffix(".0")
-        people = count(len(rehearsal.people), "person", "people")
-        facts.append(("Voices", f"carried as if by {voices} equal voices; there are {people}"))
+        facts += [("Voices", voices) for voices in self._voices()]
         if rehearsal.ballot is not None:
             quorum = "" if rehearsal.ballot[0].quorum_met else "; too few are present for the quorum"
             facts.append(("Rule", self.scenario.ballot.name + quorum))
@@ -183,6 +181,14 @@ class _Sketch:
         apart = np.flatnonzero(held.max(axis=1) - held.min(axis=1) > self.rehearsal.tolerance)
         first = int(apart[-1]) + 1 if len(apart) else 0
         return first if first < len(held) else None
+
+    def _voices(self) -> Iterator[str]:
+        """How concentrated the result is among those present; the absent keep their own views and carry nothing."""
+        shares = self.rehearsal.influence[self.present]
+        if shares.sum() > 0:
+            voices = f"{shares.sum() ** 2 / (shares @ shares):.1f}".removesuffix(".0")
+            heard = "voice" if voices == "1" else "equal voices"
+            yield f"carried as if by {voices} {heard}; {count(len(shares), 'person is', 'people are')} present"
 
     def _verdicts(self) -> Iterator[str]:
         """One line per agreement test: its verdict at the start, at the end, and in the long run."""

@@ -48,7 +48,7 @@ def test_the_whole_page():
         Settles  yes, on 72.1
         Agree    within 1 of each other from round 5 on
         Pace     every round more than halves the rest of the way
-        Voices   carried as if by 1.5 equal voices; there are 3 people
+        Voices   carried as if by 1.5 equal voices; 3 people are present
         Rule     Simple majority
 
         What stands out
@@ -81,6 +81,7 @@ def test_figures_are_those_of_people_who_are_present():
     assert "3 people, 2 present" in text
     assert "yes, on 50" in text
     assert "within 1 of each other from round 1 on" in text
+    assert "carried as if by 2 equal voices; 2 people are present" in text
     assert "Note: one person is absent" in text.replace("\n", " ")
     assert "100" not in text.partition("Start")[2].partition("Settles")[0]
 
