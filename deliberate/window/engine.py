@@ -6,6 +6,7 @@ first frame is up. A result whose scenario has moved on is dropped.
 
 from __future__ import annotations
 
+import gc
 import importlib
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -97,11 +98,18 @@ class Engine(QObject):
         def guarded() -> None:
             if self._latest is not ask:
                 return
+            # The collector must not run on this thread: it would delete Qt objects of dropped windows, with their
+            # timers, off their own thread.
+            collecting = gc.isenabled()
+            gc.disable()
             try:
                 self._came.emit(ask, work())
             except Exception as error:
                 # Told to the window on its own thread: a person's error as a message, anything else as a bug.
                 self._broke.emit(ask, error)
+            finally:
+                if collecting:
+                    gc.enable()
 
         self._pool.start(guarded)
 
