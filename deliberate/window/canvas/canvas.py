@@ -257,8 +257,8 @@ class Canvas(QWidget):
         overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme)
         if not picture.scene.ids and not self.editors.open_for_name:
             overlays.paint_empty(painter, QRectF(self.rect()), theme)
-        if self.hasFocus():
-            overlays.paint_edge(painter, self.rect(), theme, strong=self.keys.shows_focus)
+        if self.hasFocus() and self.keys.shows_focus:
+            overlays.paint_edge(painter, self.rect(), theme)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         self.picture.resize(self.width(), self.height(), self.devicePixelRatioF())

@@ -62,8 +62,8 @@ class Commands:
     def delete_selected(self) -> None:
         """Remove selected people and arrows in one step."""
         people, pairs, variant = *self._selected(), self._session.variant.name
-        if not people and not pairs:
-            return
+        if self._canvas.choosing.takes_clicks or not (people or pairs):
+            return  # while tables or speakers are chosen, selecting is for seating
 
         def change(scenario: Scenario) -> Scenario:
             left = [pair for pair in pairs if pair[0] not in people and pair[1] not in people]
@@ -136,7 +136,7 @@ class Commands:
     def cut(self) -> None:
         """Copy, then remove."""
         people, _ = self._selected()
-        if self.copy():
+        if not self._canvas.choosing.takes_clicks and self.copy():
             variant = self._session.variant
             step = f"Cut {names(people, variant)}"
             self._session.edit(step, lambda s: people_edits.remove_people(s, people, variant=variant.name))

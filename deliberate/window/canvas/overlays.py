@@ -168,9 +168,9 @@ def paint_empty(painter: QPainter, area: QRectF, theme: Theme) -> None:
     painter.drawText(text, Qt.AlignmentFlag.AlignHCenter | Qt.TextFlag.TextWordWrap, EMPTY)
 
 
-def paint_edge(painter: QPainter, area: QRect, theme: Theme, *, strong: bool) -> None:
-    """The edge of a canvas that has the focus; in accent where the focus came by key."""
+def paint_edge(painter: QPainter, area: QRect, theme: Theme) -> None:
+    """The edge of a canvas that is worked by key."""
     painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
     painter.setBrush(Qt.BrushStyle.NoBrush)
-    painter.setPen(QColor(theme.accent) if strong else QColor(theme.line))
+    painter.setPen(QColor(theme.accent))
     painter.drawRect(area.adjusted(0, 0, -1, -1))

@@ -81,6 +81,7 @@ class Picture:
         self._ground = GroundLayer()
         self._ground_stale = self._names_stale = True
         self._names_baked = False
+        self._baked = np.zeros(0, dtype=bool)  # whose names the ground layer has
         self._look: ArrowLook | None = None
 
     # What has changed
@@ -240,14 +241,15 @@ class Picture:
             look = ArrowLook(look.shown & ~moving, look.manner, look.dashed, look.flow)
         paint_arrows(painter, self.scene, self.view, look, self.theme, fine=fine)
         if self._names_baked:
-            everybody = np.flatnonzero(self._named() & self.names.clear())
+            self._baked = self._named() & self.names.clear()
+            everybody = np.flatnonzero(self._baked)
             self.names.paint(painter, self.points, self.radius, everybody, self.theme, ~self.scene.present, halo=True)
 
     def _paint_names(self, painter: QPainter, points: Floats, *, baked: bool) -> None:
         """Names over the people: all, or where the ground layer has them only those that came up since."""
         named = self._named()
         if baked:
-            named &= self._special() | ~self.names.clear()
+            named &= ~self._baked
         which = np.flatnonzero(named)
         halo = len(which) <= HALO_ALIVE
         self.names.paint(painter, points, self.radius, which, self.theme, ~self.scene.present, halo=halo)
