@@ -27,17 +27,19 @@ def of_stage(stage: Stage, scene: Scene) -> list[Ground]:
     return [Ground(group, f"Table {number}", lit=False) for number, group in enumerate(groups, start=1) if group]
 
 
-def lit_arrows(finding: Finding, scene: Scene) -> set[int]:
-    """The arrows to light up: those that the finding names, else those inside its groups."""
+def lit_arrows(finding: Finding, scene: Scene) -> set[int] | None:
+    """The arrows to light up: those that the finding names, else those inside its groups; None where it is about
+    people only, and all arrows stay as they are."""
     if finding.arrows:
         return {scene.arrow_index[pair] for pair in finding.arrows if pair in scene.arrow_index}
-    together = finding.groups or ((finding.people,) if len(finding.people) > 1 else ())
-    if finding.kind == "swing":  # its arrows run from phase to phase
-        together = (finding.people,)
+    if not finding.groups:
+        return None
+    # The arrows of a swing run from phase to phase.
+    together = (finding.people,) if finding.kind == "swing" else finding.groups
     result: set[int] = set()
     for group in together:
         members = set(group)
-        result |= {place for pair, place in scene.arrow_index.items() if pair[0] in members and pair[1] in members}
+        result |= {place for pair, place in scene.arrow_index.items() if members.issuperset(pair)}
     return result
 
 

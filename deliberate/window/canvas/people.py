@@ -39,7 +39,7 @@ class PeoplePainter:
         self._atlas: DiscAtlas | None = None
         self._rings: RingSprites | None = None
         self._rings_for: tuple[object, ...] = ()
-        self._texts: dict[str, tuple[QStaticText, QSizeF]] = {}
+        self._texts: dict[tuple[int, str], tuple[QStaticText, QSizeF]] = {}  # by size and text
         self._text_font = QFont()
 
     def with_rings(self, scene: Scene, radius: float) -> bool:
@@ -164,19 +164,20 @@ class PeoplePainter:
         font = QFont(painter.font())
         font.setBold(True)
         font.setPixelSize(max(7, math.floor(min(disc * 0.74, 1.55 * disc / (0.62 * max(longest, 2))))))
-        if font != self._text_font or len(self._texts) > _TEXTS_KEPT:
-            self._text_font = font
+        if font.family() != self._text_font.family() or len(self._texts) > _TEXTS_KEPT:
             self._texts.clear()
+        self._text_font = font
 
     def _text(self, text: str) -> tuple[QStaticText, QSizeF]:
-        known = self._texts.get(text)
+        key = (self._text_font.pixelSize(), text)
+        known = self._texts.get(key)
         if known is None:
             layout = QStaticText(text)
             layout.setTextFormat(Qt.TextFormat.PlainText)
             layout.prepare(font=self._text_font)
             metrics = QFontMetricsF(self._text_font)
             known = layout, QSizeF(metrics.horizontalAdvance(text), metrics.height())
-            self._texts[text] = known
+            self._texts[key] = known
         return known
 
 

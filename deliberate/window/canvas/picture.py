@@ -39,7 +39,7 @@ Flags = NDArray[np.bool_]
 FINE_AT_ONCE = 160  # so many arrows are painted fine even while something moves
 FINE_ALIVE = 60
 HALO_ALIVE = 60  # so many names get a halo while something moves
-FIT_MARGINS = (44.0, 76.0, 44.0, 72.0)  # room for legend, names and the sentence at the foot
+FIT_MARGINS = (58.0, 88.0, 58.0, 72.0)  # room for legend, names and the sentence at the foot
 
 
 @dataclass

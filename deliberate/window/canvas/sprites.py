@@ -90,6 +90,7 @@ class RingSprites:
         self.radius, self.ratio = radius, ratio
         self.cell = 2 * math.ceil((radius + 1) * ratio) + 2
         self._start = start
+        self._worn: Indices | None = None  # the shades that the image shows now
         self._colors = _coverage_table(theme)
         self._columns = max(1, math.ceil(math.sqrt(people)))
         rows = math.ceil(people / self._columns) if people else 1
@@ -114,6 +115,9 @@ class RingSprites:
 
     def color(self, shade: Indices) -> None:
         """Give all arcs the colours of these present beliefs."""
+        if self._worn is not None and np.array_equal(self._worn, shade):
+            return
+        self._worn = shade
         numbers = np.concatenate([shade, self._start, [SHADES]])
         self._pixels.reshape(-1)[self._where] = self._colors[self._level, numbers[self._voice]]
 

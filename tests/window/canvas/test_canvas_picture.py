@@ -137,6 +137,14 @@ def test_a_bridge_lights_its_arrows_only(open_canvas: Open) -> None:
     assert (np.delete(manner, bridge) == QUIET).all()
 
 
+def test_a_finding_about_people_leaves_the_arrows_alone(open_canvas: Open) -> None:
+    canvas = open_canvas()
+    before = canvas.picture.look().manner.tolist()
+    canvas.session.light(Finding("absent", "Says.", "Why.", ("amina",), {}))
+    assert canvas.picture.look().manner.tolist() == before
+    assert canvas.picture.emphasis.lit_people == {0}
+
+
 # Stages
 
 
