@@ -26,6 +26,7 @@ Flags = NDArray[np.bool_]
 
 QUIET, WEAK, PALE, PLAIN, MARKED = range(5)  # how an arrow is drawn, in the order of painting
 _WIDTH_STEP = 0.4
+_OVERLAP = 0.6  # pixels
 
 
 @dataclass(frozen=True, eq=False)
@@ -134,7 +135,15 @@ def _strokes(lines: Curves, dashed: bool, width: float, fine: bool) -> Floats:
     chord = np.hypot(*(lines.tip - lines.start).T)
     straight = length <= chord * 1.0005 + 0.05
     curved = np.clip(np.rint(length / (14.0 if fine else 40.0)), 4, 24).astype(np.intp)
-    return geometry.strokes(lines, np.where(straight, 1, curved))[0]
+    rows, _ = geometry.strokes(lines, np.where(straight, 1, curved))
+    return _overlapping(rows) if fine else rows
+
+
+def _overlapping(rows: Floats) -> Floats:
+    """Lines a little longer at both ends, so that antialiasing leaves no seams between those that follow."""
+    along = rows[:, 2:] - rows[:, :2]
+    along = along * (_OVERLAP / np.maximum(np.hypot(along[:, 0], along[:, 1]), 1e-9))[:, None]
+    return np.concatenate([rows[:, :2] - along, rows[:, 2:] + along], axis=1)
 
 
 def _paint_heads(painter: QPainter, triangles: Floats, ink: QColor, fine: bool) -> None:

@@ -7,7 +7,7 @@ from collections.abc import Iterable
 import numpy as np
 from numpy.typing import NDArray
 from PySide6.QtCore import QPointF, QRect, QRectF, Qt
-from PySide6.QtGui import QColor, QFontMetricsF, QLinearGradient, QPainter, QPen, QPolygonF
+from PySide6.QtGui import QColor, QFontMetricsF, QLinearGradient, QPainter, QPainterPath, QPen, QPolygonF
 
 from deliberate.rehearsal.words import number
 from deliberate.scenario.values import Question
@@ -42,13 +42,18 @@ def paint_arrow(
     count = len(arrows)
     long, half = np.full(count, 6.0 + 2.1 * width), np.full(count, 3.0 + 1.05 * width)
     lines = geometry.shortened(arrows, long * 0.8)
-    rows, _ = geometry.strokes(lines, np.full(count, 24), inked=0.55 if dashed else 1.0)
-    segments = [(QPointF(a, b), QPointF(c, d)) for a, b, c, d in rows.tolist()]
+    path = QPainterPath()
+    for start, control, tip in zip(lines.start.tolist(), lines.control.tolist(), lines.tip.tolist(), strict=True):
+        path.moveTo(*start)
+        path.quadTo(*control, *tip)
+    painter.setBrush(Qt.BrushStyle.NoBrush)
     for color, wide in ((halo, width + 5), (ink, width)):
         if color is not None:
-            painter.setPen(QPen(color, wide, Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap))
-            for one, other in segments:
-                painter.drawLine(one, other)
+            pen = QPen(color, wide, Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap)
+            if dashed and color is ink:
+                pen.setDashPattern([4.0 / width + 0.5, 3.0 / width + 0.5])
+            painter.setPen(pen)
+            painter.drawPath(path)
     painter.setPen(Qt.PenStyle.NoPen)
     painter.setBrush(ink)
     for tip, left, right in geometry.heads(arrows, long, half).tolist():
