@@ -77,14 +77,21 @@ class _Follower:
         affordable = PLAYED_WORK // max(self._process.network.arrows + people, 1)
         last_at = self._first_turn + min(PLAYED_AT_MOST, affordable)
         before: list[Shares] = []
-        unchanged = 0
+        unchanged = turns = 0
+        mark, mark_at = self._beliefs, 0
         while self._at <= last_at:
             held = self._beliefs
             turn = [self._round() for _ in range(self._rounds_in_turn)]
             same = len(turn) == len(before) and all(a is b for a, b in zip(turn, before, strict=True))
             unchanged = unchanged + 1 if same else 0
             before = turn
-            resting = same and np.abs(self._beliefs - held).max(initial=0.0) <= REST * self._scale
+            # Beliefs that come again while who hears whom changes do so for ever (found as in Brent 1980).
+            turns += 1
+            if unchanged < turns - mark_at - 1 and self._moved(mark) <= RECURS:
+                return self._done(turn, self._recurrence())
+            if turns >= 2 * mark_at:
+                mark, mark_at = self._beliefs, turns
+            resting = same and self._moved(held) <= REST
             if not resting and unchanged < PATIENCE:
                 continue
             if people > SQUARING_PEOPLE or self._rounds_in_turn > 1:
@@ -108,6 +115,10 @@ class _Follower:
         self._beliefs = self._move(shares, self._beliefs)
         self._at += 1
         return shares
+
+    def _moved(self, before: Floats) -> float:
+        """The furthest anybody has moved, in parts of the scale."""
+        return float(np.abs(self._beliefs - before).max(initial=0.0)) / self._scale
 
     def _keep(self, shares: Shares, rounds: int) -> None:
         if self._legs is None or not rounds:

@@ -9,6 +9,7 @@ from __future__ import annotations
 import warnings
 from collections.abc import Callable
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from scipy.sparse import csr_array
@@ -26,6 +27,8 @@ FULL_PEOPLE = 3000
 # Relative accuracy aimed at, and the one below which the reader is told.
 AIM = 1e-11
 ENOUGH = 1e-9
+# Steps shorter than this are rounding.
+ROUNDING = 1e-15
 # A part of the old shares is kept in every step, which makes groups that swing converge as well.
 HELD_BACK = 0.1
 STEPS = 400
@@ -141,26 +144,31 @@ class Iterated(Destination):
 
     def _solve(self, inner: Callable[[Floats], Floats], given: Floats, transposed: bool) -> Floats:
         """x = inner(x) + given."""
-        answer = given
-        size = np.abs(given).max()
-        step = size
+        answer, steps = given, _Steps()
         for _ in range(STEPS):
             after = inner(answer) + given
-            before, step = step, np.abs(after - answer).max()
+            step = np.abs(after - answer).max() / max(np.abs(after).max(), TINY)
             answer = after
-            if _left_over(step, before) <= AIM * np.abs(answer).max():
+            if steps.arrived(step):
                 return answer
         answer, exact = _direct(lambda x: x - inner(x), self._inner, given, transposed)
         self.exact &= exact
         return answer
 
 
-def _left_over(step: float, before: float) -> float:
-    """How far off an iteration still is, when its last two steps were this long."""
-    if step == 0:
-        return 0.0
-    ratio = step / before if before else 1.0
-    return step * ratio / (1 - ratio) if ratio < 1 else np.inf
+class _Steps:
+    """How far off an iteration still is, judged by the slowest of its last few steps."""
+
+    def __init__(self) -> None:
+        self._last = [np.inf] * 4
+
+    def arrived(self, step: float) -> bool:
+        """Takes the relative length of one more step; True when what is left is below the aim."""
+        self._last = [*self._last[1:], float(step)]
+        if step <= ROUNDING:
+            return True
+        ratio = max(after / before if 0 < before < np.inf else np.inf for before, after in pairwise(self._last))
+        return step <= AIM / 100 and ratio < 1 and step * ratio / (1 - ratio) <= AIM
 
 
 def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices) -> tuple[Floats, bool]:
@@ -172,14 +180,14 @@ def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices
     number = group_of[settled]
     sizes = np.bincount(number, minlength=len(groups))
     share = 1.0 / sizes[number]
-    step = np.inf
+    steps = _Steps()
     for _ in range(STEPS):
         within[settled] = share
         after = HELD_BACK * share + (1 - HELD_BACK) * turn.give_back(within)[0][settled]
         after /= sum_by(number, after, len(groups))[number]
-        before, step = step, (np.abs(after - share) / after).max()
+        step = (np.abs(after - share) / after).max()
         share = after
-        if _left_over(step, before) <= AIM:
+        if steps.arrived(step):
             within[settled] = share
             return within, True
     within[settled] = share

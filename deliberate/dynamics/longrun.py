@@ -152,7 +152,7 @@ def _reach(track: Course) -> tuple[Turn | LargeTurn, Structure, Destination]:
         shape = large_structure(large)
         return large, shape, Iterated(large, shape.closed)
     turn = turn_of(track.lasting, firmness)
-    shape = full_structure(turn.kept, firmness > 0)
+    shape = full_structure(turn.kept, turn.brought.any(axis=1))
     return turn, shape, Eliminated(turn, shape.closed)
 
 
