@@ -73,10 +73,10 @@ class FindingCard(QWidget):
             self.tried.emit(self.finding.suggestion)
 
     def _set_hot(self, hot: bool) -> None:
-        if hot != self._hot:
-            self._hot = hot
-            self.pointed.emit(self.finding if hot else None)
-            self.update()
+        # Said again also when nothing changes here: another card may have been pointed at meanwhile.
+        self._hot = hot
+        self.pointed.emit(self.finding if hot else None)
+        self.update()
 
     def enterEvent(self, event: QEnterEvent) -> None:
         self._set_hot(True)
