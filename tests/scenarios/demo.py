@@ -5,11 +5,11 @@ from __future__ import annotations
 from functools import cache
 
 import numpy as np
-from deliberate.rehearsal.findings import findings
 from plain_rounds import Floats, plain_rounds, share_matrix
 
 from deliberate.files import read
 from deliberate.files.resources import demo_scenarios
+from deliberate.rehearsal.findings import findings
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.results import Finding, Rehearsal
 from deliberate.scenario.values import Scenario, Variant
