@@ -1,5 +1,6 @@
 """`python -m deliberate` is `deliberate`; `python3 deliberate` in a bare checkout sets up `.venv` before that."""
 
+import os
 import sys
 
 
@@ -8,8 +9,10 @@ def _from_checkout() -> int:
 
     import machine  # the file beside this one: the package is not installed yet
 
-    python = machine.environment(".venv")
-    return subprocess.call([str(python), "-m", "deliberate", *sys.argv[1:]])
+    command = [str(machine.environment(".venv")), "-m", "deliberate", *sys.argv[1:]]
+    if os.name != "nt":  # where exec would give the terminal back at once
+        os.execv(command[0], command)
+    return subprocess.call(command)
 
 
 if __package__:
