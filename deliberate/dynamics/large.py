@@ -6,7 +6,6 @@ plan cost no more memory than single rounds.
 
 from __future__ import annotations
 
-import warnings
 from collections.abc import Callable
 from dataclasses import dataclass
 from itertools import pairwise
@@ -16,6 +15,7 @@ from scipy.sparse import csr_array
 
 from deliberate.dynamics.destination import Destination, group_numbers
 from deliberate.dynamics.elimination import stationary
+from deliberate.dynamics.krylov import gmres
 from deliberate.dynamics.network import Floats, Indices, sum_by
 from deliberate.dynamics.process import Leg
 from deliberate.dynamics.structure import ClosedSet, Structure, structure
@@ -32,8 +32,13 @@ ROUNDING = 1e-15
 # A part of the old shares is kept in every step, which makes groups that swing converge as well.
 HELD_BACK = 0.1
 STEPS = 400
-KRYLOV = 60
-KRYLOV_RESTARTS = 30
+TRIAL = 30
+KRYLOV = 40
+RESTARTS = 40
+# Networks with at most so many arrows a person on which this many Krylov steps do not help are long and thin, and
+# those have small factors (random ones have not, but there few steps do).
+THIN = 6
+THIN_RESTARTS = 8
 MOST_LAYERED_ARROWS = 60_000_000
 NOT_EXACT = "the network is large and close to falling apart: long-run numbers may be off by more than 1e-9"
 
@@ -117,6 +122,8 @@ class Iterated(Destination):
 
     def carry(self, views: Floats, starts: Floats) -> Floats:
         """See `Destination`."""
+        if len(views) + len(self.firm) == 1:
+            return np.full(len(self.passing), views[0] if len(views) else starts[self.firm[0]])
         held = np.zeros(self._turn.people)
         held[self._settled] = views[self.group_of[self._settled]]
         nothing = np.zeros(self._turn.people)
@@ -131,6 +138,10 @@ class Iterated(Destination):
 
     def trace(self, voice: Floats) -> tuple[Floats, Floats]:
         """See `Destination`."""
+        if len(self.groups) + len(self.firm) == 1:
+            ends = np.zeros(self._turn.people)
+            ends[self.firm] = voice.sum()
+            return np.full(len(self.groups), voice.sum()), ends
 
         def back(passing: Floats) -> Floats:
             whole = np.zeros(self._turn.people)
@@ -144,13 +155,13 @@ class Iterated(Destination):
 
     def _solve(self, inner: Callable[[Floats], Floats], given: Floats, transposed: bool) -> Floats:
         """x = inner(x) + given."""
-        answer, steps = given, _Steps()
-        for _ in range(STEPS):
+        answer, steps, step = given, _Steps(), np.inf
+        while steps.go_on(step):
             after = inner(answer) + given
             step = np.abs(after - answer).max() / max(np.abs(after).max(), TINY)
             answer = after
-            if steps.arrived(step):
-                return answer
+        if steps.arrived:
+            return answer
         answer, exact = _direct(lambda x: x - inner(x), self._inner, given, transposed)
         self.exact &= exact
         return answer
@@ -160,15 +171,21 @@ class _Steps:
     """How far off an iteration still is, judged by the slowest of its last few steps."""
 
     def __init__(self) -> None:
-        self._last = [np.inf] * 4
+        self._last = [np.inf] * 5
+        self._left = STEPS
+        self.arrived = False
 
-    def arrived(self, step: float) -> bool:
-        """Takes the relative length of one more step; True when what is left is below the aim."""
+    def go_on(self, step: float) -> bool:
+        """Takes the relative length of the last step; True when more are needed and few enough will do."""
         self._last = [*self._last[1:], float(step)]
-        if step <= ROUNDING:
-            return True
+        self._left -= 1
         ratio = max(after / before if 0 < before < np.inf else np.inf for before, after in pairwise(self._last))
-        return step <= AIM / 100 and ratio < 1 and step * ratio / (1 - ratio) <= AIM
+        remains = step * ratio / (1 - ratio) if ratio < 1 else np.inf
+        self.arrived = step <= ROUNDING or (step <= AIM / 100 and remains <= AIM)
+        if self.arrived or not self._left:
+            return False
+        on_trial = STEPS - self._left <= TRIAL
+        return on_trial or (ratio < 1 and np.log(AIM / 100 / step) / np.log(ratio) <= self._left)
 
 
 def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices) -> tuple[Floats, bool]:
@@ -180,17 +197,16 @@ def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices
     number = group_of[settled]
     sizes = np.bincount(number, minlength=len(groups))
     share = 1.0 / sizes[number]
-    steps = _Steps()
-    for _ in range(STEPS):
+    steps, step = _Steps(), np.inf
+    while steps.go_on(step):
         within[settled] = share
         after = HELD_BACK * share + (1 - HELD_BACK) * turn.give_back(within)[0][settled]
         after /= sum_by(number, after, len(groups))[number]
         step = (np.abs(after - share) / after).max()
         share = after
-        if steps.arrived(step):
-            within[settled] = share
-            return within, True
     within[settled] = share
+    if steps.arrived:
+        return within, True
     return _finished(turn, groups, number, settled, within)
 
 
@@ -232,40 +248,35 @@ def _influence_by_krylov(turn: LargeTurn, members: Indices) -> tuple[Floats, boo
 def _direct(
     missing: Callable[[Floats], Floats], inner: csr_array | None, given: Floats, transposed: bool
 ) -> tuple[Floats, bool]:
-    """Solves missing(x) = given with GMRES, or by a sparse factorisation where that does not get there.
+    """Solves missing(x) = given with GMRES, or by factors where that does not get there and they are small; and
+    whether the answer can be trusted to 1e-9.
 
-    inner: the matrix N with missing(x) = x - N x (x - x N when `transposed`), where there is one. Graphs on which
-    Krylov methods are slow hang together by few arrows, and these are the ones whose factors stay small.
+    inner: the matrix N with missing(x) = x - N x (x - x N when `transposed`), where there is one.
     """
-    from scipy.sparse.linalg import LinearOperator, gmres, splu
-
     size = len(given)
-    operator = LinearOperator((size, size), matvec=missing, dtype=np.float64)
-
-    def by_krylov(wanted: Floats) -> Floats:
-        return gmres(operator, wanted, rtol=1e-10, atol=0.0, restart=KRYLOV, maxiter=KRYLOV_RESTARTS)[0]
-
-    answer, last = _refined(by_krylov, missing, given)
-    if last <= AIM or inner is None:
+    thin = inner is not None and inner.nnz <= THIN * size
+    restarts = THIN_RESTARTS if thin else RESTARTS
+    answer, last = _refined(lambda wanted: gmres(missing, wanted, KRYLOV, restarts), missing, given)
+    if last <= AIM or not thin:
         return answer, last <= ENOUGH
+    from scipy.sparse.linalg import splu
+
     matrix = csr_array((np.ones(size), (np.arange(size), np.arange(size))), shape=(size, size)) - inner
-    with warnings.catch_warnings():
-        warnings.simplefilter("ignore")
-        factors = splu((matrix.T if transposed else matrix).tocsc())
-    answer, last = _refined(factors.solve, missing, given)
+    answer, last = _refined(splu((matrix.T if transposed else matrix).tocsc()).solve, missing, given)
     return answer, last <= ENOUGH
 
 
 def _refined(
-    solve: Callable[[Floats], Floats], missing: Callable[[Floats], Floats], given: Floats
+    solve: Callable[[Floats], Floats | None], missing: Callable[[Floats], Floats], given: Floats
 ) -> tuple[Floats, float]:
     """The answer with a few corrections, and how large the last one was beside it: how far it can be trusted."""
-    answer = solve(given)
-    last = np.inf
-    for _ in range(4):
+    answer, last = np.zeros(len(given)), np.inf
+    for _ in range(6):
         correction = solve(given - missing(answer))
+        if correction is None:
+            return answer, np.inf
         answer = answer + correction
-        before, last = last, np.abs(correction).max() / max(np.abs(answer).max(), TINY)
+        before, last = last, float(np.abs(correction).max() / max(np.abs(answer).max(), TINY))
         if last <= AIM / 100 or last > before / 2:
             break
-    return answer, float(last)
+    return answer, last

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 
 import numpy as np
 from scipy.sparse import coo_array, csr_array
 
 from deliberate.dynamics.destination import Destination
+from deliberate.dynamics.krylov import leading_eigenvalue
 from deliberate.dynamics.large import LargeTurn
 from deliberate.dynamics.network import Floats, Indices
 from deliberate.dynamics.structure import Structure
@@ -25,8 +26,6 @@ BY_SOLVING = 3000
 # Eigenvalues below this are rounding.
 ROUNDING = 1e-14
 ESTIMATE = "the rate is an estimate, because many people hear each other"
-
-Map = Callable[[Floats], Floats]
 
 
 def rate(kept: Floats | csr_array, shape: Structure, reached: Destination) -> tuple[float, bool]:
@@ -59,11 +58,20 @@ def rate(kept: Floats | csr_array, shape: Structure, reached: Destination) -> tu
 def rate_of_pass(turn: LargeTurn, reached: Destination) -> float:
     """The rate per turn of a turn that is never written out; an estimate."""
     nobody = np.zeros(turn.people)
+    closed = reached.group_of >= 0
 
-    def rest(beliefs: Floats) -> Floats:
-        return turn.apply(beliefs - reached.average(beliefs, nobody), nobody)
+    def among_passing(beliefs: Floats) -> Floats:
+        return np.where(closed, 0.0, turn.apply(np.where(closed, 0.0, beliefs), nobody))
 
-    return _below_one(abs(_arnoldi(rest, turn.people)[0]))
+    def among_closed(beliefs: Floats) -> Floats:
+        beliefs = np.where(closed, beliefs, 0.0)
+        after = turn.apply(beliefs, nobody)
+        after[closed] -= reached.group_views(beliefs)[reached.group_of[closed]]
+        return np.where(closed, after, 0.0)
+
+    return _below_one(
+        max(abs(leading_eigenvalue(part, turn.people, ARNOLDI_STEPS)[0]) for part in (among_passing, among_closed))
+    )
 
 
 def _below_one(radius: float) -> float:
@@ -144,7 +152,7 @@ def _radius_of_large(block: Floats | csr_array, share: Floats | None) -> tuple[f
     def rest(beliefs: Floats) -> Floats:
         return block @ beliefs if share is None else block @ beliefs - share @ beliefs
 
-    leading, exact = _arnoldi(rest, block.shape[0])
+    leading, exact = leading_eigenvalue(rest, block.shape[0], ARNOLDI_STEPS)
     radius = abs(leading)
     if exact or radius < NEARLY_ONE or block.shape[0] > BY_SOLVING:
         return radius, exact
@@ -155,33 +163,6 @@ def _radius_of_large(block: Floats | csr_array, share: Floats | None) -> tuple[f
     from scipy.linalg import lu_factor, lu_solve
 
     factors = lu_factor(missing, check_finite=False)
-    inverse, exact = _arnoldi(lambda given: lu_solve(factors, given, check_finite=False), len(full))
+    inverse, exact = leading_eigenvalue(lambda given: lu_solve(factors, given), len(full), ARNOLDI_STEPS)
     nearest = abs(1 - 1 / inverse)
     return max(radius, nearest), exact and nearest >= radius
-
-
-def _arnoldi(apply: Map, size: int) -> tuple[complex, bool]:
-    """The Ritz value of largest modulus after some Arnoldi steps, and whether it is right to 1e-9."""
-    steps = min(ARNOLDI_STEPS, size)
-    basis = np.zeros((steps + 1, size))
-    start = apply(np.random.default_rng(0).standard_normal(size))
-    length = np.linalg.norm(start)
-    if length < ROUNDING:
-        return 0.0, True
-    basis[0] = start / length
-    small = np.zeros((steps + 1, steps))
-    for step in range(steps):
-        after = apply(basis[step])
-        for _ in range(2):
-            part = basis[: step + 1] @ after
-            small[: step + 1, step] += part
-            after = after - part @ basis[: step + 1]
-        small[step + 1, step] = length = np.linalg.norm(after)
-        if length < ROUNDING:
-            steps = step + 1
-            break
-        basis[step + 1] = after / length
-    values, vectors = np.linalg.eig(small[:steps, :steps])
-    first = np.argmax(np.abs(values))
-    missing = small[steps, steps - 1] * abs(vectors[-1, first])
-    return complex(values[first]), bool(missing <= 1e-9 * abs(values[first]))
