@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from deliberate.rehearsal.findings.sketch import Sketch, round_name
+from deliberate.rehearsal.findings.sketch import Sketch, since
 from deliberate.rehearsal.results import Agreement, Finding
 from deliberate.rehearsal.words import amount, in_words, percent
 from deliberate.scenario.values import AgreementTest
@@ -21,25 +21,25 @@ def agreement(sketch: Sketch) -> Iterator[Finding]:
     for at, test in enumerate(sketch.question.agreement):
         series = [tests[at] for tests in sketch.rehearsal.agreement[: sketch.end + 1]]
         first, last = series[0], series[-1]
-        since = next((k for k in range(len(series), 0, -1) if series[k - 1].verdict != last.verdict), 0)
+        changed = next((k for k in range(len(series), 0, -1) if series[k - 1].verdict != last.verdict), 0)
         came_together = first.verdict != "agreement" and last.verdict == "agreement"
         yield Finding(
             kind="agreement",
-            says=_says_agreement(sketch, test, first, last, since),
+            says=_says_agreement(sketch, test, first, last, changed),
             why=_why_agreement(sketch, last, _among_few(sketch) if came_together else None),
             people=sketch.ids(sketch.voters),
-            figures={"at_start": first.figure, "at_end": last.figure, "since": since},
+            figures={"at_start": first.figure, "at_end": last.figure, "since": changed},
         )
 
 
-def _says_agreement(sketch: Sketch, test: AgreementTest, first: Agreement, last: Agreement, since: int) -> str:
+def _says_agreement(sketch: Sketch, test: AgreementTest, first: Agreement, last: Agreement, changed: int) -> str:
     name = _test_in_words(sketch, test)
     now, before = _verdict(test, last), _verdict(test, first)
-    if since == 0:
+    if changed == 0:
         return f"{name}: {now} from the start to {_end(sketch)}."
     if first.verdict == last.verdict:
-        return f"{name}: {now} at the start and again from {round_name(since)} on."
-    return f"{name}: {before} at the start, {now} from {round_name(since)} on."
+        return f"{name}: {now} at the start and again {since(changed)}."
+    return f"{name}: {before} at the start, {now} {since(changed)}."
 
 
 def _end(sketch: Sketch) -> str:

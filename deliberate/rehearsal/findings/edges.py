@@ -59,7 +59,7 @@ def _says_edge(sketch: Sketch, person: int, start: float, tally: Tally, unsure: 
 def _why_edge(sketch: Sketch, person: int, change: float, margin: float, tally: Tally, also: Indices) -> str:
     would = f"The vote {sketch.at_end} would then be {amount(tally.in_favour)} for, {amount(tally.against)} against"
     if margin <= 0:
-        sure = "no interview tells a start that closely"
+        sure = "no margin is given for this start"
     elif change <= margin:
         sure = f"that is within the margin of {sketch.number(margin, beside=0.0)} given for this start"
     else:

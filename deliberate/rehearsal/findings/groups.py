@@ -90,8 +90,11 @@ def outside(sketch: Sketch) -> Iterator[Finding]:
     yield Finding(
         kind="outside",
         says=f"What {sketch.names(people)} start{ending(len(people))} with no longer counts in the end.",
-        why=f"In the end all depends on {sketch.names(settling)}: the others hear them, directly or through others,"
-        " and are not heard by them.",
+        why=f"In the end all depends on {sketch.names(settling)}: what they hold reaches the others, directly or"
+        " through others, and nothing comes back."
+        if len(settling) > 1
+        else f"In the end all depends on {sketch.names(settling)}, whose view reaches the others, directly or through"
+        " others, and nothing comes back.",
         people=sketch.ids(people),
         figures={"people": len(people)},
         groups=(sketch.ids(people),),

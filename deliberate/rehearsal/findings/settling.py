@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from deliberate.rehearsal.findings.sketch import Sketch, ending, halves, is_are, points, round_name, rounds
+from deliberate.rehearsal.findings.sketch import Sketch, ending, halves, is_are, points, rounds, since
 from deliberate.rehearsal.findings.suggesting import introduction, joint_round
 from deliberate.rehearsal.results import Finding
 from deliberate.rehearsal.words import count, percent
@@ -25,7 +25,7 @@ def settles(sketch: Sketch) -> Iterator[Finding]:
     if agreed == 0:
         says = f"All start {within}, and they settle on {where}."
     elif agreed is not None and agreed <= sketch.end:
-        says = f"All settle on {where} in the sketch, {within} from {round_name(agreed)} on."
+        says = f"All settle on {where} in the sketch, {within} {since(agreed)}."
     else:
         says = f"If they talked on, all would settle on {where} in the sketch."
     yield Finding(
@@ -72,7 +72,7 @@ def lasting_gap(sketch: Sketch) -> Iterator[Finding]:
         why=f"{_why_gap(sketch)}; in the end {sketch.names([low])} and {sketch.names([high])} hold {views}.",
         people=sketch.ids([low, high]),
         figures={"gap": gap, "lowest": float(limit[low]), "highest": float(limit[high])},
-        suggestion=next(filter(None, apart), None),
+        suggestion=next(filter(None, apart), None) or (joint_round(sketch) if sketch.still.all() else None),
     )
 
 
@@ -113,7 +113,7 @@ def unfinished(sketch: Sketch) -> Iterator[Finding]:
     if spread <= sketch.rehearsal.tolerance:
         return
     agreed = sketch.agreed
-    when = f"only from {round_name(agreed)} on" if agreed is not None else "only after very many rounds"
+    when = f"only {since(agreed)}" if agreed is not None else "only after very many rounds"
     low, high = (int(sketch.here[at(sketch.ends[sketch.here])]) for at in (np.argmin, np.argmax))
     suggestion = joint_round(sketch) if sketch.end > 0 else None
     yield Finding(

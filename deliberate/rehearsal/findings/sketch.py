@@ -265,17 +265,27 @@ def sketch_of(scenario: Scenario, rehearsal: Rehearsal) -> Sketch:
 
 
 def rounds(number: float) -> str:
-    """A number of rounds: "one round", "46 rounds", "more than a million rounds"."""
+    """A number of rounds: "1 round", "7.3 rounds", "more than a million rounds"."""
     if number >= A_MILLION:
         return "more than a million rounds"
-    if number < 10:
-        number = round(number, 1)
-    return words.count(round(number) if number >= 10 else number, "round", "rounds")
+    return words.count(round(number, 1 if number < 10 else 0), "round", "rounds")
+
+
+def round_name(number: int) -> str:
+    """One round of many: "round 12"; beyond a million nobody counts."""
+    return f"round {words.amount(number)}" if number < A_MILLION else "a round beyond the millionth"
+
+
+def since(number: int) -> str:
+    """From when something holds: "from the start", "from round 12 on"."""
+    return "from the start" if number == 0 else f"from {round_name(number)} on"
 
 
 def halves(number: float) -> str:
     """What a gap does that halves once in so many rounds: "halves every 46 rounds"."""
-    shown = round(number, 1) if number < 10 else round(number)
+    if number >= A_MILLION:
+        return "halves once in more than a million rounds"
+    shown = round(number, 1)
     if shown < 1:
         return "more than halves in every round"
     return "halves in every round" if shown == 1 else f"halves every {rounds(number)}"
@@ -288,16 +298,13 @@ def pairs(sketch: Sketch, arrows: Indices) -> tuple[tuple[str, str], ...]:
     return tuple(zip(listeners, sources, strict=True))
 
 
-def round_name(number: int) -> str:
-    """One round of many: "round 12"; beyond a million nobody counts."""
-    return f"round {words.amount(number)}" if number < A_MILLION else "a round beyond the millionth"
-
-
 def points(share: float) -> str:
-    """A share as points of 100: "12", "0.4", "under 0.1"."""
+    """A share as points of 100: "12", "0.4"; never rounded to nothing or to all."""
     hundredth = 100 * float(share)
     if 0 < hundredth < 0.1:
         return "under 0.1"
+    if 99.5 <= hundredth < 100:
+        return "over 99"
     return words.amount(round(hundredth, 1 if hundredth < 10 else 0))
 
 

@@ -6,10 +6,10 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from deliberate.rehearsal.findings.sketch import Indices, Sketch, ending, pairs, points, round_name
+from deliberate.rehearsal.findings.sketch import Indices, Sketch, ending, pairs, points, since
 from deliberate.rehearsal.findings.suggesting import introduction
 from deliberate.rehearsal.results import Finding
-from deliberate.rehearsal.words import listing, percent
+from deliberate.rehearsal.words import listing, percent, sentence
 
 MORE_THAN_EQUAL = 2.0  # times an equal share
 HALF = 0.5
@@ -61,7 +61,7 @@ def _why_fixed(sketch: Sketch, people: Indices, others: Indices) -> str:
     reason = f"{holds}, while the others give {name}{together} {given} of 100 points on average"
     if sketch.common_view is None or sketch.agreed is None:
         return f"{reason}."
-    return f"{reason}; all are within {sketch.tolerance} of each other from {round_name(sketch.agreed)} on."
+    return f"{reason}; all are within {sketch.tolerance} of each other {since(sketch.agreed)}."
 
 
 def _points_given(sketch: Sketch, people: Indices, others: Indices) -> str:
@@ -88,7 +88,9 @@ def carries(sketch: Sketch) -> Iterator[Finding]:
     starts = "start" if len(people) == 1 else "starts"
     yield Finding(
         kind="carries",
-        says=f"{percent(total)} of where the sketch ends comes from the {starts} of {sketch.names(people)}.",
+        says=sentence(
+            f"{percent(total)} of where the sketch ends comes from the {starts} of {sketch.names(people)}."
+        ),
         why=_why_carries(sketch, people, equal),
         people=sketch.ids(people),
         figures={"share": total, "largest": float(influence[top]), "equal": equal},

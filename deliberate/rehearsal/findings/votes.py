@@ -10,7 +10,7 @@ import numpy as np
 from msgspec.structs import replace
 
 from deliberate.rehearsal.ballots import exact
-from deliberate.rehearsal.findings.sketch import Indices, Mask, Sketch, is_are, round_name
+from deliberate.rehearsal.findings.sketch import Indices, Mask, Sketch, is_are, round_name, since
 from deliberate.rehearsal.results import Finding, Tally
 from deliberate.rehearsal.words import amount, count, sentence
 from deliberate.scenario.rules import rule_in_words
@@ -97,7 +97,7 @@ def _history(tallies: tuple[Tally, ...]) -> str:
         return f"it {after} at {'every' if tallies[-1].passes else 'any'} point of the plan"
     if len(changes) == 1:
         when = "at the start" if changes[0] == 1 else f"up to {round_name(changes[0] - 1)}"
-        return f"it {before} {when} and {after} from {round_name(changes[0])} on"
+        return f"it {before} {when} and {after} {since(changes[0])}"
     times = "twice" if len(changes) == 2 else f"{len(changes)} times"
     return f"the outcome changes {times}, the last time at {round_name(changes[-1])}"
 
