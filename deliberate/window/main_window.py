@@ -54,6 +54,7 @@ class TopBar(QWidget):
         self.question_label.setBuddy(self.question)
         self.only_question = plain_label(self)
         self.only_question.setWordWrap(False)
+        self.only_question.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         row = QHBoxLayout(self)
         row.setContentsMargins(16, 5, 12, 5)
         row.setSpacing(10)

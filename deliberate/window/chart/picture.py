@@ -16,6 +16,7 @@ from deliberate.window.text import elided
 from deliberate.window.theme import Theme, mix, shade_indices, shades
 
 MOST_POINTS = 800  # rounds drawn per curve; longer plans are thinned evenly
+RIMMED = 12  # up to here selected curves get a rim
 COLOURED_ALONE = 40  # up to here curves wear their colours when nobody is selected
 
 
@@ -120,10 +121,14 @@ def _paint_curves(painter: QPainter, frame: Frame, content: Content, theme: Them
         color = mix(theme.panel, shade, 0.8 if everybody else 0.5)
         painter.setPen(QPen(color, 1.4 if everybody else 1.0, _dash(content, one)))
         _polyline(painter, x, y[:, one])
-    for one in sorted(chosen):
-        # A belief near the middle is pale; a rim of ink keeps its curve visible.
-        painter.setPen(QPen(QColor(theme.ink), 3.2, _dash(content, one)))
+    for one in sorted(content.lit - content.selected):
+        painter.setPen(QPen(palette[starts[one]], 1.8, _dash(content, one)))
         _polyline(painter, x, y[:, one])
+    for one in sorted(content.selected):
+        if len(content.selected) <= RIMMED:
+            # A belief near the middle is pale; a rim of ink keeps its curve visible.
+            painter.setPen(QPen(QColor(theme.ink), 3.2, _dash(content, one)))
+            _polyline(painter, x, y[:, one])
         painter.setPen(QPen(palette[starts[one]], 2.0, _dash(content, one)))
         _polyline(painter, x, y[:, one])
     if 0 < len(content.selected) <= 3:
