@@ -79,13 +79,15 @@ def shares(network: Network, heard: Mask | None = None, unheard: Unheard = "own"
     heeded = drawn & network.present[source]
     if heard is not None:
         heeded &= heard
-    # Divide by the row's largest weight that counts before summing: sums then neither overflow nor vanish.
+    # Divide by about the row's largest weight that counts before summing: sums then neither overflow nor vanish, and
+    # a power of two leaves every digit as it is.
     counted = drawn if unheard == "own" else heeded
     largest = own.copy()
     np.maximum.at(largest, listener[counted], weight[counted])
     largest[largest == 0] = 1.0
-    points = np.maximum(np.where(counted, weight, 0.0) / largest[listener], TINY)
-    to_own = np.where(own > 0, np.maximum(own / largest, TINY), 0.0)
+    unit = np.ldexp(1.0, np.frexp(largest)[1] - 1)
+    points = np.maximum(np.where(counted, weight, 0.0) / unit[listener], TINY)
+    to_own = np.where(own > 0, np.maximum(own / unit, TINY), 0.0)
     if unheard == "own":
         to_own += sum_by(listener, points * (drawn & ~heeded), count)
     listener, source, points = listener[heeded], source[heeded], points[heeded]
