@@ -7,24 +7,37 @@ import errno
 import os
 import secrets
 import stat
+import time
 from pathlib import Path
 from typing import NoReturn
 
 from deliberate.errors import DeliberateError
 
+FRESH = ".deliberate-{}.tmp"
+HALF_WRITTEN_SECONDS = 600  # by then nobody is still writing it
 
-def replace_file(path: str | os.PathLike[str], data: bytes) -> None:
+
+def replace_file(path: str | os.PathLike[str], data: bytes, *, private: bool = False) -> None:
     """Make `data` the content of the file at `path`, or raise a DeliberateError and leave it as it was.
 
     The bytes go into a new file in the same folder, reach the disk, and only then take the name. A symbolic link
-    stays and its target is replaced; permissions stay too.
+    stays and its target is replaced; permissions stay too. A new file is closed to others where it is `private`.
     """
     try:
         target = Path(os.path.realpath(path))
         old = _old_file(target)
-        _replace(target, data, old)
+        _replace(target, data, old, private)
     except (OSError, ValueError) as error:
         _refuse(_why(error, Path(path)))
+
+
+def clear_half_written(folder: Path) -> None:
+    """Remove what saving left half-written in `folder` when the program or the machine stopped in the middle."""
+    with contextlib.suppress(OSError):
+        for path in folder.glob(FRESH.format("*")):
+            with contextlib.suppress(OSError):
+                if time.time() - path.stat().st_mtime > HALF_WRITTEN_SECONDS:
+                    path.unlink()
 
 
 def _refuse(why: str) -> NoReturn:
@@ -45,10 +58,10 @@ def _old_file(target: Path) -> os.stat_result | None:
     return old
 
 
-def _replace(target: Path, data: bytes, old: os.stat_result | None) -> None:
-    fresh = target.with_name(f".deliberate-{secrets.token_hex(8)}.tmp")
+def _replace(target: Path, data: bytes, old: os.stat_result | None, private: bool) -> None:
+    fresh = target.with_name(FRESH.format(secrets.token_hex(8)))
     # A new file gets the permissions the user's own umask gives; a copy of an old one is closed until it has its own.
-    permissions = 0o666 if old is None else 0o600
+    permissions = 0o666 if old is None and not private else 0o600
     descriptor = os.open(fresh, os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0), permissions)
     try:
         with open(descriptor, "wb") as file:

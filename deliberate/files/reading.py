@@ -32,15 +32,20 @@ VERSION = 1
 def read(path: str | os.PathLike[str]) -> Scenario:
     """Read the scenario file at `path`; raise a DeliberateError for a file that cannot be read or does not hold
     a scenario."""
+    return decode(read_bytes(path))
+
+
+def read_bytes(path: str | os.PathLike[str]) -> bytes:
+    """The content of the file at `path`, cut off right after the size that `decode` refuses; raise a DeliberateError
+    for a file that cannot be read."""
     try:
         with Path(path).open("rb") as file:
             status = os.fstat(file.fileno())
             # A pipe does not know its size; asking for no more than needed keeps small files cheap.
             size = status.st_size if stat.S_ISREG(status.st_mode) else SIZE_LIMIT
-            data = file.read(min(size, SIZE_LIMIT) + 1)
+            return file.read(min(size, SIZE_LIMIT) + 1)
     except (OSError, ValueError) as error:
         raise DeliberateError(_why_unreadable(error)) from None
-    return decode(data)
 
 
 def decode(data: bytes) -> Scenario:

@@ -6,7 +6,6 @@ first frame is up. A result whose scenario has moved on is dropped.
 
 from __future__ import annotations
 
-import gc
 import importlib
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -17,6 +16,7 @@ from PySide6.QtCore import QObject, QThreadPool, Signal
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.results import Finding, Rehearsal
 from deliberate.scenario.values import Scenario, Variant
+from deliberate.window.background import pause_collector, resume_collector
 
 AT_ONCE_PEOPLE = 160  # up to here a rehearsal takes less than an edit may (see the benchmarks)
 FINDINGS_AT_ONCE_PEOPLE = 60
@@ -96,20 +96,16 @@ class Engine(QObject):
 
     def _start(self, ask: Ask, work: Callable[[], Any]) -> None:
         def guarded() -> None:
-            if self._latest is not ask:
-                return
-            # The collector must not run on this thread: it would delete Qt objects of dropped windows, with their
-            # timers, off their own thread.
-            collecting = gc.isenabled()
-            gc.disable()
+            pause_collector()
             try:
+                if self._latest is not ask:
+                    return
                 self._came.emit(ask, work())
             except Exception as error:
                 # Told to the window on its own thread: a person's error as a message, anything else as a bug.
                 self._broke.emit(ask, error)
             finally:
-                if collecting:
-                    gc.enable()
+                resume_collector()
 
         self._pool.start(guarded)
 
