@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QResizeEvent, QShowEvent
+from PySide6.QtGui import QCloseEvent, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
@@ -217,8 +217,8 @@ class MainWindow(QMainWindow):
             if isinstance(state, QByteArray):
                 splitter.restoreState(state)
 
-    def showEvent(self, event: QShowEvent) -> None:
-        super().showEvent(event)
+    def paintEvent(self, event: QPaintEvent) -> None:
+        super().paintEvent(event)
         if not self._painted_once:
             self._painted_once = True
             # Heavy imports and the first rehearsal wait until the first frame is up.

@@ -149,6 +149,7 @@ def test_start(benchmark, tmp_path: Path) -> None:
         "XDG_CONFIG_HOME": str(tmp_path),
         "HOME": str(tmp_path),
     }
+    environment.pop("PYTHONDONTWRITEBYTECODE", None)  # an installed program has its bytecode
     demo = str(demo_scenarios()[0])
 
     def seconds(code: str) -> float:
