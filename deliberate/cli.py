@@ -21,6 +21,7 @@ MOST_ROUNDS = 1_000_000
 WINDOW_HELP = """\
 usage: deliberate [FILE]
        deliberate rehearse FILE [options]
+       deliberate leverage FILE [options]
        deliberate check FILE
 
 Rehearse a contested meeting: who listens to whom, where talking leads, and why
@@ -29,12 +30,13 @@ it stalls. FILE is a scenario, `something.deliberate.json`.
   deliberate [FILE]         open the window on FILE, or on what was open last
   deliberate rehearse FILE  print the rehearsal; needs no display. Its options:
                             `deliberate rehearse -h`
+  deliberate leverage FILE  say what the result hangs on, guess by guess
   deliberate check FILE     say `ok`, or where the file is wrong and how
 
   -h, --help                show this and exit
   --version                 show the version and exit
 
-A FILE called `rehearse` or `check` opens with `deliberate -- FILE`.
+A FILE called like a command opens with `deliberate -- FILE`.
 """
 
 
@@ -56,6 +58,8 @@ def _run(arguments: Sequence[str]) -> int:
     match arguments:
         case ["rehearse", *rest]:
             return _on_file(_rehearse, _rehearse_parser().parse_args(rest))
+        case ["leverage", *rest]:
+            return _on_file(_leverage, _leverage_parser().parse_args(rest))
         case ["check", *rest]:
             return _on_file(_check, _check_parser().parse_args(rest))
         case _:
@@ -93,6 +97,21 @@ def _rehearse(options: argparse.Namespace) -> None:
         from deliberate.rehearsal.summary import summary
 
         _print(summary(scenario, rehearsal, findings(scenario, rehearsal)))
+
+
+def _leverage(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+    from deliberate.rehearsal.leverage import leverage
+    from deliberate.rehearsal.leverage_report import leverage_summary, leverage_to_json
+
+    scenario = read(options.file)
+    found = leverage(scenario, options.variant, options.question)
+    if options.json:
+        from msgspec import json
+
+        _print(json.encode(leverage_to_json(scenario, found)) + b"\n")
+    else:
+        _print(leverage_summary(scenario, found))
 
 
 def _check(options: argparse.Namespace) -> None:
@@ -148,13 +167,18 @@ def _window_parser() -> argparse.ArgumentParser:
     return parser
 
 
-def _rehearse_parser() -> argparse.ArgumentParser:
-    parser = _Parser(
-        "deliberate rehearse", "Play the meeting and say where the talking leads. A sketch, not a forecast."
-    )
+def _meeting_parser(command: str, description: str) -> argparse.ArgumentParser:
+    """What the commands share that compute something about one variant and one question."""
+    parser = _Parser(f"deliberate {command}", f"{description} A sketch, not a forecast.")
     parser.add_argument("file", metavar="FILE", help="a .deliberate.json scenario")
-    parser.add_argument("--variant", metavar="NAME", help="the set-up to rehearse (default: the first)")
+    parser.add_argument("--variant", metavar="NAME", help="the set-up to look at (default: the first)")
     parser.add_argument("--question", metavar="ID", help="the question that is talked about (default: the first)")
+    parser.add_argument("--json", action="store_true", help="print everything as JSON, at full precision")
+    return parser
+
+
+def _rehearse_parser() -> argparse.ArgumentParser:
+    parser = _meeting_parser("rehearse", "Play the meeting and say where the talking leads.")
     parser.add_argument(
         "--rounds", metavar="N", type=_rounds, help="rounds to play (default: as many as the plan has)"
     )
@@ -164,8 +188,11 @@ def _rehearse_parser() -> argparse.ArgumentParser:
         type=_tolerance,
         help="how near is agreed, on the scale (default: 1 %% of its width)",
     )
-    parser.add_argument("--json", action="store_true", help="print the rehearsal as JSON")
     return parser
+
+
+def _leverage_parser() -> argparse.ArgumentParser:
+    return _meeting_parser("leverage", "Say what the result hangs on: how far each guess moves it.")
 
 
 def _check_parser() -> argparse.ArgumentParser:
