@@ -40,6 +40,15 @@ def write_noting(scenario: Scenario, path: Path) -> OnDisk:
     return OnDisk(_digest(data), _stamp(path))
 
 
+def look(path: Path) -> OnDisk | None:
+    """What the file at `path` holds now, or None where it is gone or cannot be read."""
+    stamp = _stamp(path)
+    try:
+        return OnDisk(_digest(read_bytes(path)), stamp)
+    except DeliberateError:
+        return None
+
+
 def compare(path: Path, known: OnDisk) -> Literal["same", "changed", "gone"]:
     """Whether the file at `path` still holds what is `known` of it. A new date alone is no change."""
     stamp = _stamp(path)
@@ -47,10 +56,8 @@ def compare(path: Path, known: OnDisk) -> Literal["same", "changed", "gone"]:
         return "gone"
     if stamp == known.stamp:
         return "same"
-    try:
-        return "same" if _digest(read_bytes(path)) == known.digest else "changed"
-    except DeliberateError:
-        return "changed"  # there, but not to be read: not what it was
+    now = look(path)
+    return "same" if now is not None and now.digest == known.digest else "changed"
 
 
 def _digest(data: bytes) -> str:

@@ -9,10 +9,11 @@ from PySide6.QtCore import QObject, Qt
 from PySide6.QtGui import QAction, QActionGroup, QKeySequence
 from PySide6.QtWidgets import QMenu, QMenuBar, QWidget
 
-from deliberate.files.resources import demo_scenarios
 from deliberate.window import help_texts
+from deliberate.window.gallery import Gallery
 from deliberate.window.player import SPEEDS
-from deliberate.window.text import with_ampersands
+from deliberate.window.recent import label
+from deliberate.window.text import tooltip, with_ampersands
 
 if TYPE_CHECKING:
     from deliberate.window.main_window import MainWindow
@@ -73,15 +74,36 @@ class Actions(QObject):
         files = self._window.files
         self._add(menu, "&New meeting", files.new, Key.New)
         self._add(menu, "&Open …", files.ask_open, Key.Open)
-        demos = menu.addMenu("Open a &demo")
-        for path in demo_scenarios():
-            title = path.name.removesuffix(".deliberate.json").replace("-", " ").capitalize()
-            self._add(demos, with_ampersands(title), lambda path=path: files.open_demo(path))
+        self.recent = menu.addMenu("Open &recent")
+        self.recent.setToolTipsVisible(True)
+        self._add(menu, "Open a &demo …", self._show_gallery, "Ctrl+Shift+O")
         menu.addSeparator()
-        self.save = self._add(menu, "&Save", files.save, Key.Save)
+        self._add(menu, "&Save", files.save, Key.Save)
         self._add(menu, "Save &as …", files.ask_save_as, "Ctrl+Shift+S")
+        self.revert = self._add(menu, "Re&vert to the saved meeting", files.revert)
+        self.bring_back = self._add(menu, "&Bring back unsaved work …", files.offer_leftovers)
         menu.addSeparator()
         self._add(menu, "&Quit", self._window.close, "Ctrl+Q")
+        menu.aboutToShow.connect(self._refresh_file)
+        self._refresh_file()
+
+    def _refresh_file(self) -> None:
+        """What only the disk and the settings know is read when the menu opens."""
+        files = self._window.files
+        self.bring_back.setEnabled(self._window.recovery.any_copies())
+        self.recent.clear()
+        paths = files.recent.paths
+        for number, path in enumerate(paths, start=1):
+            entry = self.recent.addAction(f"&{number} {with_ampersands(label(path, paths))}")
+            entry.triggered.connect(lambda _checked=False, path=path: files.open_recent(path))
+            entry.setToolTip(tooltip(str(path)))
+        self.recent.addSeparator()
+        self.recent.addAction("&Forget recent files", files.recent.forget).setEnabled(bool(paths))
+
+    def _show_gallery(self) -> None:
+        gallery = Gallery(self._window.look, self._window)
+        gallery.chosen.connect(self._window.files.open_demo)
+        gallery.open()
 
     def _fill_edit(self, menu: QMenu) -> None:
         session, canvas = self._window.session, self._window.canvas
@@ -191,6 +213,7 @@ class Actions(QObject):
         self.delete.setEnabled(bool(selection))
         self.rename.setEnabled(len(selection.people) == 1)
         self.turn.setEnabled(bool(selection.arrows))
+        self.revert.setEnabled(session.path is not None and session.modified)
         self.remove_variant.setEnabled(len(session.scenario.variants) > 1)
 
     def _show_playing(self, playing: bool) -> None:

@@ -7,19 +7,24 @@ import os
 import sys
 import traceback
 from collections.abc import Iterator
-from contextlib import contextmanager
+from contextlib import contextmanager, suppress
+from dataclasses import dataclass
 from pathlib import Path
 from types import TracebackType
 
-from PySide6.QtCore import QLibraryInfo, QSettings, Qt
+from PySide6.QtCore import QLibraryInfo, QSettings, QStandardPaths, Qt
 from PySide6.QtWidgets import QApplication, QMessageBox
 
 from deliberate import files
 from deliberate.errors import DeliberateError
+from deliberate.files.on_disk import read_noting
+from deliberate.files.recovery import make_private
 from deliberate.files.resources import demo_scenarios
 from deliberate.scenario.values import Scenario
+from deliberate.window.held_file import HeldFile, InUseError, Locks
 from deliberate.window.main_window import MainWindow
-from deliberate.window.meeting_files import new_meeting
+from deliberate.window.meeting_files import ask_for_copy, new_meeting
+from deliberate.window.recent import RecentFiles
 from deliberate.window.session import Session
 from deliberate.window.theme import Look
 
@@ -35,6 +40,15 @@ class NoScreenError(DeliberateError):
     """The window has nowhere to open, or a system library for it is missing."""
 
 
+@dataclass(frozen=True)
+class Beginning:
+    """The meeting to begin with, its file if it has one, and what is to be said about it."""
+
+    scenario: Scenario
+    held: HeldFile | None = None
+    word: str = ""
+
+
 def run(path: str | None = None) -> int:
     """Open the window on `path` and stay until it is closed. Returns the exit status.
 
@@ -47,28 +61,58 @@ def run(path: str | None = None) -> int:
     app.setApplicationDisplayName("")
     app.setStyle("Fusion")
     settings = QSettings(QSettings.Format.IniFormat, QSettings.Scope.UserScope, "deliberate", "deliberate")
-    scenario, opened = first_meeting(path, settings)
-    window = MainWindow(Session(scenario, opened), Look(settings, app), settings)
+    with suppress(DeliberateError):  # the names of meetings in it are nobody else's business
+        make_private(Path(settings.fileName()).parent)
+    private = private_folder()
+    look = Look(settings, app)
+    beginning = first_meeting(path, RecentFiles(settings), Locks(private / "open"))
+    if beginning is None:
+        return 0
+    held = beginning.held
+    window = MainWindow(Session(beginning.scenario, held and held.path), look, settings, private)
+    window.files.begin(held)
     sys.excepthook = _Loud(window)
-    if opened is not None:
-        settings.setValue("file/last", str(opened))
     window.show()
+    if beginning.word:
+        window.session.said.emit(beginning.word)
     return int(app.exec())
 
 
-def first_meeting(path: str | None, settings: QSettings) -> tuple[Scenario, Path | None]:
-    """The meeting to begin with and its file. Raises DeliberateError when `path` cannot be read."""
+def private_folder() -> Path:
+    """Where unsaved work and locks are kept: among what this user has on this machine only."""
+    state = QStandardPaths.writableLocation(QStandardPaths.StandardLocation.GenericStateLocation)
+    return Path(state) / "deliberate"
+
+
+def first_meeting(path: str | None, recent: RecentFiles, locks: Locks) -> Beginning | None:
+    """What to begin with; None when another window has `path` open and she wants no copy.
+
+    Raises DeliberateError when `path` cannot be read.
+    """
     if path is not None:
-        return files.read(Path(path)), Path(path)
-    last = str(settings.value("file/last", "", str))
-    if last and Path(last).exists():
+        named = Path(os.path.abspath(path))
         try:
-            return files.read(Path(last)), Path(last)
-        except DeliberateError:
-            settings.remove("file/last")  # it was changed since; begin with a demo instead of failing for ever
+            return _hold(named, locks)
+        except InUseError:
+            return Beginning(files.read(named)) if ask_for_copy(None, named) else None
+    last, word = recent.last, ""
+    if last is not None:
+        try:
+            return _hold(last, locks)
+        except InUseError as error:
+            word = f"{last.name} {error}"
+        except DeliberateError as error:  # moved or changed since: begin with a demo instead of failing for ever
+            word = f"{last.name} was not opened: {error}"
+            recent.drop(last)
     demos = demo_scenarios()
     first = next((demo for demo in demos if FIRST_DEMO in demo.name), demos[0] if demos else None)
-    return (files.read(first), None) if first else (new_meeting(), None)
+    return Beginning(files.read(first) if first else new_meeting(), None, word)
+
+
+def _hold(path: Path, locks: Locks) -> Beginning:
+    lock = locks.take(path)
+    scenario, known = read_noting(path)
+    return Beginning(scenario, HeldFile(path, known, lock))
 
 
 @contextmanager
@@ -133,8 +177,18 @@ class _Loud:
         box.setIcon(QMessageBox.Icon.Critical)
         box.setWindowTitle("Something went wrong in the program")
         box.setTextFormat(Qt.TextFormat.PlainText)
-        box.setText("This is a fault of the program, not of the meeting. Save your work under another name.")
+        box.setText(f"This is a fault of the program, not of the meeting. {self._kept()}")
         box.setDetailedText("".join(traceback.format_exception(kind, error, trace)))
         box.exec()
         box.deleteLater()
         self._showing = False
+
+    def _kept(self) -> str:
+        """Copy unsaved work first, whatever state the program is in, and say whether that worked."""
+        try:
+            kept = self._window.recovery.keep_now()
+        except Exception:
+            kept = False
+        if kept:
+            return "Unsaved work has been kept: should the program end, it is offered at the next start."
+        return "Save your work under another name."

@@ -45,6 +45,7 @@ The meeting
   Ctrl+T                add a variant
   Ctrl+Tab              next variant
   Ctrl+N, O, S          new, open, save
+  Ctrl+Shift+S, O       save as, open a demo
 """
 
 CARE = """\

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QPaintEvent, QResizeEvent
+from pathlib import Path
+
+from PySide6.QtCore import QByteArray, QEvent, QSettings, Qt, QTimer
+from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
@@ -17,10 +19,14 @@ from PySide6.QtWidgets import (
 )
 
 from deliberate.window.actions import Actions
+from deliberate.window.asking import tell
 from deliberate.window.canvas import Canvas
 from deliberate.window.chart import ChartPanel
 from deliberate.window.findings_panel import FindingsPanel
-from deliberate.window.meeting_files import MeetingFiles, tell
+from deliberate.window.held_file import Locks
+from deliberate.window.meeting_files import MeetingFiles, dropped_file
+from deliberate.window.recent import RecentFiles
+from deliberate.window.recovery import Recovery
 from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
@@ -98,13 +104,18 @@ class TopBar(QWidget):
 
 
 class MainWindow(QMainWindow):
-    """Draw, edit, play, see why."""
+    """Draw, edit, play, see why.
 
-    def __init__(self, session: Session, look: Look, settings: QSettings) -> None:
+    `private` is the folder for what must survive a crash, by default beside the settings.
+    """
+
+    def __init__(self, session: Session, look: Look, settings: QSettings, private: Path | None = None) -> None:
         super().__init__()
         self.session, self.look, self._settings = session, look, settings
         session.setParent(self)
-        self.files = MeetingFiles(session, self, settings)
+        private = private or Path(settings.fileName()).parent
+        self.recovery = Recovery(session, private / "recovery", self)
+        self.files = MeetingFiles(session, self, RecentFiles(settings), self.recovery, Locks(private / "open"))
         self.top_bar = TopBar(session, self)
         self.variant_strip = self.top_bar.variants
         self.sidebar = Sidebar(session, look, self)
@@ -124,11 +135,13 @@ class MainWindow(QMainWindow):
         session.player.moved.connect(self._refresh_vote)
         session.said.connect(self._say)
         session.refused.connect(self._refuse)
+        self.recovery.failed.connect(lambda why: self._refuse(f"Unsaved work is not kept for a crash: {why}"))
         look.changed.connect(self._dress)
         self._painted_once = False
         self._dress()
         self._refresh_title()
         self._restore()
+        self.setAcceptDrops(True)
         self.canvas.setFocus()
 
     def _lay_out(self) -> None:
@@ -227,6 +240,24 @@ class MainWindow(QMainWindow):
     def _after_first_frame(self) -> None:
         self.session.rehearse()
         self.chart.load()
+        self.files.offer_leftovers()
+
+    def changeEvent(self, event: QEvent) -> None:
+        super().changeEvent(event)
+        if event.type() == QEvent.Type.ActivationChange and self.isActiveWindow():
+            QTimer.singleShot(0, self, self.files.look_at_disk)  # a question must not open in the middle of the event
+
+    def dragEnterEvent(self, event: QDragEnterEvent) -> None:
+        if dropped_file(event.mimeData()) is not None:
+            event.acceptProposedAction()
+
+    def dropEvent(self, event: QDropEvent) -> None:
+        path = dropped_file(event.mimeData())
+        if path is not None:
+            event.acceptProposedAction()
+            self.activateWindow()
+            # The other program waits until the drop is over; a question must not keep it waiting.
+            QTimer.singleShot(0, self, lambda: self.files.open(path))
 
     def closeEvent(self, event: QCloseEvent) -> None:
         if not self.files.may_leave():
@@ -236,6 +267,7 @@ class MainWindow(QMainWindow):
         self._settings.setValue("window/across", self.across.saveState())
         self._settings.setValue("window/right", self.right.saveState())
         self.session.close()
+        self.files.close()
         event.accept()
 
     def tell(self, title: str, what: str) -> None:

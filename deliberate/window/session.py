@@ -180,6 +180,11 @@ class Session(QObject):
         self._history.mark_saved(self.scenario)
         self.file_changed.emit()
 
+    def mark_unsaved(self) -> None:
+        """The meeting on screen is nowhere on disk any more: its file was changed or removed by others."""
+        self._history.mark_saved(None)
+        self.file_changed.emit()
+
     def show_variant(self, name: str) -> None:
         """Show another variant of the meeting; not an edit."""
         if name != self.variant.name:
