@@ -6,7 +6,8 @@ operations are sums, products and quotients of non-negative numbers, so every en
 relative accuracy (O'Cinneide 1993, Numerische Mathematik 65:109), also when groups hardly hear each other. An LU
 solve of the same system is off by per cents there. Diagonal entries are never looked at.
 
-States are eliminated in panels, so that most of the work is one matrix product per panel.
+States are eliminated in panels, so that most of the work is one matrix product per panel. Both functions take
+several systems of one size at once, in leading axes.
 """
 
 from __future__ import annotations
@@ -21,55 +22,66 @@ SAFE_PIVOT = 1e-200
 
 
 def stationary(rates: Floats) -> Floats:
-    """The share vector p with p = p T of one closed group: (k,), positive, sums to 1.
+    """The share vector p with p = p T of one closed group: (..., k), positive, sums to 1.
 
-    rates: (k, k) shares of the members among themselves, irreducible; own shares are not needed.
+    rates: (..., k, k) shares of the members among themselves, irreducible; own shares are not needed.
     """
-    size = len(rates)
+    size = rates.shape[-1]
     if size == 1:
-        return np.ones(1)
+        return np.ones(rates.shape[:-1])
     jumps = rates.copy()
-    np.fill_diagonal(jumps, 0.0)
-    leaving = jumps.sum(axis=1)
-    jumps /= leaving[:, None]
+    _clear_diagonal(jumps)
+    leaving = jumps.sum(axis=-1)
+    jumps /= leaving[..., None]
     pivots = _reduce(jumps, size - 1)
-    if pivots.min() < SAFE_PIVOT:
+    if pivots.min(initial=1.0) < SAFE_PIVOT:
+        if rates.ndim > 2:
+            return np.stack([stationary(one) for one in rates])
         return _stationary_by_logarithms(rates)
-    visits = np.empty(size)
-    visits[0] = 1.0
+    visits = np.empty(leaving.shape)
+    visits[..., 0] = 1.0
     for state in range(1, size):
-        visits[state] = (visits[:state] @ jumps[:state, state]) / pivots[state - 1]
+        arriving = visits[..., None, :state] @ jumps[..., :state, state, None]
+        visits[..., state] = arriving[..., 0, 0] / pivots[..., state - 1]
     # Time spent is visits over the rate of leaving; the smallest rate goes on top so that nothing overflows.
-    spent = visits * (leaving.min() / leaving)
-    return spent / spent.sum()
+    spent = visits * (leaving.min(axis=-1, keepdims=True) / leaving)
+    return spent / spent.sum(axis=-1, keepdims=True)
 
 
 def absorption(inside: Floats, exits: Floats) -> Floats:
-    """Chance of each passing state to end in each exit: (u, e), rows sum to 1.
+    """Chance of each passing state to end in each exit: (..., u, e), rows sum to 1.
 
-    inside: (u, u) shares of those who are in no closed group among themselves (own shares are not needed).
-    exits: (u, e) their shares on what is never left again; from every state some exit can be reached.
+    inside: (..., u, u) shares of those who are in no closed group among themselves (own shares are not needed).
+    exits: (..., u, e) their shares on what is never left again; from every state some exit can be reached.
     """
-    states, ends = exits.shape
+    states, ends = exits.shape[-2:]
     if ends == 1:
-        return np.ones((states, 1))
+        return np.ones(exits.shape)
     if states == 0:
-        return np.zeros((0, ends))
-    jumps = np.empty((states, ends + states))
-    jumps[:, :ends] = exits
-    jumps[:, ends:] = inside
-    np.fill_diagonal(jumps[:, ends:], 0.0)
-    jumps /= jumps.sum(axis=1, keepdims=True)
+        return np.zeros(exits.shape)
+    jumps = np.empty((*exits.shape[:-1], ends + states))
+    jumps[..., :ends] = exits
+    jumps[..., ends:] = inside
+    _clear_diagonal(jumps[..., ends:])
+    jumps /= jumps.sum(axis=-1, keepdims=True)
     pivots = _reduce(jumps, states)
-    if pivots.min() < SAFE_PIVOT:
+    if pivots.min(initial=1.0) < SAFE_PIVOT:
+        if inside.ndim > 2:
+            return np.stack([absorption(*one) for one in zip(inside, exits, strict=True)])
         return _absorption_by_logarithms(inside, exits)
-    chances = jumps[:, :ends]
+    chances = jumps[..., :ends]
     for first in range(0, states, PANEL):
         last = min(first + PANEL, states)
-        chances[first:last] += jumps[first:last, ends : ends + first] @ chances[:first]
+        chances[..., first:last, :] += jumps[..., first:last, ends : ends + first] @ chances[..., :first, :]
         for state in range(first + 1, last):
-            chances[state] += jumps[state, ends + first : ends + state] @ chances[first:state]
-    return chances / chances.sum(axis=1, keepdims=True)
+            through = jumps[..., state, None, ends + first : ends + state] @ chances[..., first:state, :]
+            chances[..., state, :] += through[..., 0, :]
+    return chances / chances.sum(axis=-1, keepdims=True)
+
+
+def _clear_diagonal(matrix: Floats) -> None:
+    states = np.arange(matrix.shape[-1])
+    matrix[..., states, states] = 0.0
 
 
 def _reduce(jumps: Floats, count: int) -> Floats:
@@ -78,36 +90,38 @@ def _reduce(jumps: Floats, count: int) -> Floats:
     Afterwards the row of an eliminated state holds the chances of the next state among those that were left,
     and its column what the others send to it at that moment.
     """
-    rows, columns = jumps.shape
-    pivots = np.empty(count)
+    rows, columns = jumps.shape[-2:]
+    pivots = np.empty((*jumps.shape[:-2], count))
     high = count
     while high > 0:
         low = max(high - PANEL, 0)
         top, left = rows - count + low, columns - count + low
-        if not _reduce_panel(jumps[top : rows - count + high, : columns - count + high], pivots[low:high]):
-            return np.zeros(count)
         width = high - low
+        panel = jumps[..., top : top + width, : left + width]
+        if not _reduce_panel(panel, pivots[..., low:high]):
+            return np.zeros(count)
         # What the rows above send into the panel, state by state, while the panel is being eliminated.
-        sent = jumps[:top, left : left + width]
-        inner = jumps[top : top + width, left : left + width]
+        sent = jumps[..., :top, left : left + width]
+        inner = panel[..., left:]
         for state in range(width - 2, -1, -1):
-            sent[:, state] += sent[:, state + 1 :] @ inner[state + 1 :, state]
-        jumps[:top, :left] += sent @ jumps[top : top + width, :left]
+            sent[..., state] += (sent[..., state + 1 :] @ inner[..., state + 1 :, state, None])[..., 0]
+        jumps[..., :top, :left] += sent @ panel[..., :left]
         high = low
     return pivots
 
 
 def _reduce_panel(panel: Floats, pivots: Floats) -> bool:
     """Eliminates the states of the rows of `panel`, which are its last columns; False when a pivot is too small."""
-    width = len(pivots)
-    left = panel.shape[1] - width
+    width = pivots.shape[-1]
+    left = panel.shape[-1] - width
     for state in range(width - 1, -1, -1):
-        row = panel[state, : left + state]
-        pivots[state] = pivot = row.sum()
-        if pivot < SAFE_PIVOT:
+        row = panel[..., state, : left + state]
+        pivot = row.sum(axis=-1)
+        if pivot.min(initial=1.0) < SAFE_PIVOT:
             return False
-        row /= pivot
-        panel[:state, : left + state] += np.multiply.outer(panel[:state, left + state], row)
+        pivots[..., state] = pivot
+        row /= pivot[..., None]
+        panel[..., :state, : left + state] += panel[..., :state, left + state, None] * row[..., None, :]
     return True
 
 

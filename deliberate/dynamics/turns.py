@@ -2,6 +2,7 @@
 
 A turn is a round, or a whole pass through a plan. Maps are built from sums and products of non-negative numbers
 only; a share that is above 0 by the arrows never becomes 0 by underflow, so that structure and numbers agree.
+Several turns of one size can stand side by side in leading axes.
 """
 
 from __future__ import annotations
@@ -55,9 +56,9 @@ def followed_by(first: Turn, then: Turn) -> Turn:
     """The map of one turn and then another, with rows adding to 1 again."""
     kept = _product(then.kept, first.kept)
     brought = _product(then.kept, first.brought) + then.brought
-    total = kept.sum(axis=1) + brought.sum(axis=1)
-    kept /= total[:, None]
-    brought /= total[:, None]
+    total = kept.sum(axis=-1) + brought.sum(axis=-1)
+    kept /= total[..., None]
+    brought /= total[..., None]
     return Turn(kept, brought, first.firm)
 
 
