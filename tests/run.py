@@ -18,8 +18,8 @@ CHECKOUT = Path(__file__).resolve().parent.parent
 sys.path.insert(0, str(CHECKOUT / "deliberate"))
 import machine  # noqa: E402  (the package is not installed in the Python that runs this)
 
-# A virtual screen for the end-to-end test, and hands for it.
-PACKAGES = (*machine.QT_PACKAGES, "xvfb", "xdotool")
+# A virtual screen for the end-to-end tests, hands for it, and the bus that screen readers use.
+PACKAGES = (*machine.QT_PACKAGES, "xvfb", "xdotool", "dbus", "at-spi2-core")
 
 
 def main(arguments: Sequence[str]) -> int:
