@@ -42,6 +42,16 @@ from deliberate.scenario.edits.people import (
 )
 from deliberate.scenario.edits.points import give_points, points_of, set_own_points, set_points
 from deliberate.scenario.edits.polls import record_poll, remove_poll, set_poll_belief, set_poll_round
+from deliberate.scenario.edits.process import (
+    acquaint,
+    add_go_between,
+    begin_with,
+    end_with,
+    hear_all_alike,
+    let_hear,
+    move_points,
+    reorder_stages,
+)
 from deliberate.scenario.edits.questions import (
     add_question,
     change_question,
@@ -76,25 +86,32 @@ from deliberate.scenario.edits.variants import (
 
 __all__ = [
     "Clip",
+    "acquaint",
     "add_arrow",
+    "add_go_between",
     "add_go_round",
     "add_joint_round",
     "add_person",
     "add_question",
     "add_stage",
     "add_variant",
+    "begin_with",
     "bring_people",
     "change_ballot",
     "change_question",
     "change_stage",
     "dealt",
+    "end_with",
     "extract",
     "fresh_person_id",
     "fresh_question_id",
     "fresh_variant_name",
     "give_points",
+    "hear_all_alike",
+    "let_hear",
     "linked_groups",
     "move_people",
+    "move_points",
     "move_question",
     "move_stage",
     "move_variant",
@@ -110,6 +127,7 @@ __all__ = [
     "rename_person",
     "rename_variant",
     "reorder_people",
+    "reorder_stages",
     "replace_variant",
     "scale_weights",
     "seat_people",

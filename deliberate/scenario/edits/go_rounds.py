@@ -42,7 +42,7 @@ def add_go_round(
     if each == 0:
         raise DeliberateError("the points for each new voice must be more than 0, or nobody would be heard")
     rows = {
-        listener: _opened(one, listener, row, newcomers, each)
+        listener: opened(one, listener, row, newcomers, each)
         for listener, row in rows_of(one, circle).items()
         if (newcomers := [source for source in circle if source not in row and source != listener])
     }
@@ -108,11 +108,11 @@ def _open_between(
         others = [source for other in groups if other is not group for source in other]
         for listener, row in rows_of(variant, group).items():
             average = HUNDRED / (sum(part > 0 for part in row.values()) + len(others))
-            rows[listener] = _opened(variant, listener, row, others, average if points is None else points)
+            rows[listener] = opened(variant, listener, row, others, average if points is None else points)
     return store_rows(scenario, rows, variant=variant.name)
 
 
-def _opened(variant: Variant, listener: str, row: Row, newcomers: Iterable[str], points: float) -> Row:
+def opened(variant: Variant, listener: str, row: Row, newcomers: Iterable[str], points: float) -> Row:
     """`row` with `points` for each newcomer, the rest making room in proportion."""
     heard = dict.fromkeys(newcomers, points)
     room = HUNDRED - math.fsum(heard.values())
