@@ -14,6 +14,7 @@ from deliberate.dynamics.process import Block, Process
 POINTS = ("0", "0", "0", "0", "1", "2.5", "0.3", "7")
 # Points that lie twelve powers of ten apart.
 FAR_APART = ("0", "0", "0", "1", "2.5", "1e-12", "7e-12", "0.3e-6")
+FEW = st.integers(1, 7)
 FIRMNESS = (0.0, 0.0, 0.0, 0.0, 0.25, 0.6, 1.0)
 
 
@@ -66,10 +67,7 @@ def plain_rounds(process: Process, starts: np.ndarray, rounds: int, reach: float
     network, firmness = process.network, process.firmness
     played = [np.array(starts, dtype=float)]
     for at in range(rounds):
-        if process.repeat:
-            block = schedule[at % len(schedule)]
-        else:
-            block = schedule[min(at, len(schedule) - 1)]
+        block = schedule[at % len(schedule) if process.repeat else min(at, len(schedule) - 1)]
         held, heard = played[-1], block.heard
         if reach is not None:
             near = np.abs(held[network.source] - held[network.listener]) <= reach + 1e-12
@@ -80,10 +78,9 @@ def plain_rounds(process: Process, starts: np.ndarray, rounds: int, reach: float
 
 
 def point_matrices(
-    people: st.SearchStrategy[int] | None = None, written: Sequence[str] = POINTS
+    people: st.SearchStrategy[int] = FEW, written: Sequence[str] = POINTS
 ) -> st.SearchStrategy[list[list[str]]]:
     """Square matrices of points in decimal text, row = listener."""
-    people = people or st.integers(1, 7)
     one = st.sampled_from(written)
     return people.flatmap(lambda n: st.lists(st.lists(one, min_size=n, max_size=n), min_size=n, max_size=n))
 

@@ -147,7 +147,7 @@ def test_a_firm_person_brings_her_start_back():
 
 
 def test_a_line_is_not_as_quick_as_its_eigenvalues():
-    """Own share 0.1, the one before 0.9: the second modulus is 0.1, the last of 40 hears the first after 39 rounds."""
+    """Own share 0.1, the one before 0.9: the second modulus is 0.1, yet 40 people need 49 rounds."""
     spread = np.ptp(play(plenary(line(40)), [1.0] + [0.0] * 39, 49), axis=1)
     assert (spread[:39] == 1).all()
     assert spread[48] > 0.01 >= spread[49]
