@@ -147,7 +147,7 @@ def paint_sketch(painter: QPainter, place: QRectF, scenario: Scenario, look: Loo
     points = {
         id_: inner.center() + QPointF((x - middle_x) * scale, (y - middle_y) * scale) for id_, (x, y) in spots.items()
     }
-    painter.setPen(QPen(QColor(look.theme.line), 1.0))
+    painter.setPen(QPen(QColor(look.theme.line), 1.0 if len(variant.arrows) <= 60 else 0.4))
     for arrow in variant.arrows:
         painter.drawLine(points[arrow.listener], points[arrow.source])
     painter.setPen(QPen(QColor(look.theme.panel), 1.0))
@@ -183,6 +183,7 @@ class Gallery(QDialog):
         close.setAutoDefault(False)
         close.clicked.connect(self.reject)
         buttons = QHBoxLayout()
+        buttons.setSpacing(8)
         buttons.addWidget(plain_label(self, muted=True, text="All people and places are invented."), 1)
         buttons.addWidget(close)
         buttons.addWidget(self.open_button)

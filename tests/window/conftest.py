@@ -15,6 +15,10 @@ from pytestqt.qtbot import QtBot
 from shiboken6 import isValid
 
 from deliberate.scenario.values import Scenario
+from deliberate.window.app import first_meeting
+from deliberate.window.held_file import Locks
+from deliberate.window.main_window import MainWindow
+from deliberate.window.recent import RecentFiles
 from deliberate.window.session import Session
 from deliberate.window.theme import Look
 
@@ -97,3 +101,30 @@ def open_session(qtbot: QtBot) -> Iterator[Callable[..., Session]]:
     yield open_one
     for session in opened:
         session.close()
+
+
+@pytest.fixture
+def open_file(qtbot: QtBot, look: Look, tmp_path: Path) -> Iterator[Callable[..., MainWindow]]:
+    """Opens files in windows of their own that share settings and private folder, as the program does."""
+    opened: list[MainWindow] = []
+
+    def open_one(path: Path | None = None) -> MainWindow:
+        settings = QSettings(str(tmp_path / "window.ini"), QSettings.Format.IniFormat)
+        private = tmp_path / "private"
+        beginning = first_meeting(None if path is None else str(path), RecentFiles(settings), Locks(private / "open"))
+        assert beginning is not None
+        held = beginning.held
+        window = MainWindow(Session(beginning.scenario, held and held.path), look, settings, private)
+        window.files.begin(held)
+        opened.append(window)
+        window.show()
+        window.activateWindow()
+        qtbot.waitUntil(lambda: window.chart.chart is not None, timeout=20_000)
+        qtbot.waitUntil(window.session.engine.idle, timeout=20_000)
+        return window
+
+    yield open_one
+    for window in opened:
+        window.session.open(window.session.scenario, None)  # nothing to ask about when it closes
+        window.close()
+        window.deleteLater()
