@@ -22,7 +22,7 @@ class RecentFiles:
     def paths(self) -> tuple[Path, ...]:
         """The files, whether they still exist or not."""
         kept = self._settings.value(_LIST, [])
-        names = [kept] if isinstance(kept, str) else kept or []  # a list of one comes back as its only entry
+        names = kept if isinstance(kept, list) else [kept]  # a list of one comes back as its only entry
         return tuple(Path(name) for name in names if isinstance(name, str) and name)[:MOST]
 
     @property
