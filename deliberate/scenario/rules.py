@@ -24,22 +24,22 @@ _NAMED_PARTS = {
     Fraction(3, 4): "three quarters",
     Fraction(1): "all",
 }
-_THRESHOLDS = {"more_than": "more than", "at_least": "at least", "at_most": "at most", "less_than": "less than"}
+THRESHOLDS = {"more_than": "more than", "at_least": "at least", "at_most": "at most", "less_than": "less than"}
 _EXTREMES = {  # thresholds at an end of [0, 1] read better without a number
     ("more_than", 0): "some of",
     ("at_least", 1): "all of",
     ("at_most", 0): "none of",
     ("less_than", 1): "not all of",
 }
-_WHOLES = {
+WHOLES = {
     ("ballots", "cast"): "the votes cast",
     ("people", "cast"): "those who vote for or against",
-    ("ballots", "present"): "the votes present",
+    ("ballots", "present"): "the votes of those present",
     ("people", "present"): "those present with a vote",
     ("ballots", "eligible"): "all votes, absent ones included,",
     ("people", "eligible"): "all those with a vote, absent ones included,",
 }
-_SIDES = {
+SIDES = {
     ("ballots", "for"): "are for",
     ("people", "for"): "are for",
     ("ballots", "against"): "are against",
@@ -131,7 +131,7 @@ def exact(share: Share) -> Fraction:
 
 def threshold(test: BallotTest) -> tuple[str, Fraction]:
     """The comparison of a test (``more_than``, ``at_least``, ``at_most`` or ``less_than``) and its share."""
-    for kind in _THRESHOLDS:
+    for kind in THRESHOLDS:
         share = getattr(test, kind)
         if share is not UNSET:
             return kind, exact(share)
@@ -154,8 +154,8 @@ def rule_in_words(ballot: Ballot, names: Mapping[str, str] = FrozenDict()) -> st
 
 def _test_in_words(test: BallotTest) -> str:
     kind, part = threshold(test)
-    amount = _EXTREMES.get((kind, part)) or f"{_THRESHOLDS[kind]} {_part_in_words(part)} of"
-    return f"{amount} {_WHOLES[test.count, test.of]} {_SIDES[test.count, test.side]}"
+    amount = _EXTREMES.get((kind, part)) or f"{THRESHOLDS[kind]} {_part_in_words(part)} of"
+    return f"{amount} {WHOLES[test.count, test.of]} {SIDES[test.count, test.side]}"
 
 
 def _part_in_words(part: Fraction) -> str:

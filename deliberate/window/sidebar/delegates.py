@@ -7,11 +7,13 @@ from PySide6.QtGui import QColor, QPainter
 from PySide6.QtWidgets import QLineEdit, QStyle, QStyledItemDelegate, QStyleOptionViewItem, QWidget
 
 from deliberate.window.session import Session
+from deliberate.window.sidebar.people_columns import Column
 from deliberate.window.sidebar.people_model import BELIEF_ROLE
 from deliberate.window.theme import Look, belief_color
 
 Index = QModelIndex | QPersistentModelIndex
 SWATCH = 9.0
+EDITOR_ROOM = 28  # beyond the text as it is, for a few letters more
 
 
 class CellDelegate(QStyledItemDelegate):
@@ -29,6 +31,14 @@ class CellDelegate(QStyledItemDelegate):
         editor.setStyleSheet("padding: 0 2px; border-radius: 0;")
         editor.setAccessibleName(str(index.data(Qt.ItemDataRole.AccessibleTextRole)))
         return editor
+
+    def updateEditorGeometry(self, editor: QWidget, option: QStyleOptionViewItem, index: Index) -> None:
+        """As wide as the cell, and wider where a long name needs it and the table has the room."""
+        cell = option.rect
+        needed = option.fontMetrics.horizontalAdvance(str(index.data(Qt.ItemDataRole.EditRole))) + EDITOR_ROOM
+        left = max(cell.left(), 0) if index.column() == Column.NAME else cell.left()
+        most = editor.parentWidget().width() - left
+        editor.setGeometry(left, cell.top(), max(min(needed, most), cell.width()), cell.height())
 
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: Index) -> None:
         option.state &= ~QStyle.StateFlag.State_HasFocus  # the view paints the focus itself, in the accent

@@ -1,21 +1,65 @@
-"""Numbers as people type them. Free of Qt."""
+"""Numbers and shares as people type them and as a field shows them for typing. Free of Qt."""
 
 from __future__ import annotations
 
 import math
+import re
+from fractions import Fraction
 
 from deliberate.errors import DeliberateError
+from deliberate.scenario.values import Share
+
+# As the program writes large figures. "0,125" and "12,5" do not fit, so a decimal comma is still understood.
+_GROUPED = re.compile(r"[-+]?[1-9]\d{0,2}(,\d{3})+(\.\d*)?")
+_FRACTION = re.compile(r"(\d{1,9})\s*/\s*(\d{1,9})")
+SHARE_WANTED = "a fraction such as 2/3, or a share such as 75 %"
 
 
 def typed_number(text: str, what: str) -> float:
     """The number in `text`, with a decimal point or comma. Raises DeliberateError naming `what` when it is none."""
-    tidy = text.strip().replace("\u2212", "-").replace(" ", "").replace("\u00a0", "").replace("%", "")
-    if "," in tidy and "." not in tidy:
+    tidy = "".join(text.split()).replace("\u2212", "-")
+    if _GROUPED.fullmatch(tidy):
+        tidy = tidy.replace(",", "")
+    elif tidy.count(",") == 1 and "." not in tidy:
         tidy = tidy.replace(",", ".")
     try:
-        value = float(tidy)
+        value = float(tidy.replace("_", "?"))
     except ValueError:
-        raise DeliberateError(f"{what} must be a number, is “{text.strip()}”") from None
+        value = math.nan
     if not math.isfinite(value):
         raise DeliberateError(f"{what} must be a number, is “{text.strip()}”")
     return value
+
+
+def plain(value: float) -> str:
+    """`value` to be typed over: exact, without thousands set off."""
+    value = float(value)
+    return str(int(value)) if value.is_integer() and abs(value) < 1e15 else repr(value)
+
+
+def hundredths(share: float) -> str:
+    """A part of one in hundredths, to be typed over; 0.29 is "29" although 0.29 * 100 is not 29 in doubles."""
+    return plain(float(Fraction(repr(float(share))) * 100))
+
+
+def typed_share(text: str, what: str) -> Share:
+    """The share in `text`: a fraction as it stands, hundredths with "%", otherwise a part of one.
+
+    Raises DeliberateError naming `what` where it is none of these or does not lie between none and all.
+    """
+    fraction = _FRACTION.fullmatch(text.strip())
+    if fraction is not None and 0 < int(fraction[2]) >= int(fraction[1]):
+        return f"{fraction[1]}/{fraction[2]}"
+    if fraction is None:
+        tidy = text.strip().removesuffix("%")
+        share = typed_number(tidy, what)
+        if tidy != text.strip():
+            share = float(Fraction(repr(share)) / 100)
+        if 0 <= share <= 1:
+            return share
+    raise DeliberateError(f"{what} must be {SHARE_WANTED}, from none to all, is “{text.strip()}”")
+
+
+def share_text(share: Share) -> str:
+    """A share to be typed over: a fraction as it was given, anything else in hundredths."""
+    return share if isinstance(share, str) else f"{hundredths(share)} %"

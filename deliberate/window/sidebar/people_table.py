@@ -2,30 +2,35 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+
 from PySide6.QtCore import (
     QItemSelection,
     QItemSelectionModel,
     QModelIndex,
+    QPoint,
     QRect,
     QSortFilterProxyModel,
     Qt,
     QTimer,
 )
-from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableView, QWidget
+from PySide6.QtGui import QColor, QGuiApplication, QKeyEvent, QKeySequence, QPainter, QPaintEvent, QPen
+from PySide6.QtWidgets import QAbstractItemView, QMenu, QTableView, QWidget
 
+from deliberate.errors import DeliberateError
+from deliberate.rehearsal.words import count
 from deliberate.scenario import edits
 from deliberate.window.session import Session
+from deliberate.window.sidebar import people_sheet
+from deliberate.window.sidebar.column_fit import ColumnFit
 from deliberate.window.sidebar.delegates import CellDelegate
-from deliberate.window.sidebar.people_model import SORT_ROLE, Column, PeopleModel
+from deliberate.window.sidebar.people_columns import Column
+from deliberate.window.sidebar.people_model import SORT_ROLE, PeopleModel
 from deliberate.window.theme import Look
 
 NOW_EVERY_MS = 100
-SAMPLES = {
-    Column.START: "100.0", Column.NOW: "  100.0", Column.MARGIN: "10", Column.FIRMNESS: "firm", Column.OWN: "33.3",
-    Column.BALLOTS: "votes", Column.PRESENT: "here",
-}  # fmt: skip
-EMPTY_HINT = "Nobody yet: double-click on the picture"
+EMPTY_HINT = "Nobody yet: double-click on the picture, or paste names here"
+Keys = QKeySequence.StandardKey
 
 
 class PeopleTable(QTableView):
@@ -46,13 +51,17 @@ class PeopleTable(QTableView):
         self._now = QTimer(self)
         self._now.setSingleShot(True)
         self._now.setInterval(NOW_EVERY_MS)
-        self._now.timeout.connect(self.people.refresh_now)
+        self._now.timeout.connect(self._show_round)
         self._dress()
+        self.columns = ColumnFit(self)
         self.selectionModel().selectionChanged.connect(self._tell_selection)
         session.selection_changed.connect(self._take_selection)
         self.people.modelReset.connect(self._take_selection)
         session.player.moved.connect(self._follow_round)
+        session.rehearsal_changed.connect(self._show_round)
         self.horizontalHeader().sectionClicked.connect(self.sort_by)
+        self.horizontalHeader().customContextMenuRequested.connect(self._open_header_menu)
+        self.customContextMenuRequested.connect(self._open_menu)
         look.changed.connect(self.viewport().update)
         self._take_selection()
 
@@ -65,23 +74,20 @@ class PeopleTable(QTableView):
             | QAbstractItemView.EditTrigger.EditKeyPressed
             | QAbstractItemView.EditTrigger.AnyKeyPressed
         )
+        self.setTabKeyNavigation(False)  # Tab goes from cell to cell while typing, otherwise out of the table
         self.setShowGrid(False)
         self.setWordWrap(False)
         self.setHorizontalScrollMode(QAbstractItemView.ScrollMode.ScrollPerPixel)
         self.setVerticalScrollMode(QAbstractItemView.ScrollMode.ScrollPerPixel)
+        self.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
         self.verticalHeader().hide()
-        height = self.fontMetrics().height()
-        self.verticalHeader().setDefaultSectionSize(max(height + 8, 24))
         self.verticalHeader().setMinimumSectionSize(24)
+        self.verticalHeader().setDefaultSectionSize(max(self.fontMetrics().height() + 8, 24))
         header = self.horizontalHeader()
         header.setHighlightSections(False)
-        header.setMinimumSectionSize(24)
         header.setSectionsClickable(True)
-        header.setSectionResizeMode(QHeaderView.ResizeMode.Interactive)
-        header.setSectionResizeMode(Column.NAME, QHeaderView.ResizeMode.Stretch)
         header.setSortIndicatorShown(False)
-        for column, sample in SAMPLES.items():
-            self.setColumnWidth(column, self.fontMetrics().horizontalAdvance(sample) + 12)
+        header.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
 
     # Order
 
@@ -105,7 +111,7 @@ class PeopleTable(QTableView):
         if self._following:
             return
         rows = self.selectionModel().selectedRows()
-        chosen = {self.people.person(self.proxy.mapToSource(row).row()).id for row in rows}
+        chosen = {self._person_at(index.row()) for index in rows}
         self._following = True
         self._session.select(people=chosen)
         self._following = False
@@ -116,9 +122,9 @@ class PeopleTable(QTableView):
         wanted = self._session.selection.people
         selection = QItemSelection()
         first = QModelIndex()
-        for row in range(self.proxy.rowCount()):
-            index = self.proxy.index(row, 0)
-            if self.people.person(self.proxy.mapToSource(index).row()).id in wanted:
+        for row in range(self.proxy.rowCount()) if wanted else ():
+            if self._person_at(row) in wanted:
+                index = self.proxy.index(row, 0)
                 selection.select(index, self.proxy.index(row, self.proxy.columnCount() - 1))
                 first = index if not first.isValid() else first
         self._following = True
@@ -130,16 +136,100 @@ class PeopleTable(QTableView):
             self.scrollTo(current)
         self._following = False
 
+    def _person_at(self, row: int) -> str:
+        return self.people.person(self._source_row(row)).id
+
+    def _source_row(self, row: int) -> int:
+        return self.proxy.mapToSource(self.proxy.index(row, 0)).row()
+
     def _follow_round(self) -> None:
         """At most ten times a second: a table of hundreds is slow to refresh."""
-        if not self._now.isActive():
+        if not self._now.isActive() and self.isVisible():
             self._now.start()
+
+    def _show_round(self) -> None:
+        if self.isVisible():
+            self.people.refresh_now()
+
+    # Clipboard
+
+    def copy(self) -> None:
+        """Put the selected rows on the clipboard, as they are sorted and with the columns on screen."""
+        rows = sorted(index.row() for index in self.selectionModel().selectedRows())
+        if not rows:
+            return
+        people = [self.people.row(self._source_row(row)) for row in rows]
+        text = people_sheet.as_text(people, list(self._columns_from(0)), self._session.question)
+        QGuiApplication.clipboard().setText(text)
+        self._session.said.emit(f"Copied {count(len(rows), 'row', 'rows')}")
+
+    def paste(self) -> None:
+        """Put the cells on the clipboard over the table from the current cell on; lines beyond the last add people.
+
+        A single cell goes to all selected people. Without a current cell people are added.
+        """
+        session, current = self._session, self.currentIndex()
+        try:
+            cells = people_sheet.cells_in(QGuiApplication.clipboard().text())
+        except DeliberateError as error:
+            session.refused.emit(str(error))
+            return
+        if len(cells) == len(cells[0]) == 1 and len(session.selection.people) > 1 and current.isValid():
+            self.people.give(self._source_row(current.row()), Column(current.column()), cells[0][0])
+            return
+        first = current.row() if current.isValid() else self.proxy.rowCount()
+        edit = people_sheet.pasted(
+            cells,
+            [self._person_at(row) for row in range(first, self.proxy.rowCount())],
+            list(self._columns_from(max(current.column(), 0))),
+            question=session.question.id,
+            variant=session.variant.name,
+        )
+        session.edit(f"Paste {count(len(cells), 'row', 'rows')}", edit)
+
+    def _columns_from(self, first: int) -> Iterator[Column]:
+        return (column for column in Column if column >= first and not self.isColumnHidden(column))
+
+    # Menus
+
+    def _open_menu(self, at: QPoint) -> None:
+        menu = self._menu()
+        current = self.indexAt(at)
+        if current.isValid() and current.flags() & Qt.ItemFlag.ItemIsEditable:
+            menu.addAction("Change", lambda: self.edit(current))
+            menu.addSeparator()
+        some = self.selectionModel().hasSelection()
+        menu.addAction("Copy", self.copy).setEnabled(some)
+        menu.addAction("Paste", self.paste)
+        menu.addAction("Select all", self.selectAll)
+        menu.addSeparator()
+        menu.addAction("Remove", self._remove_selected).setEnabled(some)
+        menu.addSeparator()
+        columns = menu.addMenu("Columns")
+        columns.setToolTipsVisible(True)
+        self.columns.add_to(columns)
+        menu.popup(self.viewport().mapToGlobal(at))
+
+    def _open_header_menu(self, at: QPoint) -> None:
+        menu = self._menu()
+        self.columns.add_to(menu)
+        menu.popup(self.horizontalHeader().mapToGlobal(at))
+
+    def _menu(self) -> QMenu:
+        menu = QMenu(self)
+        menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        menu.setToolTipsVisible(True)
+        return menu
 
     # Keys and painting
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         current, editing = self.currentIndex(), self.state() == QAbstractItemView.State.EditingState
-        if event.key() == Qt.Key.Key_Delete and not editing:
+        if event.matches(Keys.Copy):
+            self.copy()
+        elif event.matches(Keys.Paste):
+            self.paste()
+        elif event.key() == Qt.Key.Key_Delete and not editing:
             self._remove_selected()
         elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and not editing and current.isValid():
             self.edit(current)
@@ -152,15 +242,11 @@ class PeopleTable(QTableView):
 
     def _remove_selected(self) -> None:
         session = self._session
-        ids = [person.id for person in session.variant.people if person.id in session.selection.people]
-        if not ids:
+        people = [person for person in session.variant.people if person.id in session.selection.people]
+        if not people:
             return
-        who = (
-            session.variant.people[self.people.row_of(ids[0]) or 0].shown_name
-            if len(ids) == 1
-            else f"{len(ids)} people"
-        )
-        variant = session.variant.name
+        who = people[0].shown_name if len(people) == 1 else f"{len(people)} people"
+        ids, variant = [person.id for person in people], session.variant.name
         session.edit(f"Remove {who}", lambda scenario: edits.remove_people(scenario, ids, variant=variant))
 
     def paintEvent(self, event: QPaintEvent) -> None:
@@ -168,7 +254,7 @@ class PeopleTable(QTableView):
         with QPainter(self.viewport()) as painter:
             if not self._session.variant.people:
                 painter.setPen(QColor(self._look.theme.muted))
-                room = self.viewport().rect().adjusted(8, 8, -8, -8)
+                room = self.viewport().rect().adjusted(12, 8, -12, -8)
                 painter.drawText(room, Qt.AlignmentFlag.AlignTop | Qt.TextFlag.TextWordWrap, EMPTY_HINT)
             elif self.hasFocus() and self.currentIndex().isValid():
                 painter.setPen(QPen(QColor(self._look.theme.accent), 1))

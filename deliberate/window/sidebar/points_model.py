@@ -2,16 +2,21 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Mapping, Sequence
+
 from PySide6.QtCore import QAbstractTableModel, QModelIndex, QObject, QPersistentModelIndex, Qt
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.words import amount, shown_names
 from deliberate.scenario import edits
 from deliberate.scenario.access import arrow_between
-from deliberate.scenario.values import Basis
+from deliberate.scenario.edits.points import Others
+from deliberate.scenario.values import Basis, Scenario
 from deliberate.window.session import Session
-from deliberate.window.sidebar.numbers import typed_number
+from deliberate.window.sidebar.numbers import plain, typed_number
 from deliberate.window.sidebar.people_model import BELIEF_ROLE
+from deliberate.window.text import tooltip
 
 Index = QModelIndex | QPersistentModelIndex
 POINTS_ROLE = Qt.ItemDataRole.UserRole + 2
@@ -33,17 +38,14 @@ class PointsModel(QAbstractTableModel):
         self.make_room = True
         self.listener: str | None = None
         self._rows: list[tuple[str, float]] = []
-        self._names = shown_names(session.variant)
-        self._beliefs = dict[str, float]()
-        session.scenario_changed.connect(self.refresh)
-        session.selection_changed.connect(self.refresh)
-        self.refresh()
+        self._names: Mapping[str, str] = {}
+        self._beliefs: dict[str, float] = {}
 
     def refresh(self) -> None:
         """Read the selected person's row of points again."""
         session, variant = self._session, self._session.variant
-        chosen = [person.id for person in variant.people if person.id in session.selection.people]
-        listener = chosen[0] if len(chosen) == 1 else None
+        chosen = session.selection.people
+        listener = next(iter(chosen)) if len(chosen) == 1 else None
         rows = list(edits.points_of(variant, listener).items()) if listener is not None else []
         self._names = shown_names(variant)
         self.refresh_beliefs()
@@ -74,6 +76,15 @@ class PointsModel(QAbstractTableModel):
         """The id of the person in `row`."""
         return self._rows[row][0]
 
+    @property
+    def total(self) -> float:
+        """All points together."""
+        return math.fsum(points for _, points in self._rows)
+
+    def hears(self, person: str) -> bool:
+        """Whether this person's view counts, the listener's own included."""
+        return any(source == person for source, _ in self._rows)
+
     def flags(self, index: Index) -> Qt.ItemFlag:
         if not index.isValid():
             return Qt.ItemFlag.NoItemFlags
@@ -97,8 +108,12 @@ class PointsModel(QAbstractTableModel):
         if not index.isValid() or not 0 <= index.row() < len(self._rows):
             return None
         source, points = self._rows[index.row()]
+        if role == Qt.ItemDataRole.EditRole and index.column() == POINTS:
+            return plain(round(points, 9))
         if role in (Qt.ItemDataRole.DisplayRole, Qt.ItemDataRole.EditRole):
             return self._text(source, points, index.column())
+        if role == Qt.ItemDataRole.ToolTipRole:
+            return tooltip(self._sentence(source, points))
         if role == POINTS_ROLE:
             return points
         if role == BELIEF_ROLE:
@@ -106,11 +121,14 @@ class PointsModel(QAbstractTableModel):
         if role == Qt.ItemDataRole.TextAlignmentRole:
             side = Qt.AlignmentFlag.AlignRight if index.column() == POINTS else Qt.AlignmentFlag.AlignLeft
             return side | Qt.AlignmentFlag.AlignVCenter
-        if role == Qt.ItemDataRole.AccessibleTextRole and self.listener is not None:
-            listens = self._names.get(self.listener, self.listener)
-            whom = "the own view" if source == self.listener else self._names.get(source, source)
-            return f"{listens} listens to {whom}: {amount(round(points, 1))} of 100 points"
+        if role == Qt.ItemDataRole.AccessibleTextRole:
+            return self._sentence(source, points)
         return None
+
+    def _sentence(self, source: str, points: float) -> str:
+        listener = self._names.get(str(self.listener), str(self.listener))
+        whom = "the own view" if source == self.listener else self._names.get(source, source)
+        return f"{listener} listens to {whom}: {amount(round(points, 1))} of 100 points"
 
     def _text(self, source: str, points: float, column: int) -> str:
         own = source == self.listener
@@ -126,8 +144,8 @@ class PointsModel(QAbstractTableModel):
             return False
         source = self.source(index.row())
         if index.column() == BASIS:
-            return self._set_basis(source, str(value))
-        if str(value) == self.data(index):
+            return self.set_basis(source, str(value))
+        if str(value) == self.data(index, role):
             return False
         try:
             return self.give(source, typed_number(str(value), "points"))
@@ -135,16 +153,27 @@ class PointsModel(QAbstractTableModel):
             self._session.refused.emit(str(error))
             return False
 
-    def give(self, source: str, points: float, merge: str = "") -> bool:
+    def give(self, source: str, points: float) -> bool:
         """Let `source` count for `points` of the listener's 100; 0 stops listening."""
+        return self._change("Change the points of", {source: points})
+
+    def stop_hearing(self, sources: Sequence[str]) -> bool:
+        """Let these people not count any more; the own view stays."""
+        gone = dict.fromkeys((one for one in sources if one != self.listener), 0.0)
+        return self._change("Take points away from those heard by", gone)
+
+    def _change(self, step: str, points: Mapping[str, float]) -> bool:
         listener, variant = self.listener, self._session.variant.name
-        assert listener is not None
-        others = "rescale" if self.make_room else "keep"
-        return self._session.edit(
-            f"Change the points of {self._names[listener]}",
-            lambda scenario: edits.set_points(scenario, listener, source, points, variant=variant, others=others),
-            merge=merge,
-        )
+        if listener is None or not points:
+            return False
+        others: Others = "rescale" if self.make_room else "keep"
+
+        def change(scenario: Scenario) -> Scenario:
+            for source, wanted in points.items():
+                scenario = edits.set_points(scenario, listener, source, wanted, variant=variant, others=others)
+            return scenario
+
+        return self._session.edit(f"{step} {self._names[listener]}", change)
 
     def hear(self, source: str) -> bool:
         """Let the listener hear one more person, with what she gives to a source on average."""
@@ -152,7 +181,8 @@ class PointsModel(QAbstractTableModel):
         points = sum(given) / len(given) if given else 20.0
         return self.give(source, min(round(points / (1 + points / 100)), 50) or 1)
 
-    def _set_basis(self, source: str, basis: str) -> bool:
+    def set_basis(self, source: str, basis: str) -> bool:
+        """Note where the points for `source` come from."""
         wanted = next((one for one in BASES if one == basis), None)
         listener, variant = self.listener, self._session.variant.name
         if wanted is None or listener is None or source == listener:

@@ -2,147 +2,35 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import (
-    QEvent,
-    QModelIndex,
-    QObject,
-    QPersistentModelIndex,
-    QPoint,
-    QRectF,
-    QStringListModel,
-    Qt,
-    QTimer,
-    Signal,
-)
-from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter
+from PySide6.QtCore import QPoint, QStringListModel, Qt, QTimer, Signal
+from PySide6.QtGui import QKeyEvent, QMouseEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QAbstractItemView,
     QCheckBox,
-    QComboBox,
     QCompleter,
+    QHBoxLayout,
     QHeaderView,
     QLineEdit,
     QMenu,
-    QStyle,
-    QStyledItemDelegate,
-    QStyleOptionViewItem,
     QTableView,
     QVBoxLayout,
     QWidget,
 )
 
-from deliberate.rehearsal.words import shown_names
+from deliberate.rehearsal.words import amount, shown_names
 from deliberate.window.session import Session
-from deliberate.window.sidebar.people_model import BELIEF_ROLE
-from deliberate.window.sidebar.points_model import BASES, BASIS, NAME, POINTS, POINTS_ROLE, PointsModel
+from deliberate.window.sidebar.points_delegate import NUMBER_SAMPLE, PointsDelegate
+from deliberate.window.sidebar.points_model import BASES, BASIS, NAME, POINTS, PointsModel
 from deliberate.window.text import plain_label, strong
-from deliberate.window.theme import Look, belief_color
+from deliberate.window.theme import Look
 
-Index = QModelIndex | QPersistentModelIndex
-BAR_HEIGHT = 10.0
-NUMBER_SAMPLE = "100.0"
-
-
-def bar_rect(option: QStyleOptionViewItem) -> QRectF:
-    """Where the bar of a points cell lies; the number stands right of it."""
-    number = option.fontMetrics.horizontalAdvance(NUMBER_SAMPLE) + 12
-    rect = QRectF(option.rect).adjusted(4, 0, -number, 0)
-    return QRectF(rect.left(), rect.center().y() - BAR_HEIGHT / 2, max(rect.width(), 0), BAR_HEIGHT)
-
-
-class PointsDelegate(QStyledItemDelegate):
-    """Paints a bar as long as the share, in the source's present colour; a drag along it proposes other points."""
-
-    proposed = Signal(int, float)  # row, points, while the bar is dragged
-    given = Signal(int, float)  # row, points, at release
-
-    def __init__(self, session: Session, look: Look, parent: QObject) -> None:
-        super().__init__(parent)
-        self._session, self._look = session, look
-        self._dragged: tuple[int, float] | None = None
-
-    def createEditor(self, parent: QWidget, option: QStyleOptionViewItem, index: Index) -> QWidget:
-        if index.column() == BASIS:
-            choice = QComboBox(parent)
-            choice.addItems(BASES)
-            choice.setAccessibleName("Where the number comes from")
-            return choice
-        editor = QLineEdit(parent)
-        editor.setFrame(False)
-        editor.setAlignment(Qt.AlignmentFlag.AlignRight)
-        editor.setStyleSheet("padding: 0 2px; border-radius: 0;")
-        editor.setAccessibleName(str(index.data(Qt.ItemDataRole.AccessibleTextRole)))
-        return editor
-
-    def setEditorData(self, editor: QWidget, index: Index) -> None:
-        if isinstance(editor, QComboBox):
-            editor.setCurrentText(str(index.data()))
-        else:
-            super().setEditorData(editor, index)
-
-    def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: Index) -> None:
-        option.state &= ~QStyle.StateFlag.State_HasFocus
-        theme = self._look.theme
-        if index.column() != POINTS:
-            if index.column() == BASIS:
-                option.palette.setColor(option.palette.ColorRole.Text, QColor(theme.muted))
-            super().paint(painter, option, index)
-            return
-        points = float(index.data(POINTS_ROLE) or 0.0)
-        text = str(index.data())
-        if self._dragged is not None and self._dragged[0] == index.row():
-            points = self._dragged[1]
-            text = f"{points:g}"
-        painter.save()
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(Qt.PenStyle.NoPen)
-        if option.state & QStyle.StateFlag.State_Selected:
-            painter.fillRect(option.rect, QColor(theme.tint))
-        bar = bar_rect(option)
-        painter.setBrush(QColor(theme.raised))
-        painter.drawRoundedRect(bar, 3, 3)
-        belief = index.data(BELIEF_ROLE)
-        filled = QRectF(bar.left(), bar.top(), bar.width() * min(points, 100.0) / 100, bar.height())
-        painter.setBrush(belief_color(float(belief or 0.0), self._session.question, theme))
-        painter.setPen(QColor(theme.mark))
-        painter.drawRoundedRect(filled, 3, 3)
-        painter.setPen(QColor(theme.ink))
-        painter.drawText(
-            option.rect.adjusted(0, 0, -6, 0), Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter, text
-        )
-        painter.restore()
-
-    def editorEvent(self, event: QEvent, model: QObject, option: QStyleOptionViewItem, index: Index) -> bool:
-        if index.column() != POINTS or not isinstance(event, QMouseEvent):
-            return super().editorEvent(event, model, option, index)
-        bar = bar_rect(option)
-        x = event.position().x()
-        inside = bar.adjusted(-4, -8, 6, 8).contains(event.position())
-        if event.type() == QEvent.Type.MouseButtonPress and event.button() == Qt.MouseButton.LeftButton and inside:
-            self._propose(index.row(), x, bar)
-            return True
-        if event.type() == QEvent.Type.MouseMove and self._dragged is not None:
-            self._propose(self._dragged[0], x, bar)
-            return True
-        if event.type() == QEvent.Type.MouseButtonRelease and self._dragged is not None:
-            row, points = self._dragged
-            self._dragged = None
-            self.given.emit(row, points)
-            return True
-        return False
-
-    def release(self) -> None:
-        """Forget a drag that left the table."""
-        self._dragged = None
-
-    def _propose(self, row: int, x: float, bar: QRectF) -> None:
-        points = round(min(max((x - bar.left()) / max(bar.width(), 1.0), 0.0), 1.0) * 100)
-        self._dragged = (row, float(points))
-        self.proposed.emit(row, float(points))
+COLOURS_EVERY_MS = 100
+NAME_LETTERS = 10
+SHORT_BAR = 44
 
 
 class PointsTable(QWidget):
-    """Heading, table, and the line that adds somebody; shown while one person is selected."""
+    """Heading, table, sum, and the line that adds somebody; shown while one person is selected."""
 
     def __init__(self, session: Session, look: Look, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -150,7 +38,6 @@ class PointsTable(QWidget):
         self.model = PointsModel(session, self)
         self.heading = plain_label(self)
         strong(self.heading)
-        self.sub = plain_label(self, muted=True, text="100 points, the own view included")
         self.table = _Rows(self)
         self.table.setModel(self.model)
         self.delegate = PointsDelegate(session, look, self)
@@ -161,48 +48,63 @@ class PointsTable(QWidget):
             "When one number changes, all others shrink or grow in proportion; otherwise only the own view does"
         )
         self.make_room.setChecked(True)
+        self.sum = plain_label(self)
+        self.sum.setWordWrap(False)
+        self.sum.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self.add = QLineEdit(self)
         self.add.setPlaceholderText("add someone who is heard …")
         self.add.setAccessibleName("Add someone who is heard")
         self.known = QStringListModel(self)
-        completer = QCompleter(self.known, self)
-        completer.setCaseSensitivity(Qt.CaseSensitivity.CaseInsensitive)
-        completer.setFilterMode(Qt.MatchFlag.MatchContains)
-        self.add.setCompleter(completer)
+        self.completer = QCompleter(self.known, self)
+        self.completer.setCaseSensitivity(Qt.CaseSensitivity.CaseInsensitive)
+        self.completer.setFilterMode(Qt.MatchFlag.MatchContains)
+        self.add.setCompleter(self.completer)
         self._colours = QTimer(self)
         self._colours.setSingleShot(True)
-        self._colours.setInterval(100)
+        self._colours.setInterval(COLOURS_EVERY_MS)
         self._colours.timeout.connect(self.model.refresh_beliefs)
-        column = QVBoxLayout(self)
-        column.setContentsMargins(0, 0, 0, 0)
-        column.setSpacing(3)
-        for part, stretch in ((self.heading, 0), (self.sub, 0), (self.table, 1), (self.make_room, 0), (self.add, 0)):
-            column.addWidget(part, stretch)
+        self._lay_out()
         self.delegate.proposed.connect(self._preview)
         self.delegate.given.connect(self._give)
         self.table.removal_wanted.connect(self._stop_hearing)
-        self.table.customContextMenuRequested.connect(self._menu)
+        self.table.let_go.connect(self.delegate.finish)
+        self.table.customContextMenuRequested.connect(self._open_menu)
         self.make_room.toggled.connect(self._set_make_room)
         self.add.returnPressed.connect(self._hear)
-        self.model.modelReset.connect(self.refresh)
-        session.scenario_changed.connect(self.refresh)
+        # Queued, so that it comes after the completer has put the name into the field.
+        self.completer.activated.connect(self._hear, Qt.ConnectionType.QueuedConnection)
         session.player.moved.connect(self._follow_round)
-        session.rehearsal_changed.connect(self.model.refresh_beliefs)
-        self.refresh()
+        session.rehearsal_changed.connect(self._follow_round)
+        look.changed.connect(self.table.viewport().update)
+
+    def _lay_out(self) -> None:
+        foot = QHBoxLayout()
+        foot.addWidget(self.make_room, 1)
+        foot.addWidget(self.sum)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(4)
+        column.addWidget(self.heading)
+        column.addWidget(self.table, 1)
+        column.addLayout(foot)
+        column.addWidget(self.add)
 
     def refresh(self) -> None:
-        """Read whose row is shown, and who could be added."""
+        """Read the selected person's points again, and who could be added."""
+        self.model.refresh()
         listener, variant = self.model.listener, self._session.variant
         self.setVisible(listener is not None)
         if listener is None:
             return
         names = shown_names(variant)
         self.heading.setText(f"Whose view counts for {names.get(listener, listener)}")
-        heard = {self.model.source(row) for row in range(self.model.rowCount())}
-        self.known.setStringList([names[person.id] for person in variant.people if person.id not in heard])
+        self.sum.setText(f"in all {amount(round(self.model.total, 6))}")
+        names_left = [names[person.id] for person in variant.people if not self.model.hears(person.id)]
+        if names_left != self.known.stringList():
+            self.known.setStringList(names_left)
 
     def _follow_round(self) -> None:
-        if not self._colours.isActive():
+        if not self._colours.isActive() and self.isVisible():
             self._colours.start()
 
     def _preview(self, row: int, _points: float) -> None:
@@ -215,54 +117,58 @@ class PointsTable(QWidget):
     def _set_make_room(self, make_room: bool) -> None:
         self.model.make_room = make_room
 
+    # Adding and removing
+
     def _hear(self) -> None:
-        wanted = self.add.text().strip().casefold()
-        names = shown_names(self._session.variant)
-        found = [one for one, name in names.items() if name.casefold() == wanted]
-        found = found or [one for one, name in names.items() if wanted and name.casefold().startswith(wanted)]
-        if len(found) != 1:
-            self._session.refused.emit(
-                f"nobody here is called “{self.add.text().strip()}”; choose a name from the list"
-            )
+        """Add the person whose name, or the only one whose name begins so, stands in the field."""
+        typed = " ".join(self.add.text().split())
+        if not typed:
             return
-        if self.model.hear(found[0]):
+        try_names = shown_names(self._session.variant)
+        exact = [one for one, name in try_names.items() if name.casefold() == typed.casefold()]
+        found = exact or [one for one, name in try_names.items() if name.casefold().startswith(typed.casefold())]
+        if len(found) != 1:
+            how_many = "nobody here" if not found else "more than one person"
+            self._session.refused.emit(f"{how_many} is called “{typed}”: choose a name from the list")
+        elif self.model.hears(found[0]):
+            self._session.refused.emit(f"{try_names[found[0]]} counts already: change the points in the table")
+        elif self.model.hear(found[0]):
             self.add.clear()
 
     def _stop_hearing(self) -> None:
-        rows = sorted({index.row() for index in self.table.selectionModel().selectedIndexes()})
-        sources = [self.model.source(row) for row in rows]
-        for source in sources:
-            if source != self.model.listener:
-                self.model.give(source, 0.0, merge="stop hearing")
+        rows = {index.row() for index in self.table.selectionModel().selectedIndexes()}
+        self.model.stop_hearing([self.model.source(row) for row in sorted(rows)])
 
-    def _menu(self, at: QPoint) -> None:
+    def _open_menu(self, at: QPoint) -> None:
         index = self.table.indexAt(at)
-        if not index.isValid() or self.model.source(index.row()) == self.model.listener:
+        if not index.isValid():
             return
-        self.table.selectRow(index.row())
+        row = index.row()
         menu = QMenu(self)
         menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        menu.addAction("Change the points", self._edit_points)
-        menu.addAction("Change where they come from", self._edit_basis)
-        menu.addSeparator()
-        menu.addAction("Stop listening", self._stop_hearing)
+        menu.addAction("Change the points", lambda: self.table.edit(self.model.index(row, POINTS)))
+        if self.model.source(row) != self.model.listener:
+            source = self.model.source(row)
+            basis = menu.addMenu("Where the number comes from")
+            for word in BASES:
+                action = basis.addAction(word, lambda word=word: self.model.set_basis(source, word))
+                action.setCheckable(True)
+                action.setChecked(self.model.index(row, BASIS).data() == word)
+            menu.addSeparator()
+            menu.addAction("Stop listening", lambda: self.model.stop_hearing([source]))
         menu.popup(self.table.viewport().mapToGlobal(at))
-
-    def _edit_points(self) -> None:
-        self.table.edit(self.table.currentIndex().siblingAtColumn(POINTS))
-
-    def _edit_basis(self) -> None:
-        self.table.edit(self.table.currentIndex().siblingAtColumn(BASIS))
 
 
 class _Rows(QTableView):
     removal_wanted = Signal()
+    let_go = Signal()
 
     def __init__(self, parent: QWidget) -> None:
         super().__init__(parent)
         self.setAccessibleName("Points of the selected person")
         self.setShowGrid(False)
         self.setWordWrap(False)
+        self.setTabKeyNavigation(False)
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
         self.setVerticalScrollMode(QAbstractItemView.ScrollMode.ScrollPerPixel)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
@@ -276,15 +182,30 @@ class _Rows(QTableView):
         self.verticalHeader().hide()
         self.verticalHeader().setDefaultSectionSize(max(self.fontMetrics().height() + 8, 24))
         self.horizontalHeader().hide()
+        self.horizontalHeader().setMinimumSectionSize(20)
+        self.horizontalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
 
     def fit_columns(self) -> None:
-        """The points take what names and bases leave."""
-        header = self.horizontalHeader()
-        header.setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
-        header.setSectionResizeMode(POINTS, QHeaderView.ResizeMode.Stretch)
-        letters = self.fontMetrics().horizontalAdvance("n")
-        self.setColumnWidth(NAME, letters * 13)
-        self.setColumnWidth(BASIS, self.fontMetrics().horizontalAdvance("observed") + 14)
+        """Names first, then bars long enough to be dragged; where a number comes from only where there is room."""
+        metrics, room = self.fontMetrics(), self.viewport().width()
+        least = metrics.horizontalAdvance("n") * NAME_LETTERS
+        points = metrics.horizontalAdvance(NUMBER_SAMPLE) + 16 + SHORT_BAR
+        basis = metrics.horizontalAdvance("observed") + 14
+        shows_basis = least + points + basis <= room
+        left = room - least - points - (basis if shows_basis else 0)
+        name = least + max(left, 0) // 2
+        self.setColumnHidden(BASIS, not shows_basis)
+        self.setColumnWidth(NAME, name)
+        self.setColumnWidth(BASIS, basis)
+        self.setColumnWidth(POINTS, max(room - name - (basis if shows_basis else 0), points))
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self.fit_columns()
+
+    def mouseReleaseEvent(self, event: QMouseEvent) -> None:
+        super().mouseReleaseEvent(event)
+        self.let_go.emit()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         editing = self.state() == QAbstractItemView.State.EditingState

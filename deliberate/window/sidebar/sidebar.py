@@ -1,4 +1,4 @@
-"""The left bar: pages behind a row of quiet tabs."""
+"""The left bar: four pages, one at a time, behind a row of words."""
 
 from __future__ import annotations
 
@@ -6,7 +6,10 @@ from PySide6.QtCore import QSize
 from PySide6.QtWidgets import QStackedWidget, QTabBar, QVBoxLayout, QWidget
 
 from deliberate.window.session import Session
+from deliberate.window.sidebar.ballot_page import BallotPage
+from deliberate.window.sidebar.meeting_page import MeetingPage
 from deliberate.window.sidebar.people_page import PeoplePage
+from deliberate.window.sidebar.question_page import QuestionPage
 from deliberate.window.theme import Look
 
 
@@ -15,21 +18,30 @@ class Sidebar(QWidget):
 
     def __init__(self, session: Session, look: Look, parent: QWidget | None = None) -> None:
         super().__init__(parent)
-        self.people = PeoplePage(session, look, self)
         self.pages = QStackedWidget(self)
         self.tabs = QTabBar(self)
+        self.tabs.setProperty("words", True)
         self.tabs.setDrawBase(False)
         self.tabs.setExpanding(False)
+        self.tabs.setUsesScrollButtons(False)
         self.tabs.setAccessibleName("Pages of the left bar")
-        for title, page in (("People", self.people),):
+        self.people = PeoplePage(session, look, self)
+        self.question = QuestionPage(session, self)
+        self.ballot = BallotPage(session, self)
+        self.meeting = MeetingPage(session, self)
+        pages = (("Peop&le", self.people), ("Q&uestion", self.question), ("&Ballot", self.ballot))
+        for title, page in (*pages, ("&Meeting", self.meeting)):
             self.tabs.addTab(title)
             self.pages.addWidget(page)
         self.tabs.currentChanged.connect(self.pages.setCurrentIndex)
         column = QVBoxLayout(self)
-        column.setContentsMargins(6, 4, 0, 0)
+        column.setContentsMargins(0, 4, 0, 0)
         column.setSpacing(2)
         column.addWidget(self.tabs)
         column.addWidget(self.pages, 1)
 
     def sizeHint(self) -> QSize:
-        return QSize(self.fontMetrics().horizontalAdvance("n") * 44, 600)
+        return QSize(290, 600)
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(240, 200)

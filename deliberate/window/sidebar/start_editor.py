@@ -1,19 +1,25 @@
-"""Where the selected people start: a slider over the question's scale and a number."""
+"""What belongs to the selected people: where they start, how sure that is, how firm they are, their votes."""
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLineEdit, QSlider, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QSlider, QVBoxLayout, QWidget
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.words import amount, decimals, number
 from deliberate.scenario import edits
 from deliberate.scenario.values import Person
 from deliberate.window.session import Session
+from deliberate.window.sidebar.fields import LineField
 from deliberate.window.sidebar.numbers import typed_number
+from deliberate.window.sidebar.people_columns import HEADINGS, Column, Row, change, typed_over
 from deliberate.window.text import plain_label
 
 STEPS = 1_000
+SEVERAL = "differ"  # stands in a field while several people are selected who do not have the same
+DETAILS = (Column.MARGIN, Column.FIRMNESS, Column.BALLOTS)
 
 
 class StartEditor(QWidget):
@@ -31,10 +37,9 @@ class StartEditor(QWidget):
         self.slider.setSingleStep(STEPS // 100)
         self.slider.setAccessibleName("Starting belief")
         self.slider.setMinimumHeight(24)
-        self.field = QLineEdit(self)
+        self.field = LineField("Starting belief as a number", self, meaning=HEADINGS[Column.START].meaning)
         self.field.setAlignment(Qt.AlignmentFlag.AlignRight)
-        self.field.setFixedWidth(self.fontMetrics().horizontalAdvance("100,000.0") + 14)
-        self.field.setAccessibleName("Starting belief as a number")
+        self.field.setFixedWidth(self.fontMetrics().horizontalAdvance("12,000.0") + 14)
         self.known = QCheckBox("known", self)
         self.known.setToolTip("Without a start the middle of the scale is used, and said so")
         self.low, self.high = plain_label(self, muted=True), plain_label(self, muted=True)
@@ -45,27 +50,42 @@ class StartEditor(QWidget):
         row.addWidget(self.field)
         row.addWidget(self.known)
         ends = QHBoxLayout()
-        ends.addWidget(self.low)
-        ends.addWidget(self.high)
+        ends.addWidget(self.low, 1)
+        ends.addWidget(self.high, 1)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(2)
         column.addWidget(self.heading)
         column.addLayout(row)
         column.addLayout(ends)
+        column.addSpacing(4)
+        column.addLayout(self._lay_out_details())
         self.slider.valueChanged.connect(self._slide)
         self.slider.sliderReleased.connect(self._release)
-        self.field.editingFinished.connect(self._type)
+        self.field.given.connect(self._type)
         self.known.clicked.connect(self._know)
-        session.scenario_changed.connect(self.refresh)
-        session.selection_changed.connect(self.refresh)
-        self.refresh()
+
+    def _lay_out_details(self) -> QHBoxLayout:
+        row = QHBoxLayout()
+        row.setSpacing(5)
+        self.details: dict[Column, LineField] = {}
+        for column in DETAILS:
+            heading = HEADINGS[column]
+            label = QLabel(heading.short, self)
+            label.setProperty("muted", True)
+            field = LineField(heading.meaning, self, meaning=heading.meaning)
+            field.setAlignment(Qt.AlignmentFlag.AlignRight)
+            field.given.connect(lambda text, column=column: self._give(column, text))
+            row.addWidget(label)
+            row.addWidget(field, 1)
+            self.details[column] = field
+        return row
 
     @property
     def people(self) -> list[Person]:
         """The selected people."""
         chosen = self._session.selection.people
-        return [person for person in self._session.variant.people if person.id in chosen]
+        return [person for person in self._session.variant.people if person.id in chosen] if chosen else []
 
     def refresh(self) -> None:
         """Read the selected people again."""
@@ -73,18 +93,26 @@ class StartEditor(QWidget):
         self.setVisible(bool(people))
         if not people:
             return
+        starts = {person.beliefs.get(question.id) for person in people}
         belief = people[0].beliefs.get(question.id)
         self._filling = True
-        who = people[0].shown_name if len(people) == 1 else f"{len(people)} people"
-        self.heading.setText(f"{who}: starting belief")
+        self.heading.setText(f"{self._whose(people)}: starting belief")
         self.low.setText(_end(question.low_label, amount(question.low)))
         self.high.setText(_end(question.high_label, amount(question.high)))
         self.known.setChecked(belief is not None)
         shown = question.middle if belief is None else belief
         self.slider.setValue(round((shown - question.low) / question.width * STEPS))
-        self.field.setText("" if belief is None else amount(belief))
-        self.field.setPlaceholderText("?")
+        self._show(self.field, Column.START, people)
+        self.field.setPlaceholderText(SEVERAL if len(starts) > 1 else "?")
+        for column, field in self.details.items():
+            self._show(field, column, people)
         self._filling = False
+
+    def _show(self, field: LineField, column: Column, people: Sequence[Person]) -> None:
+        question = self._session.question
+        texts = {typed_over(column, Row(person, 0.0, 0.0), question) for person in people}
+        field.show_text(texts.pop() if len(texts) == 1 else "")
+        field.setPlaceholderText(SEVERAL if texts else "")
 
     def _value(self) -> float:
         """The slider's belief, rounded to the digits that are shown on this scale."""
@@ -93,26 +121,24 @@ class StartEditor(QWidget):
         places = decimals(question) - 1 if question.width >= 1 else decimals(question)
         return min(max(round(exact, max(places, 0)), question.low), question.high)
 
+    # Edits
+
     def _slide(self) -> None:
         if self._filling:
             return
-        self.field.setText(number(self._value(), self._session.question))
-        if not self.slider.isSliderDown():
+        if self.slider.isSliderDown():
+            self.field.setText(number(self._value(), self._session.question))
+        else:
             self._set(self._value(), merge="slide")
 
     def _release(self) -> None:
         self._set(self._value())
 
-    def _type(self) -> None:
-        text = self.field.text().strip()
-        belief = self.people[0].beliefs.get(self._session.question.id) if self.people else None
-        if not self.people or text == ("" if belief is None else amount(belief)):
-            return
+    def _type(self, text: str) -> None:
         try:
-            self._set(typed_number(text, "a starting belief") if text else None)
+            self._set(typed_number(text, "a starting belief") if text.strip() else None)
         except DeliberateError as error:
             self._session.refused.emit(str(error))
-        self.refresh()
 
     def _know(self, known: bool) -> None:
         self._set(self._value() if known else None)
@@ -120,12 +146,22 @@ class StartEditor(QWidget):
     def _set(self, belief: float | None, merge: str = "") -> None:
         session, people = self._session, self.people
         ids, question, variant = [person.id for person in people], session.question.id, session.variant.name
-        who = people[0].shown_name if len(people) == 1 else f"{len(people)} people"
         session.edit(
-            f"Set the starting belief of {who}",
+            f"Set the starting belief of {self._whose(people)}",
             lambda scenario: edits.set_belief(scenario, ids, question, belief, variant=variant),
             merge=merge and f"{merge} {ids}",
         )
+
+    def _give(self, column: Column, text: str) -> None:
+        session, people = self._session, self.people
+        ids, question, variant = [person.id for person in people], session.question.id, session.variant.name
+        session.edit(
+            f"{HEADINGS[column].step} of {self._whose(people)}",
+            lambda scenario: change(column, ids, text, question=question, variant=variant)(scenario),
+        )
+
+    def _whose(self, people: Sequence[Person]) -> str:
+        return people[0].shown_name if len(people) == 1 else f"{len(people)} people"
 
 
 def _end(label: str, figure: str) -> str:

@@ -1,0 +1,191 @@
+"""Fields of the pages: what is typed is handed over at Return or when the field is left, Escape takes it back."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from PySide6.QtCore import QEvent, QSize, Qt, QTimer, Signal
+from PySide6.QtGui import QFocusEvent, QKeyEvent, QWheelEvent
+from PySide6.QtWidgets import QComboBox, QFrame, QLineEdit, QPlainTextEdit, QSizePolicy, QWidget
+
+from deliberate.window.text import tooltip
+
+REST_MS = 500  # a pause in typing after which longer texts are handed over
+
+
+def is_command(event: QEvent) -> bool:
+    """Whether a key is about to start an action of the window (Ctrl+S): what was typed is handed over before."""
+    return (
+        event.type() == QEvent.Type.ShortcutOverride
+        and isinstance(event, QKeyEvent)
+        and not event.isAccepted()
+        and bool(event.modifiers() & Qt.KeyboardModifier.ControlModifier)
+    )
+
+
+class LineField(QLineEdit):
+    """One line, such as a number. After handing over, it shows what then holds: refused text does not stay."""
+
+    given = Signal(str)
+
+    def __init__(self, name: str, parent: QWidget, *, hint: str = "", meaning: str = "") -> None:
+        super().__init__(parent)
+        self._kept = ""
+        self.setAccessibleName(name)
+        self.setPlaceholderText(hint)
+        if meaning:
+            self.setToolTip(tooltip(meaning))
+            self.setAccessibleDescription(meaning)
+        self.editingFinished.connect(self.hand_over)
+
+    def show_text(self, text: str) -> None:
+        """The text that holds now; what is being typed is left alone."""
+        self._kept = text
+        if not (self.hasFocus() and self.isModified()) and text != self.text():
+            self.setText(text)
+            self.setCursorPosition(0)
+
+    def hand_over(self) -> None:
+        """Give what was typed, if it is something else."""
+        typed = self.text()
+        if not self.isModified():
+            return
+        self.setModified(False)
+        if typed != self._kept:
+            self.given.emit(typed)
+        self.setText(self._kept)
+
+    def sizeHint(self) -> QSize:
+        return QSize(self.fontMetrics().horizontalAdvance("n") * 8, super().sizeHint().height())
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(self.fontMetrics().horizontalAdvance("n") * 5, super().minimumSizeHint().height())
+
+    def event(self, event: QEvent) -> bool:
+        done = super().event(event)
+        if is_command(event):
+            self.hand_over()
+        return done
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        super().focusOutEvent(event)
+        self.hand_over()  # also when a menu opens, where Qt does not call the editing finished
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape and self.isModified():
+            self.setText(self._kept)
+            self.selectAll()
+        else:
+            super().keyPressEvent(event)
+
+
+class TextField(QPlainTextEdit):
+    """Text that wraps. Of one paragraph, or notes, which are also handed over after a pause in typing."""
+
+    given = Signal(str)
+    left = Signal()
+
+    def __init__(self, name: str, parent: QWidget, *, lines: int, notes: bool = False, hint: str = "") -> None:
+        super().__init__(parent)
+        self._kept, self._notes, self._lines = "", notes, lines
+        self.setAccessibleName(name)
+        self.setPlaceholderText(hint)
+        self.setTabChangesFocus(True)
+        self.document().setDocumentMargin(2)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self._rest = QTimer(self)
+        self._rest.setSingleShot(True)
+        self._rest.setInterval(REST_MS)
+        self._rest.timeout.connect(self.hand_over)
+        vertical = QSizePolicy.Policy.Expanding if notes else QSizePolicy.Policy.Fixed
+        self.setSizePolicy(QSizePolicy.Policy.Expanding, vertical)
+        if notes:
+            self.textChanged.connect(self._typing)
+
+    def show_text(self, text: str) -> None:
+        """The text that holds now; what is being typed is left alone."""
+        self._kept = text
+        if not (self.hasFocus() and self.document().isModified()) and text != self.toPlainText():
+            self.setPlainText(text)
+
+    def hand_over(self) -> None:
+        """Give what was typed, if it is something else."""
+        self._rest.stop()
+        if not self.document().isModified():
+            return
+        self.document().setModified(False)
+        typed = self.toPlainText()
+        if typed != self._kept:
+            self.given.emit(typed)
+        if self._kept != self.toPlainText():  # refused or tidied
+            self.setPlainText(self._kept)
+
+    def _typing(self) -> None:
+        if self.document().isModified():
+            self._rest.start()
+
+    def sizeHint(self) -> QSize:
+        height = self.fontMetrics().lineSpacing() * self._lines + 16
+        return QSize(160, height)
+
+    def minimumSizeHint(self) -> QSize:
+        return self.sizeHint()
+
+    def event(self, event: QEvent) -> bool:
+        done = super().event(event)
+        if is_command(event):
+            self.hand_over()
+        return done
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        super().focusOutEvent(event)
+        self.hand_over()
+        self.left.emit()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape and self.document().isModified():
+            self._rest.stop()
+            self.setPlainText(self._kept)
+            self.selectAll()
+        elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and not self._notes:
+            self.hand_over()
+        else:
+            super().keyPressEvent(event)
+
+
+class Choice(QComboBox):
+    """One of a few. The wheel scrolls the page over it instead of changing it unseen."""
+
+    chosen = Signal(object)
+
+    def __init__(self, name: str, parent: QWidget, options: Sequence[tuple[str, object]] = ()) -> None:
+        super().__init__(parent)
+        self.setAccessibleName(name)
+        self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+        self.setMinimumContentsLength(6)
+        self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.set_options(options)
+        self.activated.connect(lambda place: self.chosen.emit(self.itemData(place)))
+
+    def set_options(self, options: Sequence[tuple[str, object]]) -> None:
+        """What can be chosen: (text, value) pairs."""
+        if [(self.itemText(i), self.itemData(i)) for i in range(self.count())] == list(options):
+            return
+        self.clear()
+        for text, value in options:
+            self.addItem(text, value)
+
+    def show_value(self, value: object) -> None:
+        """The value that holds now."""
+        place = next((i for i in range(self.count()) if self.itemData(i) == value), -1)
+        self.setCurrentIndex(place)
+        self.setToolTip(tooltip(self.currentText()) if place >= 0 else "")
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        event.ignore()
+
+
+def quiet(field: QPlainTextEdit) -> None:
+    """No frame of Qt's own: the style sheet draws the field."""
+    field.setFrameShape(QFrame.Shape.NoFrame)
