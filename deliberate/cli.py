@@ -22,6 +22,7 @@ WINDOW_HELP = """\
 usage: deliberate [FILE]
        deliberate rehearse FILE [options]
        deliberate leverage FILE [options]
+       deliberate remedies FILE [options]
        deliberate check FILE
 
 Rehearse a contested meeting: who listens to whom, where talking leads, and why
@@ -31,6 +32,7 @@ it stalls. FILE is a scenario, `something.deliberate.json`.
   deliberate rehearse FILE  print the rehearsal; needs no display. Its options:
                             `deliberate rehearse -h`
   deliberate leverage FILE  say what the result hangs on, guess by guess
+  deliberate remedies FILE  say which change of process would help
   deliberate check FILE     say `ok`, or where the file is wrong and how
 
   -h, --help                show this and exit
@@ -60,6 +62,8 @@ def _run(arguments: Sequence[str]) -> int:
             return _on_file(_rehearse, _rehearse_parser().parse_args(rest))
         case ["leverage", *rest]:
             return _on_file(_leverage, _leverage_parser().parse_args(rest))
+        case ["remedies", *rest]:
+            return _on_file(_remedies, _remedies_parser().parse_args(rest))
         case ["check", *rest]:
             return _on_file(_check, _check_parser().parse_args(rest))
         case _:
@@ -112,6 +116,24 @@ def _leverage(options: argparse.Namespace) -> None:
         _print(json.encode(leverage_to_json(scenario, found)) + b"\n")
     else:
         _print(leverage_summary(scenario, found))
+
+
+def _remedies(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+    from deliberate.rehearsal.remedies import best_for_each_aim, remedies
+    from deliberate.rehearsal.remedies.report import remedies_summary, remedies_to_json
+
+    scenario, which = read(options.file), (options.variant, options.question)
+    if options.aim is None:
+        found = best_for_each_aim(scenario, *which)
+    else:
+        found = {options.aim: remedies(scenario, *which, options.aim)}
+    if options.json:
+        from msgspec import json
+
+        _print(json.encode(remedies_to_json(scenario, *which, found)) + b"\n")
+    else:
+        _print(remedies_summary(scenario, *which, found))
 
 
 def _check(options: argparse.Namespace) -> None:
@@ -193,6 +215,17 @@ def _rehearse_parser() -> argparse.ArgumentParser:
 
 def _leverage_parser() -> argparse.ArgumentParser:
     return _meeting_parser("leverage", "Say what the result hangs on: how far each guess moves it.")
+
+
+def _remedies_parser() -> argparse.ArgumentParser:
+    parser = _meeting_parser("remedies", "Say which change of process would help people hear each other.")
+    parser.add_argument(
+        "--aim",
+        metavar="AIM",
+        help="common-view, end-swing, sooner, more-voices, outside-heard or less-spread"
+        " (default: the best change for each that the figures ask for)",
+    )
+    return parser
 
 
 def _check_parser() -> argparse.ArgumentParser:

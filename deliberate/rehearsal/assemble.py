@@ -37,7 +37,7 @@ def assemble(variant: Variant, question: Question) -> Assembly:
         # Stages set up alike share one mask, so that the dynamics can see that they are the same.
         alike = (stage.setting, stage.tables, stage.speakers, stage.pairs)
         if alike not in masks:
-            masks[alike] = _heard(stage, network, place)
+            masks[alike] = heard(stage, network, place)
         blocks.append(Block(masks[alike], stage.unheard, stage.rounds))
     firmness = _over_people(variant, "firmness")
     given = [person.beliefs.get(question.id) for person in variant.people]
@@ -65,7 +65,7 @@ def _over_people(variant: Variant, attribute: str) -> Floats:
     return np.fromiter((getattr(person, attribute) for person in variant.people), float, len(variant.people))
 
 
-def _heard(stage: Stage, network: Network, place: Mapping[str, int]) -> NDArray[np.bool_] | None:
+def heard(stage: Stage, network: Network, place: Mapping[str, int]) -> NDArray[np.bool_] | None:
     """Which arrows count in the stage's setting; None for all."""
     match stage.setting:
         case "plenary":

@@ -32,8 +32,8 @@ def to_json(rehearsal: Rehearsal) -> dict[str, Any]:
         "influence": dict(zip(people, rehearsal.influence.tolist(), strict=True)),
         "effective_voices": rehearsal.effective_voices,
         "pace": {"rate": rehearsal.rate, "rounds_to_agree": rehearsal.rounds_to_agree},
-        "ballot": None if rehearsal.ballot is None else [_tally(tally) for tally in rehearsal.ballot],
-        "ballot_at_limit": None if rehearsal.ballot_at_limit is None else _tally(rehearsal.ballot_at_limit),
+        "ballot": None if rehearsal.ballot is None else [tally_to_json(tally) for tally in rehearsal.ballot],
+        "ballot_at_limit": None if rehearsal.ballot_at_limit is None else tally_to_json(rehearsal.ballot_at_limit),
         "agreement": [_verdicts(tests) for tests in rehearsal.agreement or ((),) * rounds],
         "agreement_at_limit": None if rehearsal.limit is None else _verdicts(rehearsal.agreement_at_limit or ()),
         "unknown_starts": list(rehearsal.unknown_starts),
@@ -58,7 +58,8 @@ def _closed_group(group: ClosedGroup) -> dict[str, Any]:
     }
 
 
-def _tally(tally: Tally) -> dict[str, Any]:
+def tally_to_json(tally: Tally) -> dict[str, Any]:
+    """One count of the vote."""
     return {
         "for": tally.in_favour,
         "against": tally.against,

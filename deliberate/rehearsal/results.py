@@ -124,7 +124,99 @@ class JointRound:
     rounds: int
 
 
-Suggestion = Introduce | KeepOwnView | JointRound
+@dataclass(frozen=True)
+class Introductions:
+    """Let each listener of `arrows` (listener, source) hear the source with `points` of 100, where she does not."""
+
+    arrows: tuple[tuple[str, str], ...]
+    points: float
+
+
+@dataclass(frozen=True)
+class MovePoints:
+    """Let `listener` give `points` of her 100 to `to` instead of `away`; either may be herself, for the own view."""
+
+    listener: str
+    away: str
+    to: str
+    points: float
+
+
+@dataclass(frozen=True)
+class GoBetween:
+    """Bring in somebody without a vote or a view of her own who hears all of `people` alike; each gives her
+    `points` of 100. She starts at the mean of what they start with."""
+
+    people: tuple[str, ...]
+    points: float
+
+
+@dataclass(frozen=True)
+class SpeakFirst:
+    """Begin with `rounds` in which only `speakers` are heard; everybody gives each of them at least `points` of 100,
+    then and later (0: what they give already)."""
+
+    speakers: tuple[str, ...]
+    rounds: int
+    points: float
+
+
+@dataclass(frozen=True)
+class PairTalks:
+    """Begin with `rounds` in which people talk in `pairs`; the two of a pair give each other at least `points` of
+    100, then and later."""
+
+    pairs: tuple[tuple[str, str], ...]
+    rounds: int
+    points: float
+
+
+@dataclass(frozen=True)
+class MixedTables:
+    """Begin with `rounds` at these `tables`; those who are new to each other give each other `points` of 100 and go
+    on hearing each other."""
+
+    tables: tuple[tuple[str, ...], ...]
+    rounds: int
+    points: float
+
+
+@dataclass(frozen=True)
+class GoRounds:
+    """Let everybody hear everybody alike in all rounds, the own view counting for `own_points` of 100."""
+
+    own_points: float
+
+
+@dataclass(frozen=True)
+class EndInPlenary:
+    """End with `rounds` in plenary, in which every arrow counts."""
+
+    rounds: int
+
+
+@dataclass(frozen=True)
+class ReorderStages:
+    """Put the plan's stages into another order of their present places, counted from 0."""
+
+    order: tuple[int, ...]
+
+
+# New stages take their rounds out of the longest others while these keep one each; see `scenario.edits.process`.
+Suggestion = (
+    Introduce
+    | KeepOwnView
+    | JointRound
+    | Introductions
+    | MovePoints
+    | GoBetween
+    | SpeakFirst
+    | PairTalks
+    | MixedTables
+    | GoRounds
+    | EndInPlenary
+    | ReorderStages
+)
 
 Kind = Literal[
     "settles",

@@ -31,6 +31,12 @@ def test_new_voices_must_leave_room():
         edits.let_hear(HARBOUR, [("tomas", "noor")], 100, **NOW)
 
 
+def test_voices_are_raised_to_so_many_points_at_least():
+    after = edits.give_at_least(HARBOUR, [("tomas", "wei"), ("tomas", "ines"), ("tomas", "tomas")], 20, **NOW)
+    assert points_of(after.variants[0], "tomas") == pytest.approx({"tomas": 160 / 3, "ines": 80 / 3, "wei": 20})
+    assert edits.give_at_least(HARBOUR, [("tomas", "wei")], 10, **NOW) is HARBOUR
+
+
 def test_people_in_a_circle_hear_each_other():
     after = edits.acquaint(HARBOUR, [("ines", "noor", "tomas"), ("wei",)], 5, **NOW).variants[0]
     for listener in ("ines", "noor", "tomas"):

@@ -105,6 +105,7 @@ GIVEN: dict[Callable[..., Scenario], Callable[[Hand], tuple[tuple, dict]]] = {
     ),
     edits.add_joint_round: lambda h: ((h(st.integers(0, 3)),), {"points": h(st.one_of(st.none(), Points))}),
     edits.let_hear: lambda h: (([(h.person(), h.person()), *h.pairs()], h(st.one_of(Points, st.just(5)))), {}),
+    edits.give_at_least: lambda h: (([(h.person(), h.person()), *h.pairs()], h(st.one_of(Points, st.just(5)))), {}),
     edits.acquaint: lambda h: (([h.some(), h.some()], h(st.one_of(Points, st.just(5)))), {}),
     edits.move_points: lambda h: ((h.person(), h.person(), h.person(), h(st.one_of(Points, st.just(5)))), {}),
     edits.hear_all_alike: lambda h: ((h(Points),), {}),

@@ -35,9 +35,7 @@ def let_hear(scenario: Scenario, arrows: Iterable[Pair], points: float, *, varia
     The listener's others make room in proportion; whom she hears already keeps what she gives.
     """
     one = variant_named(scenario, variant)
-    wanted: dict[str, list[str]] = defaultdict(list)
-    for listener, source in dict.fromkeys(arrows):
-        wanted[listener].append(source)
+    wanted = _by_listener(arrows)
     require_people(one, {*wanted, *(source for sources in wanted.values() for source in sources)})
     each = as_number(points, "the points for each new voice", 0, HUNDRED)
     rows = {
@@ -45,6 +43,24 @@ def let_hear(scenario: Scenario, arrows: Iterable[Pair], points: float, *, varia
         for listener, row in rows_of(one, wanted).items()
         if (newcomers := [source for source in wanted[listener] if source not in row])
     }
+    return store_rows(scenario, rows, variant=variant)
+
+
+def give_at_least(scenario: Scenario, arrows: Iterable[Pair], points: float, *, variant: str) -> Scenario:
+    """Let listeners give sources, (listener, source), at least `points` of their 100, new to each other or not.
+
+    Who gets less so far is raised to that; all others, the own view among them, make room in proportion.
+    """
+    one = variant_named(scenario, variant)
+    least = as_number(points, "the points for each voice", 0, HUNDRED)
+    wanted = _by_listener(arrows)
+    require_people(one, {*wanted, *(source for sources in wanted.values() for source in sources)})
+    rows = {}
+    for listener, row in rows_of(one, wanted).items():
+        raised = [source for source in wanted[listener] if source != listener and row.get(source, 0.0) < least]
+        if raised:
+            others = {voice: part for voice, part in row.items() if voice not in raised}
+            rows[listener] = opened(one, listener, others, raised, least)
     return store_rows(scenario, rows, variant=variant)
 
 
@@ -121,6 +137,13 @@ def reorder_stages(scenario: Scenario, order: Sequence[int], *, variant: str) ->
         return tuple(stage for _, stage in in_order(numbered, keys, lambda entry: str(entry[0])))
 
     return _with_stages(scenario, variant, change)
+
+
+def _by_listener(arrows: Iterable[Pair]) -> dict[str, list[str]]:
+    wanted: dict[str, list[str]] = defaultdict(list)
+    for listener, source in dict.fromkeys(arrows):
+        wanted[listener].append(source)
+    return wanted
 
 
 def _with_stages(
