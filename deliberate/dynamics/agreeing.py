@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from deliberate.dynamics.longrun import LongRun
-from deliberate.dynamics.network import Floats
+from deliberate.dynamics.network import Floats, Indices
 from deliberate.dynamics.process import Course, Leg, Process, course
 from deliberate.dynamics.rounds import Hearing, mover
 from deliberate.dynamics.turns import Turn, advance, followed_by, turn_of
@@ -47,13 +47,15 @@ def rounds_to_agree(
     long_run: LongRun,
     hearing_range: float | None = None,
     scale_width: float = 1.0,
+    among: Indices | None = None,
 ) -> int | None:
     """The first round from which the largest minus the smallest belief stays <= `tolerance`; None when never.
 
-    Arguments as for `long_run`, whose result is given. None also when the tolerance is below what doubles can
+    Arguments as for `long_run`, whose result is given. `among` says whose beliefs are compared, when not all are:
+    people who hear nobody else. None also when the tolerance is below what doubles can
     tell apart. See `agreeing` for whether the number is an estimate.
     """
-    return agreeing(process, starts, tolerance, long_run, hearing_range, scale_width).rounds
+    return agreeing(process, starts, tolerance, long_run, hearing_range, scale_width, among).rounds
 
 
 def agreeing(
@@ -63,13 +65,14 @@ def agreeing(
     long_run: LongRun,
     hearing_range: float | None = None,
     scale_width: float = 1.0,
+    among: Indices | None = None,
 ) -> Agreeing:
     """`rounds_to_agree`, and whether it is an estimate."""
     start = np.asarray(starts, dtype=np.float64)
     if not len(start):
         return Agreeing(0, False)
     track = long_run.course if hearing_range is not None else course(process)
-    judge = _Judge(track.firmness, start, tolerance, SLACK * scale_width)
+    judge = _Judge(track.firmness, start, tolerance, SLACK * scale_width, among)
     if track.held is not None:
         return _after_untraced(process, judge, track, long_run, Hearing(process, hearing_range, scale_width))
     held = [start]
@@ -146,15 +149,21 @@ class _Judge:
     start: Floats
     tolerance: float
     slack: float
+    among: Indices | None
 
     @property
     def steady(self) -> bool:
         """Nobody is firm, so the spread never rises."""
         return not self.firmness.any()
 
+    def spread(self, beliefs: Floats) -> float:
+        """Largest minus smallest belief of those who are compared."""
+        compared = beliefs if self.among is None else beliefs[self.among]
+        return float(compared.max() - compared.min())
+
     def wide(self, beliefs: Floats) -> bool:
         """The spread is beyond the tolerance."""
-        return bool(beliefs.max() - beliefs.min() > self.tolerance)
+        return self.spread(beliefs) > self.tolerance
 
 
 class _Run:
@@ -209,10 +218,10 @@ class _Run:
 
     def _widest(self, beliefs: Floats) -> float:
         """The largest spread before any round of the turn that starts with `beliefs`."""
-        widest = float(np.ptp(beliefs))
+        widest = self._judge.spread(beliefs)
         if not self._judge.steady and self._rounds > 1:
             for held in self._inside(beliefs):
-                widest = max(widest, float(np.ptp(held)))
+                widest = max(widest, self._judge.spread(held))
         return widest
 
     def _inside(self, beliefs: Floats) -> list[Floats]:
@@ -286,7 +295,7 @@ class _Run:
         """The last wide round if the pace of the next few turns goes on."""
         gaps = []
         for _ in range(2):
-            gaps.append(max(np.ptp(beliefs) - max(self._ends_within, 0.0), 0.0))
+            gaps.append(max(self._judge.spread(beliefs) - max(self._ends_within, 0.0), 0.0))
             for _ in range(8):
                 beliefs = advance(self._legs, self._judge.firmness, beliefs, self._judge.start)
         wanted = self._judge.tolerance - max(self._ends_within, 0.0)

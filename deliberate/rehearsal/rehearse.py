@@ -6,6 +6,7 @@ import math
 from collections.abc import Sequence
 
 import numpy as np
+from numpy.typing import NDArray
 
 from deliberate.dynamics.agreeing import rounds_to_agree
 from deliberate.dynamics.longrun import Group, LongRun, long_run
@@ -75,6 +76,22 @@ def rehearse(
         unknown_starts=sketch.unknown_starts,
         notes=(*fate.notes, *_notes(setup, asked, sketch)),
     )
+
+
+def rounds_to_agree_among(
+    people: NDArray[np.intp], assembly: Assembly, question: Question, rehearsal: Rehearsal
+) -> int | None:
+    """`rounds_to_agree` of a part of the people, given by index, who hear nobody else: those present, say.
+
+    None for never, for nobody, and beyond counting.
+    """
+    if len(people) == len(assembly.people):
+        return rehearsal.rounds_to_agree
+    if not len(people):
+        return None
+    process, hearing, width = assembly.process, question.hearing_range, question.width
+    fate = long_run(process, assembly.starts, scale_width=width, hearing_range=hearing)
+    return rounds_to_agree(process, assembly.starts, rehearsal.tolerance, fate, hearing, width, among=people)
 
 
 def _checked_rounds(variant: Variant, rounds: int | None) -> int:

@@ -12,13 +12,14 @@ from itertools import accumulate
 import numpy as np
 from numpy.typing import NDArray
 
+from deliberate.rehearsal.assemble import assemble
 from deliberate.rehearsal.ballots import Electorate
 from deliberate.rehearsal.choosing import pick_question, pick_variant
-from deliberate.rehearsal.rehearse import COMMON_VIEW
+from deliberate.rehearsal.rehearse import COMMON_VIEW, rounds_to_agree_among
 from deliberate.rehearsal.results import Finding, Floats, Rehearsal, Tally
 from deliberate.rehearsal.suggestions import words
-from deliberate.rehearsal.words import amount, count, number, numbers, percent, with_unit
-from deliberate.scenario.values import AgreementTest, Question, Scenario, Variant
+from deliberate.rehearsal.words import agreement_test, amount, count, number, numbers, with_unit
+from deliberate.scenario.values import Question, Scenario, Variant
 
 CAUTION = "A sketch, not a forecast of people."
 COLUMNS = 79
@@ -172,15 +173,9 @@ class _Sketch:
         return f"yes, on views from {number(low, self.question)} to {with_unit(high, self.question, beside=low)}"
 
     def _rounds_to_agree(self) -> int | None:
-        """Of those present; among some who are absent it is read off the rounds that were played."""
-        if self.present.all():
-            return self.rehearsal.rounds_to_agree
-        held = self.rehearsal.rounds[:, self.present]
-        if held.shape[1] == 0:
-            return None
-        apart = np.flatnonzero(held.max(axis=1) - held.min(axis=1) > self.rehearsal.tolerance)
-        first = int(apart[-1]) + 1 if len(apart) else 0
-        return first if first < len(held) else None
+        """Of those present."""
+        assembly = assemble(self.variant, self.question)
+        return rounds_to_agree_among(np.flatnonzero(self.present), assembly, self.question, self.rehearsal)
 
     def _voices(self) -> Iterator[str]:
         """How concentrated the result is among those present; the absent keep their own views and carry nothing."""
@@ -201,24 +196,10 @@ class _Sketch:
             if rehearsal.agreement_at_limit is not None:
                 moments["in the long run"] = rehearsal.agreement_at_limit
             verdicts = [f"{_VERDICTS[tests[place].verdict]} {when}" for when, tests in moments.items()]
-            yield f"{_test_in_words(test, self.question)}: {', '.join(verdicts)}"
+            yield f"{agreement_test(test, self.question)}: {', '.join(verdicts)}"
 
 
 _VERDICTS = {"agreement": "agreement", "disagreement": "disagreement", "neither": "none"}
-
-
-def _test_in_words(test: AgreementTest, question: Question) -> str:
-    match test.test:
-        case "rand-ucla":
-            return "RAND/UCLA"
-        case "share-within":
-            low, high = number(test.low, question), number(test.high, question)
-            share = test.at_least if isinstance(test.at_least, str) else percent(test.at_least)
-            return f"{share} within {low} to {high}"
-        case "quartile-range":
-            return f"quartile range at most {number(test.at_most, question)}"
-        case "spread":
-            return f"spread at most {number(test.at_most, question)}"
 
 
 def _stages(variant: Variant) -> str:

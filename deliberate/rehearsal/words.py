@@ -9,7 +9,7 @@ import math
 from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 
-from deliberate.scenario.values import Question, Variant
+from deliberate.scenario.values import AgreementTest, Question, Variant
 
 _STEPS = 1000  # a figure is shown to about this part of the scale: 0.714 of 1, 71.4 of 100, 714 of 1000
 _MOST_DECIMALS = 9
@@ -83,6 +83,20 @@ def in_words(n: int, one: str, several: str) -> str:
     """`n` and the fitting noun, in words up to twelve: "no people", "one person", "three people", "13 people"."""
     figure = _SMALL_NUMBERS[n] if 0 <= n < len(_SMALL_NUMBERS) else amount(n)
     return f"{figure} {one if n == 1 else several}"
+
+
+def agreement_test(test: AgreementTest, question: Question) -> str:
+    """What a test of agreement asks: "3/4 within 7 to 9", "spread at most 10"."""
+    match test.test:
+        case "rand-ucla":
+            return "RAND/UCLA"
+        case "share-within":
+            share = test.at_least if isinstance(test.at_least, str) else f"{amount(100 * test.at_least)} %"
+            return f"{share} within {number(test.low, question)} to {number(test.high, question, beside=test.low)}"
+        case "quartile-range":
+            return f"quartile range at most {number(test.at_most, question, beside=0.0)}"
+        case "spread":
+            return f"spread at most {number(test.at_most, question, beside=0.0)}"
 
 
 def listing(parts: Sequence[str]) -> str:

@@ -6,9 +6,9 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from deliberate.rehearsal.findings.sketch import Sketch, since
+from deliberate.rehearsal.findings.sketch import Sketch, is_are, since
 from deliberate.rehearsal.results import Agreement, Finding
-from deliberate.rehearsal.words import amount, in_words, percent
+from deliberate.rehearsal.words import agreement_test, amount, in_words
 from deliberate.scenario.values import AgreementTest
 
 FEW = 0.25  # of the starts
@@ -33,7 +33,8 @@ def agreement(sketch: Sketch) -> Iterator[Finding]:
 
 
 def _says_agreement(sketch: Sketch, test: AgreementTest, first: Agreement, last: Agreement, changed: int) -> str:
-    name = _test_in_words(sketch, test)
+    asked = agreement_test(test, sketch.question)
+    name = f"{asked} test" if test.test == "rand-ucla" else f"Agreement test, {asked}"
     now, before = _verdict(test, last), _verdict(test, first)
     if changed == 0:
         return f"{name}: {now} from the start to {_end(sketch)}."
@@ -50,19 +51,6 @@ def _verdict(test: AgreementTest, judged: Agreement) -> str:
     if test.test == "rand-ucla":
         return {"agreement": "agreement", "disagreement": "disagreement", "neither": "neither"}[judged.verdict]
     return "met" if judged.verdict == "agreement" else "not met"
-
-
-def _test_in_words(sketch: Sketch, test: AgreementTest) -> str:
-    match test.test:
-        case "rand-ucla":
-            return "RAND/UCLA test"
-        case "share-within":
-            share = test.at_least if isinstance(test.at_least, str) else percent(test.at_least)
-            return f"Agreement test, {share} within {sketch.number(test.low)} to {sketch.number(test.high)}"
-        case "quartile-range":
-            return f"Agreement test, quartile range at most {sketch.number(test.at_most, beside=0.0)}"
-        case "spread":
-            return f"Agreement test, spread at most {sketch.number(test.at_most, beside=0.0)}"
 
 
 def _why_agreement(sketch: Sketch, last: Agreement, among_few: tuple[int, float, float] | None) -> str:
@@ -86,7 +74,9 @@ def _figure(sketch: Sketch, last: Agreement) -> str:
             outside = in_words(int(last.figure), "rating lies", "ratings lie")
             return f"{when} {outside} outside the third of the scale that holds the median"
         case "share-within":
-            return f"{when} {percent(last.figure)} of those with a vote are within"
+            within, voters = round(last.figure * len(sketch.voters)), amount(len(sketch.voters))
+            who = f"{amount(within)} of {voters} {is_are(within)}" if within else f"nobody of {voters} is"
+            return f"{when} {who} within"
         case "quartile-range":
             return f"{when} the quartile range is {sketch.number(last.figure, beside=last.test.at_most)}"
         case "spread":

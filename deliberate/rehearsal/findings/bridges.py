@@ -91,13 +91,13 @@ def _why_bridge(sketch: Sketch, parts: list[Indices], bridging: Indices, inside:
     if len(listeners) <= NAMED_PEOPLE:
         low, high = points(given.min()), points(given.max())
         part = low if low == high else f"{low} to {high}"
-        across = f"only {sketch.names(listeners)} hear{ending(len(listeners))} across, with {part} of 100 points"
+        across = f"Only {sketch.names(listeners)} hear{ending(len(listeners))} across, with {part} of 100 points"
     else:
         people = sum(len(part) for part in parts)
-        across = f"on average people give {points(given.sum() / people)} of 100 points across"
+        across = f"On average people give {points(given.sum() / people)} of 100 points across"
     if len(parts) == 2:
         one, other = (sketch.names(part, 3) for part in parts)
         within = f"among {one}, and among {other}, it {halves(inside)}"
     else:
         within = f"inside each part it {halves(inside)}"
-    return sentence(f"{across}; {within}.")
+    return f"{across}; {within}."

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from deliberate.rehearsal.findings.sketch import Indices, Sketch, ending, is_are
-from deliberate.rehearsal.findings.suggesting import introduction, joint_round
+from deliberate.rehearsal.findings.suggesting import introduction, joint_round, tried
 from deliberate.rehearsal.results import Finding, Floats, Suggestion
 from deliberate.rehearsal.words import in_words, listing, sentence
 
@@ -40,13 +40,15 @@ def closed_groups(sketch: Sketch) -> Iterator[Finding]:
 def _says_closed(sketch: Sketch, groups: list[Indices], gap: float | None) -> str:
     them = in_words(len(groups), "group", "groups")
     up_to = "" if len(groups) == 2 else "up to "
-    ends = ", though they happen to end together" if gap is None else f" and end {up_to}{sketch.number(gap)} apart"
+    ends = ", though they happen to end together" if gap is None else f" and end {up_to}{sketch.gap(gap)} apart"
     distance = sketch.question.hearing_range
     if distance is not None and sketch.met:
         return sentence(f"views too far apart are not heard: {them} form{ends}.")
     if sketch.met:
-        stage = sketch.variant.plan.stages[-1]
-        return sentence(f'{them} hear only themselves for as long as "{stage.name}" goes on{ends}.')
+        plan = sketch.variant.plan
+        whole = plan.afterwards == "repeat" and len(plan.stages) > 1
+        what = "the plan" if whole else f'"{plan.stages[-1].name}"'
+        return sentence(f"{them} hear only themselves for as long as {what} goes on{ends}.")
     return sentence(f"{them} hear only themselves{ends}.")
 
 
@@ -72,7 +74,10 @@ def _why_closed(sketch: Sketch, groups: list[Indices], ends: Floats) -> str:
 def _meeting(sketch: Sketch, groups: list[Indices]) -> Suggestion | None:
     """The first introduction of those that are needed; a joint round where a stage keeps the groups apart."""
     # The smaller group's own start fades when it alone listens, so it is the one to begin with.
-    return introduction(sketch, groups[1], groups[0]) or joint_round(sketch)
+    gap = sketch.spread(sketch.long_run)
+    return introduction(sketch, groups[1], groups[0]) or joint_round(
+        sketch, lambda after: after.spread(after.long_run) < gap
+    )
 
 
 def outside(sketch: Sketch) -> Iterator[Finding]:
@@ -90,16 +95,35 @@ def outside(sketch: Sketch) -> Iterator[Finding]:
     yield Finding(
         kind="outside",
         says=f"What {sketch.names(people)} start{ending(len(people))} with no longer counts in the end.",
-        why=f"In the end all depends on {sketch.names(settling)}: what they hold reaches the others, directly or"
-        " through others, and nothing comes back."
-        if len(settling) > 1
-        else f"In the end all depends on {sketch.names(settling)}, whose view reaches the others, directly or through"
-        " others, and nothing comes back.",
+        why=_why_outside(sketch, settling),
         people=sketch.ids(people),
         figures={"people": len(people)},
         groups=(sketch.ids(people),),
-        suggestion=introduction(sketch, settling, people),
+        suggestion=_hearing(sketch, settling, people),
     )
+
+
+def _why_outside(sketch: Sketch, settling: Indices) -> str:
+    name, firm = sketch.names(settling), sketch.firmness[settling] > 0
+    if firm.all():
+        back = "who brings" if len(settling) == 1 else "who bring"
+        return f"In the end all depends on {name}, {back} back the start, or a part of it, in every round."
+    if firm.any() or not sketch.one_setting:
+        return f"In the end all depends on {name}; what others start with fades as views mix."
+    reaches = "whose view reaches" if len(settling) == 1 else "whose views reach"
+    return f"In the end all depends on {name}, {reaches} the others, directly or through others; nothing comes back."
+
+
+def _hearing(sketch: Sketch, settling: Indices, people: Indices) -> Suggestion | None:
+    """Somebody whose start counts hears one of `people`, where that is enough for the start of the latter to count:
+    where people are firm, or several groups settle, it fades all the same."""
+    if sketch.firmness[settling].any() or len(sketch.closed) != 1:
+        return None
+    suggestion = introduction(sketch, settling, people)
+    if suggestion is None or sketch.one_setting:
+        return suggestion
+    heard = sketch.assembly.place[suggestion.source]
+    return suggestion if tried(sketch, suggestion).influence[heard] > COUNTS_FOR_NOTHING else None
 
 
 def _nobody_hears(sketch: Sketch, people: Indices, settling: Indices) -> Finding:
@@ -112,7 +136,7 @@ def _nobody_hears(sketch: Sketch, people: Indices, settling: Indices) -> Finding
         f" way to what is heard from {sketch.names(settling)}.",
         people=sketch.ids(people),
         figures={"people": len(people)},
-        suggestion=introduction(sketch, settling, people),
+        suggestion=_hearing(sketch, settling, people),
     )
 
 

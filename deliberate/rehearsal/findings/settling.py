@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 
 import numpy as np
 
 from deliberate.rehearsal.findings.sketch import Sketch, ending, halves, is_are, points, rounds, since
 from deliberate.rehearsal.findings.suggesting import introduction, joint_round
-from deliberate.rehearsal.results import Finding
+from deliberate.rehearsal.results import Finding, JointRound
 from deliberate.rehearsal.words import count, percent
 
 MUCH_OWN_VIEW = 0.75
+ALIKE = 1e-9  # a difference of influence that is rounding
 MUCH_INFLUENCE = 2.0  # times an equal share; beyond it `carries` tells more
 
 
@@ -44,14 +46,28 @@ def _why_settles(sketch: Sketch) -> str:
     if len(groups) != 1:
         return "They do not all hear each other for ever, but come near enough while they do, or start so."
     if len(groups[0]) == len(sketch.here):
-        top = float(sketch.influence.max())
-        if top > MUCH_INFLUENCE / len(sketch.here):
-            return "Everybody hears everybody, directly or through others, so views draw together round by round."
-        return (
-            f"Everybody hears everybody, directly or through others, and no start makes up more than {percent(top)}."
+        all_hear = (
+            "Both hear each other"
+            if len(sketch.here) == 2
+            else "Everybody hears everybody, directly or through others"
         )
+        return f"{all_hear}, {_how_much_counts(sketch)}."
     group = sketch.names(groups[0])
+    if len(groups[0]) == 1:
+        return f"In the end all others hear {group}, directly or through others, so their views draw to that one."
     return f"All hear {group}, directly or through others, and these hear each other, so views draw together."
+
+
+def _how_much_counts(sketch: Sketch) -> str:
+    """Whether starts count alike, rounded so that it stays true."""
+    influence = sketch.influence[sketch.here]
+    top, equal = float(influence.max()), 1 / len(influence)
+    if top > MUCH_INFLUENCE * equal or len(influence) == 2:
+        alike = np.ptp(influence) <= ALIKE
+        return "and both starts count alike" if alike else "so views draw together round by round"
+    if np.ptp(influence) <= ALIKE:
+        return "and every start counts for as much as any other"
+    return f"and no start makes up more than {math.ceil(100 * top - ALIKE)} %"
 
 
 def lasting_gap(sketch: Sketch) -> Iterator[Finding]:
@@ -63,17 +79,28 @@ def lasting_gap(sketch: Sketch) -> Iterator[Finding]:
     if gap <= sketch.rehearsal.tolerance:
         return
     low, high = (int(sketch.here[at(limit[sketch.here])]) for at in (np.argmin, np.argmax))
-    views = f"{sketch.number(limit[low])} and {sketch.number(limit[high])}"
+    views = _two_views(sketch, limit[low], limit[high])
     fixed = np.flatnonzero(sketch.still & sketch.heard)
     apart = [introduction(sketch, fixed[at : at + 1], np.delete(fixed, at)) for at in range(min(len(fixed), 8))]
     yield Finding(
         kind="lasting-gap",
-        says=f"No common view, however long they talk: a gap of {sketch.number(gap)} stays in the sketch.",
+        says=f"No common view, however long they talk: a gap of {sketch.gap(gap)} stays in the sketch.",
         why=f"{_why_gap(sketch)}; in the end {sketch.names([low])} and {sketch.names([high])} hold {views}.",
         people=sketch.ids([low, high]),
         figures={"gap": gap, "lowest": float(limit[low]), "highest": float(limit[high])},
-        suggestion=next(filter(None, apart), None) or (joint_round(sketch) if sketch.still.all() else None),
+        suggestion=next(filter(None, apart), None) or _meeting(sketch, gap),
     )
+
+
+def _meeting(sketch: Sketch, gap: float) -> JointRound | None:
+    """A joint round, where nobody hears anybody and it narrows the gap."""
+    if not sketch.still[sketch.here].all():
+        return None
+    return joint_round(sketch, lambda after: after.spread(after.long_run) < gap)
+
+
+def _two_views(sketch: Sketch, low: float, high: float) -> str:
+    return f"{sketch.number(low, beside=high)} and {sketch.number(high, beside=low)}"
 
 
 def _all_still(sketch: Sketch) -> bool:
@@ -87,7 +114,8 @@ def _why_gap(sketch: Sketch) -> str:
     if len(firm):
         lowest, highest = sketch.firmness[firm].min(), sketch.firmness[firm].max()
         part = percent(lowest) if lowest == highest else f"{points(lowest)} to {percent(highest)}"
-        whom = f"All {len(firm)}" if len(firm) == len(sketch.here) else sketch.names(firm)
+        everybody = "Both" if len(firm) == 2 else f"All {len(firm)}"
+        whom = everybody if len(firm) == len(sketch.here) else sketch.names(firm)
         verb = ending(len(firm)) if len(firm) != len(sketch.here) else ""
         return f"{whom} bring{verb} back {part} of the start in every round"
     if len(fixed) == len(sketch.here):
@@ -96,7 +124,7 @@ def _why_gap(sketch: Sketch) -> str:
         return f"The views of {sketch.names(fixed)} do not move, and the others are drawn to more than one of them"
     distance = sketch.question.hearing_range
     if distance is not None:
-        return f"Views more than {sketch.number(distance)} apart are not heard"
+        return f"Views more than {sketch.gap(distance)} apart are not heard"
     return "Not all can hear each other in the stage that goes on for ever"
 
 
@@ -115,10 +143,12 @@ def unfinished(sketch: Sketch) -> Iterator[Finding]:
     agreed = sketch.agreed
     when = f"only {since(agreed)}" if agreed is not None else "only after very many rounds"
     low, high = (int(sketch.here[at(sketch.ends[sketch.here])]) for at in (np.argmin, np.argmax))
-    suggestion = joint_round(sketch) if sketch.end > 0 else None
+    suggestion = None
+    if sketch.end == sketch.plan_rounds:
+        suggestion = joint_round(sketch, lambda after: after.spread(after.ends) < spread)
     yield Finding(
         kind="unfinished",
-        says=f"The plan ends before views meet: {sketch.at_end} they are still {sketch.number(spread)} apart.",
+        says=f"The plan ends before views meet: {sketch.at_end} they are still {sketch.gap(spread)} apart.",
         why=f"{_furthest(sketch, low, high)}; {_as_it_goes_on(sketch)} all would be within {sketch.tolerance} of each"
         f" other {when}, and the plan has {rounds(sketch.plan_rounds)}.",
         people=sketch.ids([low, high]),
@@ -129,7 +159,7 @@ def unfinished(sketch: Sketch) -> Iterator[Finding]:
 
 
 def _furthest(sketch: Sketch, low: int, high: int) -> str:
-    views = f"{sketch.number(sketch.ends[low])} and {sketch.number(sketch.ends[high])}"
+    views = _two_views(sketch, sketch.ends[low], sketch.ends[high])
     return f"{sketch.names([low])} and {sketch.names([high])} then hold {views}"
 
 
@@ -181,8 +211,7 @@ def _why_slow(sketch: Sketch) -> tuple[tuple[str, ...], str]:
     most = np.flatnonzero(own >= MUCH_OWN_VIEW)
     if 0 < len(most) < len(sketch.here):
         keepers = sketch.here[most]
-        part = points(own[most].min())
-        bound = part if len(most) == 1 else f"{part} or more"
+        bound = points(own[most].min()) if len(most) == 1 else f"{math.floor(100 * own[most].min())} or more"
         return sketch.ids(keepers), (
             f"{sketch.names(keepers)} keep{ending(len(most))} {bound} of 100 points for the own view,"
             " and the rest wait for that to move."

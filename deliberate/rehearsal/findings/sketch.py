@@ -13,9 +13,8 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from deliberate.dynamics.agreeing import rounds_to_agree
 from deliberate.dynamics.large import large_structure, large_turn
-from deliberate.dynamics.longrun import final_map, long_run
+from deliberate.dynamics.longrun import final_map
 from deliberate.dynamics.process import course
 from deliberate.dynamics.shares import Shares, shares
 from deliberate.dynamics.structure import full_structure, structure
@@ -24,6 +23,7 @@ from deliberate.rehearsal import words
 from deliberate.rehearsal.assemble import Assembly, assemble
 from deliberate.rehearsal.ballots import Electorate
 from deliberate.rehearsal.choosing import pick_question, pick_variant
+from deliberate.rehearsal.rehearse import rounds_to_agree_among
 from deliberate.rehearsal.results import Floats, Rehearsal
 from deliberate.scenario.values import Question, Scenario, Variant
 
@@ -77,6 +77,12 @@ class Sketch:
                 heard |= mask
             counts &= heard
         return counts
+
+    @cached_property
+    def one_setting(self) -> bool:
+        """Whether the same arrows count in all stages."""
+        blocks = self.assembly.process.blocks
+        return all(block.heard is blocks[0].heard and block.unheard == blocks[0].unheard for block in blocks)
 
     @cached_property
     def drawn(self) -> Shares:
@@ -187,15 +193,7 @@ class Sketch:
     @cached_property
     def agreed(self) -> int | None:
         """The round from which those who take part stay within the tolerance; None for never, or beyond counting."""
-        view, process = self.common_view, self.assembly.process
-        if view is None or len(self.here) == len(self.present):
-            return self.rehearsal.rounds_to_agree
-        # Nobody hears those who are left out, so they can be put where they do not widen the spread.
-        starts = np.full_like(self.starts, view)
-        starts[self.here] = self.starts[self.here]
-        hearing, width = self.question.hearing_range, self.question.width
-        fate = long_run(process, starts, scale_width=width, hearing_range=hearing)
-        return rounds_to_agree(process, starts, self.rehearsal.tolerance, fate, hearing, width)
+        return rounds_to_agree_among(self.here, self.assembly, self.question, self.rehearsal)
 
     @cached_property
     def influence(self) -> Floats:
@@ -244,6 +242,10 @@ class Sketch:
         """A belief, or the distance between two, on the question's scale."""
         return words.number(float(value), self.question, beside)
 
+    def gap(self, value: float) -> str:
+        """A distance between views that is not nothing."""
+        return self.number(value, beside=0.0)
+
     def view(self, value: float) -> str:
         """A belief with its unit."""
         return words.with_unit(float(value), self.question)
@@ -251,7 +253,7 @@ class Sketch:
     @cached_property
     def tolerance(self) -> str:
         """How near views must be to count as one, in words."""
-        return self.number(self.rehearsal.tolerance, beside=0.0)
+        return self.gap(self.rehearsal.tolerance)
 
     def spread(self, beliefs: Floats) -> float:
         """Highest minus lowest belief of those who take part."""

@@ -90,7 +90,7 @@ def absent(sketch: Sketch) -> Iterator[Finding]:
     network = sketch.assembly.process.network
     lost = network.present[network.listener] & ~network.present[network.source]
     heeders = np.unique(network.listener[lost])
-    why = "Nobody present gives them points, so the talk of the others is as it would be with them silent."
+    why = "Nobody present gives them points, so the talk of the others is the same without them."
     if len(heeders):
         all_own = all(stage.unheard == "own" for stage in sketch.variant.plan.stages)
         whither = "stay with the own view" if all_own else "go to the own view or to those still heard"

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 
 import numpy as np
 
-from deliberate.rehearsal.findings.sketch import Indices, Sketch
-from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView
+from deliberate.rehearsal.findings.sketch import Indices, Sketch, sketch_of
+from deliberate.rehearsal.rehearse import rehearse
+from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView, Suggestion
+from deliberate.rehearsal.suggestions import apply
 
 INTRODUCED_POINTS = 10.0
 KEPT_POINTS = 20.0
@@ -36,15 +38,25 @@ def own_views(sketch: Sketch, people: Iterable[int]) -> KeepOwnView:
     return KeepOwnView(sketch.ids(people), KEPT_POINTS)
 
 
-def joint_round(sketch: Sketch) -> JointRound | None:
-    """A round in which everybody hears everybody, where that brings together some who do not hear each other."""
+def joint_round(sketch: Sketch, better: Callable[[Sketch], bool]) -> JointRound | None:
+    """A round in which everybody hears everybody, where that brings together some who do not hear each other and,
+    tried out, makes the sketch `better`."""
     many = int(sketch.present.sum())
     if many > JOINT_PEOPLE or sketch.question.hearing_range is not None:
         return None
     process = sketch.assembly.process
     plenary = any(block.heard is None for block in process.blocks)
     everybody_heard = int(sketch.counts.sum()) == many * (many - 1)
-    return None if plenary and everybody_heard else JointRound(1)
+    if plenary and everybody_heard:
+        return None
+    return JointRound(1) if better(tried(sketch, JointRound(1))) else None
+
+
+def tried(sketch: Sketch, suggestion: Suggestion) -> Sketch:
+    """The sketch after the change, which costs a rehearsal."""
+    scenario = apply(sketch.scenario, sketch.variant.name, suggestion)
+    changed = scenario.variants[sketch.scenario.variants.index(sketch.variant) + 1]
+    return sketch_of(scenario, rehearse(scenario, changed.name, sketch.question.id))
 
 
 def _by_weight(sketch: Sketch, people: Indices) -> Indices:

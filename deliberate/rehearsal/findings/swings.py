@@ -9,7 +9,7 @@ import numpy as np
 from deliberate.rehearsal.findings.sketch import Indices, Sketch, ending
 from deliberate.rehearsal.findings.suggesting import own_views
 from deliberate.rehearsal.results import ClosedGroup, Finding, Floats
-from deliberate.rehearsal.words import amount, in_words, listing, sentence
+from deliberate.rehearsal.words import amount, in_words, listing
 
 NAMED_PHASES = 3
 
@@ -89,9 +89,10 @@ def _why_swing(sketch: Sketch, phases: list[Indices]) -> str:
         takes = f"take{ending(len(phases[0]))}"
         links = f"{first} {takes} over from {named[1]}, these from {named[2]}, and these from {first}"
     else:
-        links = f"the {len(phases)} parts stand in a ring, and each takes over only what the next one held before"
-    over = "over a whole pass " if sketch.variant.plan.afterwards == "repeat" else ""
-    return sentence(f"{over}{links}; nobody's own view counts.")
+        links = f"The {len(phases)} parts stand in a ring, and each takes over only what the next one held before"
+    if sketch.variant.plan.afterwards == "repeat":
+        return f"Over a whole pass through the plan: {links}; nobody's own view counts."
+    return f"{links}; nobody's own view counts."
 
 
 def _who_is_heard_changes(sketch: Sketch) -> Finding:

@@ -145,8 +145,11 @@ class _Seats:
         return self.needed - self.present
 
     def in_words(self) -> str:
-        there = f"{self.present} of {self.eligible} people with a vote {is_are(self.present)} present"
-        return f"{there} and the rule asks for {self.needed}"
+        present = amount(self.present) if self.present else "none"
+        there = f"{present} of {amount(self.eligible)} people with a vote {is_are(self.present)} present"
+        if self.eligible == 1:
+            there = f"the only person with a vote is {'present' if self.present else 'absent'}"
+        return sentence(f"{there} and the rule asks for {amount(self.needed)}")
 
     def figures(self) -> dict[str, float]:
         return {"present": self.present, "eligible": self.eligible, "needed": self.needed, "missing": self.missing}
