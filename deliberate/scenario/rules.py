@@ -31,7 +31,7 @@ _EXTREMES = {  # thresholds at an end of [0, 1] read better without a number
     ("at_most", 0): "none of",
     ("less_than", 1): "not all of",
 }
-WHOLES = {
+_WHOLES = {
     ("ballots", "cast"): "the votes cast",
     ("people", "cast"): "those who vote for or against",
     ("ballots", "present"): "the votes of those present",
@@ -155,7 +155,7 @@ def rule_in_words(ballot: Ballot, names: Mapping[str, str] = FrozenDict()) -> st
 def _test_in_words(test: BallotTest) -> str:
     kind, part = threshold(test)
     amount = _EXTREMES.get((kind, part)) or f"{THRESHOLDS[kind]} {_part_in_words(part)} of"
-    return f"{amount} {WHOLES[test.count, test.of]} {SIDES[test.count, test.side]}"
+    return f"{amount} {_WHOLES[test.count, test.of]} {SIDES[test.count, test.side]}"
 
 
 def _part_in_words(part: Fraction) -> str:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from html import escape
 
 from PySide6.QtCore import QRect, QSize, Qt
-from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPaintEvent
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPaintEvent, QPalette
 from PySide6.QtWidgets import QAbstractButton, QLabel, QSizePolicy, QWidget
 
 from deliberate.window.theme import Look
@@ -41,6 +41,41 @@ def tooltip(text: str) -> str:
 def elided(text: str, font: QFont, width: float) -> str:
     """`text` shortened at its end to fit into `width` pixels."""
     return QFontMetricsF(font).elidedText(text, Qt.TextElideMode.ElideRight, width)
+
+
+class ElidedLabel(QWidget):
+    """One line of text, shortened at its end where there is no room; all of it is in the tooltip and spoken."""
+
+    def __init__(self, parent: QWidget, *, muted: bool = False, align: Qt.AlignmentFlag | None = None) -> None:
+        super().__init__(parent)
+        self._text = ""
+        self._align = align or Qt.AlignmentFlag.AlignLeft
+        self._role = QPalette.ColorRole.PlaceholderText if muted else QPalette.ColorRole.WindowText
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+
+    def text(self) -> str:
+        """All of the text."""
+        return self._text
+
+    def setText(self, text: str) -> None:
+        """Show `text` from now on."""
+        if text != self._text:
+            self._text = text
+            self.setAccessibleName(text)
+            self.setToolTip(tooltip(text))
+            self.update()
+
+    def sizeHint(self) -> QSize:
+        return QSize(self.fontMetrics().horizontalAdvance(self._text), self.fontMetrics().height())
+
+    def minimumSizeHint(self) -> QSize:
+        return QSize(0, self.fontMetrics().height())
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        with QPainter(self) as painter:
+            painter.setPen(self.palette().color(self._role))
+            flags = self._align | Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
+            painter.drawText(self.rect(), flags, elided(self._text, self.font(), self.width()))
 
 
 class WrappingButton(QAbstractButton):

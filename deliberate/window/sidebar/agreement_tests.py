@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 
 from msgspec import UNSET
 from msgspec.structs import replace
@@ -29,13 +29,14 @@ MEANINGS = {
     "spread": "Agreement when the highest and the lowest view are no further apart than this",
     "rand-ucla": "The test of the RAND/UCLA appropriateness method, for 8 to 16 ratings from 1 to 9",
 }
-WORDED = {  # word before the number, field, what the number is
+WORDED = {  # lines of: word before the number, field, what the number is
     "share-within": (
-        ("", "at_least", "share needed"), ("from", "low", "low end"), ("to", "high", "high end"),
+        (("at least", "at_least", "share needed"),),
+        (("from", "low", "low end"), ("to", "high", "high end")),
     ),
-    "quartile-range": (("at most", "at_most", "largest range"),),
-    "spread": (("at most", "at_most", "largest spread"),),
-}  # fmt: skip
+    "quartile-range": ((("at most", "at_most", "largest range"),),),
+    "spread": ((("at most", "at_most", "largest spread"),),),
+}
 EMPTY = "No test: say what will count as agreement before the views are known."
 
 
@@ -148,19 +149,26 @@ class TestRow(QWidget):
         title.setToolTip(tooltip(MEANINGS[kind]))
         self.remove = small_button("Remove", f"Remove the test {TITLES[kind]}", self)
         self.remove.clicked.connect(lambda: self.removal_wanted.emit(self))
-        head, line = QHBoxLayout(), QHBoxLayout()
+        head = QHBoxLayout()
         head.addWidget(title, 1)
         head.addWidget(self.remove)
-        for word, field, name in WORDED.get(kind, ()):
-            line.addWidget(QLabel(word, self))
-            self.fields[field] = LineField(f"{TITLES[kind]}: {name}", self, meaning=MEANINGS[kind])
-            self.fields[field].given.connect(lambda text, field=field: self.given.emit(self, field, text))
-            line.addWidget(self.fields[field], 1)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
-        column.setSpacing(1)
+        column.setSpacing(3)
         column.addLayout(head)
-        column.addLayout(line)
+        for words in WORDED.get(kind, ()):
+            column.addLayout(self._line(words))
+
+    def _line(self, words: Sequence[tuple[str, str, str]]) -> QHBoxLayout:
+        line = QHBoxLayout()
+        line.setSpacing(8)
+        for word, field, name in words:
+            line.addWidget(QLabel(word, self))
+            number = LineField(f"{TITLES[self.kind]}: {name}", self, meaning=MEANINGS[self.kind])
+            number.given.connect(lambda text, field=field: self.given.emit(self, field, text))
+            line.addWidget(number, 1)
+            self.fields[field] = number
+        return line
 
     def read(self, test: AgreementTest) -> None:
         """Show the numbers of `test`."""

@@ -11,7 +11,7 @@ from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QVBoxLayout, QWidget
 
 from deliberate.rehearsal.words import shown_names
 from deliberate.scenario import edits
-from deliberate.scenario.rules import READY_RULES, SIDES, THRESHOLDS, WHOLES, ready_rule_of, rule_in_words
+from deliberate.scenario.rules import READY_RULES, SIDES, THRESHOLDS, ready_rule_of, rule_in_words
 from deliberate.scenario.values import Ballot, BallotTest
 from deliberate.window.session import Session
 from deliberate.window.sidebar.fields import Choice, LineField
@@ -20,6 +20,14 @@ from deliberate.window.sidebar.page import Page, label_for, small_button
 from deliberate.window.text import plain_label
 
 OWN_RULE = "A rule of its own"
+OF_WHAT = {  # as short as a narrow bar needs them; the rule in words says them in full
+    ("ballots", "cast"): "of the votes cast",
+    ("people", "cast"): "of those voting for or against",
+    ("ballots", "present"): "of the votes of those present",
+    ("people", "present"): "of those present with a vote",
+    ("ballots", "eligible"): "of all votes, absent included",
+    ("people", "eligible"): "of all voters, absent included",
+}
 NEW_TEST = BallotTest(side="against", at_most="1/4")
 NO_MARK = "The question shown has no pass mark, so there is no vote on it: set one on the page Question."
 NO_OBJECTIONS = "The question shown has no objection mark, so nobody objects to it: set one on the page Question."
@@ -192,8 +200,7 @@ class ConditionRow(QWidget):
         self.link = plain_label(self, muted=True, text="and")
         self.threshold = Choice(f"How it compares, {which}", self, [(text, key) for key, text in THRESHOLDS.items()])
         self.share = LineField(f"Share, {which}", self, meaning="A fraction such as 2/3, or a share such as 75 %")
-        wholes = [(f"of {text.rstrip(',')}", key) for key, text in WHOLES.items()]
-        self.whole = Choice(f"Of what, {which}", self, wholes)
+        self.whole = Choice(f"Of what, {which}", self, [(text, key) for key, text in OF_WHAT.items()])
         self.side = Choice(f"Which side, {which}", self)
         self.remove = small_button("Remove", f"Remove {which}", self)
         first, last = QHBoxLayout(), QHBoxLayout()

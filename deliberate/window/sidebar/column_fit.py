@@ -6,15 +6,20 @@ from PySide6.QtCore import QEvent, QObject
 from PySide6.QtGui import QAction
 from PySide6.QtWidgets import QHeaderView, QMenu, QTableView
 
-from deliberate.window.sidebar.people_columns import HEADINGS, Column
+from deliberate.rehearsal.words import number
+from deliberate.scenario.values import Question, Variant
+from deliberate.window.sidebar.people_columns import HEADINGS, Column, Row, shown
 from deliberate.window.text import tooltip
 
 # What is needed first while a meeting is sketched and played; the selected people's other numbers stand below too.
 NEEDED_FIRST = (
     Column.START, Column.NOW, Column.PRESENT, Column.FIRMNESS, Column.OWN, Column.BALLOTS, Column.MARGIN, Column.ROLE,
 )  # fmt: skip
-NAME_LETTERS = 13
+ESSENTIAL = (Column.START, Column.NOW, Column.PRESENT)
+MEASURED = (Column.START, Column.MARGIN, Column.BALLOTS)  # as wide as what stands in them
 LEAST_NAME_LETTERS = 9
+NAME_LETTERS = 10  # beside the essential columns
+WIDE_NAME_LETTERS = 16  # before any other column comes
 SWATCH_ROOM = 16
 
 
@@ -25,24 +30,37 @@ class ColumnFit(QObject):
         super().__init__(table)
         self._table = table
         self.chosen: dict[Column, bool] = {}  # what she wants on screen or not; the others follow the width
+        self._longest = {column: heading.sample for column, heading in HEADINGS.items()}
         header = table.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
         header.setMinimumSectionSize(20)
         table.viewport().installEventFilter(self)
         self.fit()
 
+    def measure(self, variant: Variant, question: Question) -> None:
+        """Take the widths from what stands in the columns now; numbers are never cut."""
+        longest = {column: heading.sample for column, heading in HEADINGS.items()}
+        for column in MEASURED:
+            texts = (shown(column, Row(person, 0.0, 0.0), question) for person in variant.people)
+            longest[column] = max((longest[column], *texts), key=len)
+        thirds = (question.low, question.low + question.width / 3, question.high - question.width / 3, question.high)
+        longest[Column.NOW] = max((number(value, question) for value in thirds), key=len)
+        if longest != self._longest:
+            self._longest = longest
+            self.fit()
+
     def fit(self) -> None:
         """Choose the columns anew and give the names what is left."""
         table = self._table
         room, letter = table.viewport().width(), table.fontMetrics().horizontalAdvance("n")
-        used = letter * NAME_LETTERS
         on_screen = [column for column in NEEDED_FIRST if self.chosen.get(column)]
-        used += sum(map(self._width, on_screen))
+        used = sum(map(self._width, on_screen))
         for column in NEEDED_FIRST:
             if column in self.chosen:
                 continue
             used += self._width(column)
-            if used > room:
+            name = letter * (NAME_LETTERS if column in ESSENTIAL else WIDE_NAME_LETTERS)
+            if used + name > room:
                 break
             on_screen.append(column)
         for column in NEEDED_FIRST:
@@ -81,5 +99,5 @@ class ColumnFit(QObject):
 
     def _width(self, column: Column) -> int:
         metrics, heading = self._table.fontMetrics(), HEADINGS[column]
-        cell = metrics.horizontalAdvance(heading.sample) + (SWATCH_ROOM if column == Column.NOW else 0)
+        cell = metrics.horizontalAdvance(self._longest[column]) + (SWATCH_ROOM if column == Column.NOW else 0)
         return max(cell, metrics.horizontalAdvance(heading.short)) + 10

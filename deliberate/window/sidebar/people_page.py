@@ -51,7 +51,7 @@ class PeoplePage(QWidget):
         """Read the people again, now or when the page is next shown."""
         self._stale = not self.isVisible()
         if not self._stale:
-            self.table.people.refresh()
+            self.table.refresh()
             self._read_selected()
 
     def showEvent(self, event: QShowEvent) -> None:

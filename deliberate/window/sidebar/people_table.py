@@ -89,6 +89,11 @@ class PeopleTable(QTableView):
         header.setSortIndicatorShown(False)
         header.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
 
+    def refresh(self) -> None:
+        """Read the people again."""
+        self.people.refresh()
+        self.columns.measure(self._session.variant, self._session.question)
+
     # Order
 
     def sort_by(self, column: int) -> None:

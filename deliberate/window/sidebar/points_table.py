@@ -21,7 +21,7 @@ from deliberate.rehearsal.words import amount, shown_names
 from deliberate.window.session import Session
 from deliberate.window.sidebar.points_delegate import NUMBER_SAMPLE, PointsDelegate
 from deliberate.window.sidebar.points_model import BASES, BASIS, NAME, POINTS, PointsModel
-from deliberate.window.text import plain_label, strong
+from deliberate.window.text import ElidedLabel, plain_label, strong
 from deliberate.window.theme import Look
 
 COLOURS_EVERY_MS = 100
@@ -36,7 +36,7 @@ class PointsTable(QWidget):
         super().__init__(parent)
         self._session = session
         self.model = PointsModel(session, self)
-        self.heading = plain_label(self)
+        self.heading = ElidedLabel(self)
         strong(self.heading)
         self.table = _Rows(self)
         self.table.setModel(self.model)

@@ -12,6 +12,7 @@ from deliberate.window.sidebar.page import small_button
 from deliberate.window.text import tooltip
 
 MOST_ROWS = 5
+ROW_HEIGHT = 24
 NEW_TEXT = "What else is to be decided?"
 
 
@@ -51,7 +52,9 @@ class QuestionList(QWidget):
         while self.rows.count() > len(questions):
             self.rows.takeItem(self.rows.count() - 1)
         while self.rows.count() < len(questions):
-            self.rows.addItem(QListWidgetItem())
+            item = QListWidgetItem()
+            item.setSizeHint(QSize(0, ROW_HEIGHT))
+            self.rows.addItem(item)
         for place, question in enumerate(questions):
             self.rows.item(place).setText(question.text)
             self.rows.item(place).setToolTip(tooltip(question.text))
@@ -119,8 +122,7 @@ class _Rows(QListWidget):
         self.setSizePolicy(self.sizePolicy().horizontalPolicy(), self.sizePolicy().verticalPolicy().Fixed)
 
     def sizeHint(self) -> QSize:
-        row = max(self.sizeHintForRow(0), 24)
-        return QSize(160, row * min(max(self.count(), 1), MOST_ROWS) + 2 * self.frameWidth())
+        return QSize(160, ROW_HEIGHT * min(max(self.count(), 1), MOST_ROWS) + 2 * self.frameWidth())
 
     def minimumSizeHint(self) -> QSize:
         return self.sizeHint()

@@ -80,8 +80,8 @@ class QuestionPage(Page):
             grid.addWidget(label, row, 2)
         grid.addWidget(label_for(self.unit, "Un&it", body), 2, 0)
         grid.addWidget(self.unit, 2, 1, 1, 2)
-        grid.setColumnStretch(1, 2)
-        grid.setColumnStretch(2, 3)
+        grid.setColumnStretch(1, 1)
+        grid.setColumnStretch(2, 1)
         self.along = QCheckBox("Numbe&rs move along", body)
         self.along.setToolTip(
             tooltip(

@@ -13,11 +13,12 @@ from deliberate.scenario import edits
 from deliberate.scenario.values import Person
 from deliberate.window.session import Session
 from deliberate.window.sidebar.fields import LineField
-from deliberate.window.sidebar.numbers import typed_number
-from deliberate.window.sidebar.people_columns import HEADINGS, Column, Row, change, typed_over
-from deliberate.window.text import plain_label
+from deliberate.window.sidebar.numbers import plain, typed_number
+from deliberate.window.sidebar.people_columns import HEADINGS, UNKNOWN, Column, Row, change, typed_over
+from deliberate.window.text import ElidedLabel
 
 STEPS = 1_000
+FIELD_ROOM = 20
 SEVERAL = "differ"  # stands in a field while several people are selected who do not have the same
 DETAILS = (Column.MARGIN, Column.FIRMNESS, Column.BALLOTS)
 
@@ -29,8 +30,7 @@ class StartEditor(QWidget):
         super().__init__(parent)
         self._session = session
         self._filling = False
-        self.heading = plain_label(self)
-        self.heading.setWordWrap(True)
+        self.heading = ElidedLabel(self)
         self.slider = QSlider(Qt.Orientation.Horizontal, self)
         self.slider.setRange(0, STEPS)
         self.slider.setPageStep(STEPS // 10)
@@ -39,11 +39,10 @@ class StartEditor(QWidget):
         self.slider.setMinimumHeight(24)
         self.field = LineField("Starting belief as a number", self, meaning=HEADINGS[Column.START].meaning)
         self.field.setAlignment(Qt.AlignmentFlag.AlignRight)
-        self.field.setFixedWidth(self.fontMetrics().horizontalAdvance("12,000.0") + 14)
         self.known = QCheckBox("known", self)
         self.known.setToolTip("Without a start the middle of the scale is used, and said so")
-        self.low, self.high = plain_label(self, muted=True), plain_label(self, muted=True)
-        self.high.setAlignment(Qt.AlignmentFlag.AlignRight)
+        self.low = ElidedLabel(self, muted=True)
+        self.high = ElidedLabel(self, muted=True, align=Qt.AlignmentFlag.AlignRight)
         row = QHBoxLayout()
         row.setSpacing(8)
         row.addWidget(self.slider, 1)
@@ -96,14 +95,16 @@ class StartEditor(QWidget):
         starts = {person.beliefs.get(question.id) for person in people}
         belief = people[0].beliefs.get(question.id)
         self._filling = True
-        self.heading.setText(f"{self._whose(people)}: starting belief")
+        self.heading.setText(f"Starting belief of {self._whose(people)}")
         self.low.setText(_end(question.low_label, amount(question.low)))
         self.high.setText(_end(question.high_label, amount(question.high)))
         self.known.setChecked(belief is not None)
         shown = question.middle if belief is None else belief
         self.slider.setValue(round((shown - question.low) / question.width * STEPS))
         self._show(self.field, Column.START, people)
-        self.field.setPlaceholderText(SEVERAL if len(starts) > 1 else "?")
+        self.field.setPlaceholderText(SEVERAL if len(starts) > 1 else UNKNOWN)
+        longest = max((self.field.text(), plain(question.low), plain(question.high), SEVERAL), key=len)
+        self.field.setFixedWidth(self.fontMetrics().horizontalAdvance(longest) + FIELD_ROOM)
         for column, field in self.details.items():
             self._show(field, column, people)
         self._filling = False
