@@ -169,6 +169,8 @@ class Electorate:
 
     def _as_ballots(self, counts: NDArray) -> Floats:
         """Whole numbers back to ballots; the true quotient of integers of any size, rounded once."""
+        if max(self._eligible_weight, self._unit) < 2**53:  # doubles hold both exactly
+            return counts.astype(np.float64) / self._unit
         largest = int(sys.float_info.max) * self._unit
         return np.array([min(count, largest) / self._unit for count in counts.tolist()], dtype=float)
 
