@@ -69,6 +69,8 @@ def reached(aim: Aim, before: Figures, after: Figures) -> bool:
             return before.swings and not after.swings
         case "sooner":
             return _way_to_agreeing(before, after) > LEAST_WAY
+        case "more-voices":
+            return after.voices - before.voices > LEAST_WAY * len(before.influence)
         case "outside-heard":
             return bool(before.left_out) and way(aim, before, after) > LEAST_WAY
         case _:

@@ -12,7 +12,7 @@ import msgspec
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.remedies.aims import IN_WORDS, Aim
 from deliberate.rehearsal.remedies.figures import Figures
-from deliberate.rehearsal.remedies.search import Remedy
+from deliberate.rehearsal.remedies.search import Remedy, aims_here
 from deliberate.rehearsal.report import tally_to_json
 from deliberate.rehearsal.results import Suggestion
 from deliberate.rehearsal.summary import CAUTION, COLUMNS
@@ -20,26 +20,28 @@ from deliberate.scenario.values import Scenario
 
 NOTHING_ASKED = "By these figures no aim asks for a change of process."
 NOTHING_FOUND = "Nothing that was tried serves it."
+NOT_ASKED = "The figures do not ask for it, and nothing that was tried serves it further."
 
 Found = Mapping[Aim, Sequence[Remedy]]
 
 
 def remedies_summary(scenario: Scenario, variant: str | None, question: str | None, found: Found) -> str:
     """The remedies of one aim or several, for people; the best first. Made for 80 columns."""
-    setup, asked = pick_variant(scenario, variant), pick_question(scenario, question)
-    parts = ["\n".join(_wrap(line) for line in (scenario.title, asked.text, f"{setup.name}."))]
-    parts += [_told(aim, told) for aim, told in found.items()]
+    setup, talked_about = pick_variant(scenario, variant), pick_question(scenario, question)
+    parts = ["\n".join(_wrap(line) for line in (scenario.title, talked_about.text, f"{setup.name}."))]
+    asked = aims_here(scenario, variant, question) if not all(found.values()) else tuple(found)
+    parts += [_told(aim, told, NOTHING_FOUND if aim in asked else NOT_ASKED) for aim, told in found.items()]
     if not found:
         parts.append(NOTHING_ASKED)
     return "\n\n".join([*parts, CAUTION]) + "\n"
 
 
-def _told(aim: Aim, remedies: Sequence[Remedy]) -> str:
+def _told(aim: Aim, remedies: Sequence[Remedy], otherwise: str) -> str:
     lines = [f"Aim: {IN_WORDS[aim]}"]
     for place, remedy in enumerate(remedies, 1):
         lines.append(_wrap(f"{remedy.says}.", f"{place:3}. "))
         lines += [_wrap(line, " " * 5) for line in (remedy.does, remedy.outcome, remedy.asks)]
-    return "\n".join(lines if remedies else [*lines, f"     {NOTHING_FOUND}"])
+    return "\n".join(lines if remedies else [*lines, f"     {otherwise}"])
 
 
 def remedies_to_json(scenario: Scenario, variant: str | None, question: str | None, found: Found) -> dict[str, Any]:
