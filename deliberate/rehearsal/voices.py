@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.scenario.values import Arrow, Stage, Variant
+
+Indices = NDArray[np.intp]
 
 
 @dataclass(frozen=True, eq=False)
@@ -34,24 +36,32 @@ def voices(variant: Variant, stage: int) -> Voices:
     people, setting = variant.people, variant.plan.stages[stage]
     place = {person.id: index for index, person in enumerate(people)}
     counted = list(_that_count(variant, setting))
-    listener = np.array([place[arrow.listener] for arrow in counted], dtype=np.intp)
-    source = np.array([place[arrow.source] for arrow in counted], dtype=np.intp)
-    weight = np.array([arrow.weight for arrow in counted], dtype=np.float64)
+    heard = set(counted)
+    kept = [] if setting.unheard == "rescale" else [arrow for arrow in variant.arrows if arrow not in heard]
+    listener, source, weight = _as_arrays(counted, place)
+    keeper, _, unheard = _as_arrays(kept, place)
     own = np.array([person.own_weight for person in people], dtype=np.float64)
     firm = np.array([person.firmness for person in people], dtype=np.float64)
 
-    total = own + np.bincount(listener, weights=weight, minlength=len(people))
-    if setting.unheard == "own":
-        unheard = np.zeros(len(people))
-        for arrow in set(variant.arrows) - set(counted):
-            unheard[place[arrow.listener]] += arrow.weight
-        own = own + unheard
-        total = total + unheard
+    # Weights are any finite numbers: measured by a person's largest one, their sum is finite too.
+    largest = own.copy()
+    np.maximum.at(largest, listener, weight)
+    np.maximum.at(largest, keeper, unheard)
+    largest[largest == 0] = 1.0
+    weight = weight / largest[listener]
+    own = own / largest + np.bincount(keeper, unheard / largest[keeper], len(people))
+    total = own + np.bincount(listener, weight, len(people))
     hears_only_herself = total == 0
-    total[hears_only_herself] = 1.0
-    own = np.where(hears_only_herself, 1.0, own / total)
+    own[hears_only_herself] = total[hears_only_herself] = 1.0
     open_part = 1.0 - firm
-    return Voices(open_part * own, firm, listener, source, (open_part / total)[listener] * weight)
+    return Voices(open_part * own / total, firm, listener, source, (open_part / total)[listener] * weight)
+
+
+def _as_arrays(arrows: Sequence[Arrow], place: Mapping[str, int]) -> tuple[Indices, Indices, NDArray[np.float64]]:
+    """Listeners and sources as indices, and weights."""
+    listener = np.array([place[arrow.listener] for arrow in arrows], dtype=np.intp)
+    source = np.array([place[arrow.source] for arrow in arrows], dtype=np.intp)
+    return listener, source, np.array([arrow.weight for arrow in arrows], dtype=np.float64)
 
 
 def _that_count(variant: Variant, stage: Stage) -> Iterable[Arrow]:
