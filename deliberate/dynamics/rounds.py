@@ -34,16 +34,15 @@ def play(
         columns = [play(process, column, rounds, hearing_range, scale_width) for column in start.T]
         return np.stack(columns, axis=-1) if columns else np.empty((rounds + 1, *start.shape))
     played = np.empty((rounds + 1, *start.shape))
-    played[0] = start
+    played[0] = held = start
     move = mover(process.firmness, start)
     if hearing_range is None:
-        steps = scheduled(process, rounds)
-        for at, matrix in enumerate(steps):
-            played[at + 1] = move(matrix, played[at])
+        for at, matrix in enumerate(scheduled(process, rounds), 1):
+            played[at] = held = move(matrix, held)
         return played
     hearing = Hearing(process, hearing_range, scale_width)
     for at in range(rounds):
-        played[at + 1] = move(hearing.shares_at(at, played[at]), played[at])
+        played[at + 1] = held = move(hearing.shares_at(at, held), held)
     return played
 
 
