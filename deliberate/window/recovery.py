@@ -64,7 +64,7 @@ class Recovery(QObject):
         self._timer = QTimer(self)
         self._timer.setSingleShot(True)
         self._timer.setInterval(KEEP_AFTER_MS)
-        self._timer.timeout.connect(self._keep_soon)
+        self._timer.timeout.connect(self.keep_soon)
         self._wrote.connect(self._note_outcome)
         session.file_changed.connect(self._follow)
 
@@ -79,6 +79,24 @@ class Recovery(QObject):
         except DeliberateError:
             return False
         return True
+
+    def keep_soon(self) -> None:
+        """Copy unsaved work without waiting for it: a thread of its own encodes and writes."""
+        copy = self._copy()
+        try:
+            place = self._place()
+        except DeliberateError as error:
+            self._note_outcome(str(error))
+            return
+
+        def keep() -> None:
+            try:
+                copies.keep(copy, place)
+                self._wrote.emit("")
+            except DeliberateError as error:
+                self._wrote.emit(str(error))
+
+        self._start(keep)
 
     def close(self) -> None:
         """Leave nothing behind: the window closes, and what was to be saved is saved."""
@@ -125,23 +143,6 @@ class Recovery(QObject):
                 self._start(lambda path=self._path: copies.forget(path))
         elif not self._timer.isActive():  # a running one is not put off by further edits
             self._timer.start()
-
-    def _keep_soon(self) -> None:
-        copy = self._copy()
-        try:
-            place = self._place()
-        except DeliberateError as error:
-            self._note_outcome(str(error))
-            return
-
-        def keep() -> None:
-            try:
-                copies.keep(copy, place)
-                self._wrote.emit("")
-            except DeliberateError as error:
-                self._wrote.emit(str(error))
-
-        self._start(keep)
 
     def _start(self, work: Callable[[], None]) -> None:
         def guarded() -> None:

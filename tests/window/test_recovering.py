@@ -272,11 +272,11 @@ def test_where_no_copy_can_be_made_it_is_said_once(qtbot: QtBot, open_file: Open
     window.recovery.failed.connect(said.append)
     for value in (61.0, 62.0):
         start(window, value)
-        window.recovery._timer.timeout.emit()
+        window.recovery.keep_soon()
     assert len(said) == 1
     assert "Unsaved work is not kept for a crash" in window.statusBar().currentMessage()
     (private / "recovery").unlink()
-    window.recovery._timer.timeout.emit()
+    window.recovery.keep_soon()
     qtbot.waitUntil(lambda: len(kept(private)) == 1)
 
 
@@ -309,7 +309,7 @@ def test_the_copying_thread_never_runs_the_collector(
     gc.set_threshold(20)
     try:
         start(window, 61.0)
-        window.recovery._timer.timeout.emit()
+        window.recovery.keep_soon()
         qtbot.waitUntil(lambda: bool(kept(private)))
     finally:
         gc.set_threshold(*before)
