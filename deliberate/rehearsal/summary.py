@@ -3,11 +3,9 @@
 from __future__ import annotations
 
 import math
-import textwrap
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property
-from itertools import accumulate
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,17 +13,16 @@ from numpy.typing import NDArray
 from deliberate.rehearsal.assemble import assemble
 from deliberate.rehearsal.ballots import Electorate
 from deliberate.rehearsal.choosing import pick_question, pick_variant
+from deliberate.rehearsal.page import CAUTION, COLUMNS, aligned, heading, labelled, shown_rounds, wrap, wrapped
 from deliberate.rehearsal.rehearse import COMMON_VIEW, rounds_to_agree_among
 from deliberate.rehearsal.results import Finding, Floats, Rehearsal, Tally
 from deliberate.rehearsal.suggestions import words
 from deliberate.rehearsal.words import agreement_test, amount, count, number, numbers, with_unit
 from deliberate.scenario.values import Question, Scenario, Variant
 
-CAUTION = "A sketch, not a forecast of people."
-COLUMNS = 79
-SHOWN_STAGES = 8
 SHOWN_SWING = 4
 OUTCOME = "vote"
+WORDS = ("", OUTCOME)  # columns of words
 
 
 def summary(scenario: Scenario, rehearsal: Rehearsal, findings: Sequence[Finding]) -> str:
@@ -34,11 +31,11 @@ def summary(scenario: Scenario, rehearsal: Rehearsal, findings: Sequence[Finding
     question = pick_question(scenario, rehearsal.question)
     sketch = _Sketch(scenario, variant, question, rehearsal)
     parts = [
-        sketch.heading(),
+        heading(scenario, variant, question),
         sketch.table(),
         sketch.facts(),
         _standing_out(findings, variant),
-        _wrapped(f"Note: {note}." for note in rehearsal.notes),
+        wrapped(f"Note: {note}." for note in rehearsal.notes),
         CAUTION,
     ]
     return "\n\n".join(part for part in parts if part) + "\n"
@@ -58,34 +55,6 @@ class _Sketch:
         people = self.variant.people
         return np.fromiter((person.present for person in people), bool, len(people))
 
-    def heading(self) -> str:
-        variant = self.variant
-        people = count(len(variant.people), "person", "people")
-        if not self.present.all():
-            people += f", {amount(int(self.present.sum()))} present"
-        rounds = count(variant.plan.rounds, "round", "rounds")
-        again = ", again and again" if variant.plan.afterwards == "repeat" else ""
-        setup = f"{variant.name}: {people}; {rounds} ({_stages(variant)}){again}."
-        return _wrapped([self.scenario.title, self.question.text, self._scale(), setup])
-
-    def _scale(self) -> str:
-        question = self.question
-        low, high = (
-            number(value, question) + (f" ({label})" if label else "")
-            for value, label in ((question.low, question.low_label), (question.high, question.high_label))
-        )
-        text = f"Scale in {question.unit}: {low} to {high}" if question.unit else f"Scale: {low} to {high}"
-        if question.hearing_range is not None:
-            text += f"; views more than {number(question.hearing_range, question)} apart are not heard"
-        if question.pass_mark is None:
-            return f"{text}."
-        marks = [f"for above {number(question.pass_mark + question.undecided, question)}"]
-        if question.undecided:
-            marks.append(f"against below {number(question.pass_mark - question.undecided, question)}")
-        if question.objection_mark is not None:
-            marks.append(f"objections below {number(question.objection_mark, question)}")
-        return f"{text}. Votes: {', '.join(marks)}."
-
     def table(self) -> str:
         """Beliefs and the ballot at the start, after each stage, and in the long run; below each other where they
         do not fit side by side."""
@@ -93,10 +62,10 @@ class _Sketch:
         names = [["", *(name for name, _ in moments)]]
         lists = [beliefs for _, beliefs in moments]
         views, votes = self._view_columns(lists), self._vote_columns(lists)
-        side_by_side = _aligned(names + views + votes)
+        side_by_side = aligned(names + views + votes, WORDS)
         if not votes or max(map(len, side_by_side.splitlines())) <= COLUMNS:
             return side_by_side
-        return f"{_aligned(names + views)}\n\n{_aligned(names + votes)}"
+        return f"{aligned(names + views, WORDS)}\n\n{aligned(names + votes, WORDS)}"
 
     def _view_columns(self, lists: Sequence[Floats]) -> list[list[str]]:
         figures = numbers([figure for beliefs in lists for figure in self._figures(beliefs)], self.question)
@@ -118,10 +87,7 @@ class _Sketch:
 
     def _moments(self) -> Iterator[tuple[str, Floats]]:
         rounds = self.rehearsal.rounds
-        ends = list(accumulate(stage.rounds for stage in self.variant.plan.stages))
-        last = len(rounds) - 1
-        shown = sorted({0, *_thinned([end for end in ends if end < last]), last})
-        for after in shown:
+        for after in shown_rounds(self.variant, len(rounds) - 1):
             yield "Start" if after == 0 else f"Round {amount(after)}", rounds[after]
         cycle = self.rehearsal.cycle
         if self.rehearsal.limit is not None:
@@ -155,7 +121,7 @@ class _Sketch:
             quorum = "" if rehearsal.ballot[0].quorum_met else "; too few are present for the quorum"
             facts.append(("Rule", self.scenario.ballot.name + quorum))
         facts += [("Agreement", verdicts) for verdicts in self._verdicts()]
-        return _labelled(facts)
+        return labelled(facts)
 
     def _settling(self) -> str:
         limit = self.rehearsal.limit
@@ -202,26 +168,10 @@ class _Sketch:
 _VERDICTS = {"agreement": "agreement", "disagreement": "disagreement", "neither": "none"}
 
 
-def _stages(variant: Variant) -> str:
-    """The stages by name, with their rounds where there are several."""
-    stages = variant.plan.stages
-    if len(stages) == 1:
-        return stages[0].name
-    named = [f"{stage.name} {amount(stage.rounds)}" for stage in stages[:SHOWN_STAGES]]
-    more = len(stages) - len(named)
-    return ", ".join([*named, count(more, "more stage", "more stages")] if more else named)
-
-
 def _outcome(tally: Tally) -> str:
     if tally.passes:
         return "passes"
     return "fails" if tally.quorum_met else "no quorum"
-
-
-def _thinned(ends: Sequence[int]) -> Sequence[int]:
-    """At most SHOWN_STAGES of them, evenly."""
-    step = -(-len(ends) // SHOWN_STAGES) or 1
-    return ends[step - 1 :: step]
 
 
 def _halving(rounds: float) -> str:
@@ -239,35 +189,8 @@ def _halving(rounds: float) -> str:
 def _standing_out(findings: Sequence[Finding], variant: Variant) -> str:
     lines = ["What stands out"] if findings else []
     for place, finding in enumerate(findings, 1):
-        lines.append(_wrap(finding.says, f"{place:3}. "))
-        lines.append(_wrap(finding.why, " " * 5))
+        lines.append(wrap(finding.says, f"{place:3}. "))
+        lines.append(wrap(finding.why, " " * 5))
         if finding.suggestion is not None:
-            lines.append(_wrap(f"To try: {words(finding.suggestion, variant)}", " " * 5))
+            lines.append(wrap(f"To try: {words(finding.suggestion, variant)}", " " * 5))
     return "\n".join(lines)
-
-
-def _aligned(columns: Sequence[Sequence[str]]) -> str:
-    """Columns two spaces apart, figures to the right, words to the left."""
-    widths = [max(map(len, column)) for column in columns]
-    to_left = [column[0] in ("", OUTCOME) for column in columns]
-    lines = []
-    for row in zip(*columns, strict=True):
-        cells = zip(row, widths, to_left, strict=True)
-        lines.append("  ".join(cell.ljust(width) if left else cell.rjust(width) for cell, width, left in cells))
-    return "\n".join(line.rstrip() for line in lines)
-
-
-def _labelled(facts: Sequence[tuple[str, str]]) -> str:
-    width = max(len(label) for label, _ in facts) + 2
-    return "\n".join(_wrap(text, label.ljust(width)) for label, text in facts)
-
-
-def _wrapped(texts: Iterable[str]) -> str:
-    return "\n".join(_wrap(text) for text in texts)
-
-
-def _wrap(text: str, before: str = "") -> str:
-    """`text` in lines of at most COLUMNS, with `before` in front of the first and as much room before the others."""
-    return textwrap.fill(
-        text, COLUMNS, initial_indent=before, subsequent_indent=" " * len(before), break_on_hyphens=False
-    )
