@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-import textwrap
 from typing import Any
 
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.leverage import Lever, Leverage
+from deliberate.rehearsal.page import CAUTION, heading, wrap
 from deliberate.rehearsal.results import Floats
-from deliberate.rehearsal.summary import CAUTION, COLUMNS
 from deliberate.rehearsal.words import number, with_unit
 from deliberate.scenario.values import Scenario
 
@@ -19,19 +18,15 @@ def leverage_summary(scenario: Scenario, found: Leverage) -> str:
     """What the result hangs on, for people; the largest first. Made for 80 columns."""
     question = pick_question(scenario, found.question)
     end, last = (with_unit(result, question) for result in (found.result_at_end, found.result_in_long_run))
-    heading = [
-        scenario.title,
-        question.text,
-        f"{found.variant}: the mean of those present is {end} at the plan's end and {last} in the long run.",
-    ]
-    lines = [_wrap(line) for line in heading]
+    lines = [heading(scenario, pick_variant(scenario, found.variant), question), ""]
+    lines.append(wrap(f"The mean of those present is {end} at the plan's end and {last} in the long run."))
     told = found.levers[:TOLD]
     lines += ["", "What it hangs on" if told else "Nobody is present, so it hangs on nothing."]
-    lines += [_wrap(lever.says, f"{place:3}. ") for place, lever in enumerate(told, 1)]
+    lines += [wrap(lever.says, f"{place:3}. ") for place, lever in enumerate(told, 1)]
     if len(found.levers) > TOLD:
-        lines += ["", _wrap(f"These are {TOLD} of {len(found.levers)} guesses, by what they move at the plan's end.")]
+        lines += ["", wrap(f"These are {TOLD} of {len(found.levers)} guesses, by what they move at the plan's end.")]
     step = number(found.step, question)
-    lines += ["", _wrap(f"Starts are moved by {step}, rows and firmness by 10 of 100, one at a time.")]
+    lines += ["", wrap(f"Starts are moved by {step}, rows and firmness by 10 of 100, one at a time.")]
     return "\n".join([*lines, "", CAUTION]) + "\n"
 
 
@@ -67,9 +62,3 @@ def _lever(lever: Lever) -> dict[str, Any]:
 
 def _numbers(values: Floats | None) -> list[float] | None:
     return None if values is None else values.tolist()
-
-
-def _wrap(text: str, before: str = "") -> str:
-    return textwrap.fill(
-        text, COLUMNS, initial_indent=before, subsequent_indent=" " * len(before), break_on_hyphens=False
-    )

@@ -3,8 +3,22 @@ from meetings import meeting
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.rehearse import rehearse
-from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView
+from deliberate.rehearsal.results import (
+    EndInPlenary,
+    GoBetween,
+    GoRounds,
+    Introduce,
+    Introductions,
+    JointRound,
+    KeepOwnView,
+    MixedTables,
+    MovePoints,
+    PairTalks,
+    ReorderStages,
+    SpeakFirst,
+)
 from deliberate.rehearsal.suggestions import apply, words
+from deliberate.scenario import edits
 from deliberate.scenario.checks import validate
 from deliberate.scenario.edits.points import points_of
 from deliberate.scenario.values import Plan, Stage
@@ -64,6 +78,120 @@ def test_very_long_names_still_make_a_valid_variant():
         long = apply(long, long.variants[-1].name, Introduce("a", "b", 10))
     assert validate(long) == long
     assert len({variant.name for variant in long.variants}) == 3
+
+
+PAIRS = (("a", "c"), ("b", "d"))
+CHANGES = [
+    (
+        Introductions((("a", "c"), ("c", "a")), 10),
+        "Let Amina and Chidi hear each other: 10 of 100 points each",
+        "Amina and Chidi hear each other",
+    ),
+    (
+        Introductions((("a", "c"), ("d", "b")), 10),
+        "Let Amina hear Chidi and Dolores hear b: 10 of 100 points each",
+        "Two introductions",
+    ),
+    (
+        Introductions((("a", "c"), ("a", "d")), 2.5),
+        "Let Amina hear Chidi and Dolores: 2.5 of 100 points each",
+        "Two introductions",
+    ),
+    (
+        MovePoints("a", "a", "b", 10),
+        "Let Amina give 10 of 100 points to b instead of the own view",
+        "Amina: b for own view",
+    ),
+    (
+        MovePoints("a", "b", "a", 10),
+        "Let Amina give 10 of 100 points to the own view instead of b",
+        "Amina: own view for b",
+    ),
+    (
+        GoBetween(("a", "c"), 10),
+        "Bring in a go-between without a vote or a view of her own, who hears Amina and Chidi alike; each gives her"
+        " 10 of 100 points",
+        "A go-between",
+    ),
+    (
+        SpeakFirst(("b", "c", "d"), 2, 0.0),
+        "Begin with two rounds in which all but Amina are heard",
+        "b, Chidi and Dolores heard first",
+    ),
+    (
+        SpeakFirst(("a",), 1, 5),
+        "Begin with one round in which only Amina is heard; all give each of them 5 of 100 points or more",
+        "Amina heard first",
+    ),
+    (
+        PairTalks(PAIRS, 2, 10),
+        "Begin with two rounds of talks in pairs: Amina with Chidi and b with Dolores; the two give each other"
+        " 10 of 100 points or more",
+        "Talks in pairs first",
+    ),
+    (
+        MixedTables(PAIRS, 3, 10),
+        "Begin with three rounds at two mixed tables, the first for Amina and Chidi; those new to each other give"
+        " each other 10 of 100 points",
+        "Mixed tables first",
+    ),
+    (
+        GoRounds(40),
+        "Go round in every round: everybody hears all others alike, own view 40 of 100 points",
+        "Go-rounds",
+    ),
+    (
+        EndInPlenary(1),
+        "End with one round in plenary, in which all are heard who are heard at all",
+        "Plenary at the end",
+    ),
+]
+
+
+@pytest.mark.parametrize(("suggestion", "said", "name"), CHANGES)
+def test_changes_of_process_in_words_and_as_variants(suggestion, said, name):
+    assert words(suggestion, CIRCLES.variants[0]) == said
+    after = apply(CIRCLES, "As it stands", suggestion)
+    assert [variant.name for variant in after.variants] == ["As it stands", name]
+    assert after.variants[0] is CIRCLES.variants[0]
+    assert validate(after) is after
+    assert after.variants[1].plan.rounds == 6  # at equal length
+
+
+def test_people_who_meet_go_on_hearing_each_other():
+    tables = apply(CIRCLES, "As it stands", MixedTables(PAIRS, 3, 10)).variants[1]
+    assert [(stage.setting, stage.rounds) for stage in tables.plan.stages] == [("tables", 3), ("plenary", 3)]
+    assert points_of(tables, "a") == {"a": 36, "b": 54, "c": 10}
+    talks = apply(CIRCLES, "As it stands", PairTalks((("a", "b"), ("c", "d")), 2, 70)).variants[1]
+    assert points_of(talks, "b") == pytest.approx({"b": 30, "a": 70})
+    assert points_of(talks, "d") == pytest.approx({"d": 30, "c": 70})
+    with pytest.raises(DeliberateError):  # 70 points for each of two partners
+        apply(CIRCLES, "As it stands", PairTalks((("a", "b"), ("c", "a")), 2, 70))
+
+
+def test_speaking_first_changes_points_only_where_some_are_given():
+    kept = apply(CIRCLES, "As it stands", SpeakFirst(("a", "c"), 2, 0.0)).variants[1]
+    assert kept.arrows == CIRCLES.variants[0].arrows
+    assert kept.plan.stages[0].speakers == ("a", "c")
+    heard = apply(CIRCLES, "As it stands", SpeakFirst(("a", "c"), 2, 5)).variants[1]
+    assert points_of(heard, "d")["a"] == points_of(heard, "a")["c"] == 5
+    assert points_of(heard, "b") == pytest.approx({"b": 38, "a": 57, "c": 5})
+
+
+def test_stages_in_another_order_in_words_and_as_a_variant():
+    two = edits.set_plan(CIRCLES, Plan((Stage("Talk", 3), Stage("Quiet", 1, "silence"))), variant="As it stands")
+    assert words(ReorderStages((1, 0)), two.variants[0]) == "Take the stages in another order: Quiet and Talk"
+    after = apply(two, "As it stands", ReorderStages((1, 0))).variants[1]
+    assert (after.name, [stage.name for stage in after.plan.stages]) == ("Quiet first", ["Quiet", "Talk"])
+
+
+def test_long_lists_are_shortened():
+    many = meeting([[1] * 12] * 12, [50] * 12)
+    ids = [person.id for person in many.variants[0].people]
+    pairs = tuple(zip(ids[:6], ids[6:], strict=True))
+    assert "a with g, b with h, c with i and 3 more pairs" in words(PairTalks(pairs, 1, 10), many.variants[0])
+    said = words(Introductions(pairs, 10), many.variants[0])
+    assert said == "Let a hear g, b hear h, c hear i and 3 more listen to somebody new: 10 of 100 points each"
 
 
 def test_unknown_names_are_refused():

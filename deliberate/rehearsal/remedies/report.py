@@ -3,19 +3,18 @@
 from __future__ import annotations
 
 import re
-import textwrap
 from collections.abc import Mapping, Sequence
 from typing import Any
 
 import msgspec
 
 from deliberate.rehearsal.choosing import pick_question, pick_variant
+from deliberate.rehearsal.page import CAUTION, heading, wrap
 from deliberate.rehearsal.remedies.aims import IN_WORDS, Aim
 from deliberate.rehearsal.remedies.figures import Figures
 from deliberate.rehearsal.remedies.search import Remedy, aims_here
 from deliberate.rehearsal.report import tally_to_json
 from deliberate.rehearsal.results import Suggestion
-from deliberate.rehearsal.summary import CAUTION, COLUMNS
 from deliberate.scenario.values import Scenario
 
 NOTHING_ASKED = "By these figures no aim asks for a change of process."
@@ -27,8 +26,7 @@ Found = Mapping[Aim, Sequence[Remedy]]
 
 def remedies_summary(scenario: Scenario, variant: str | None, question: str | None, found: Found) -> str:
     """The remedies of one aim or several, for people; the best first. Made for 80 columns."""
-    setup, talked_about = pick_variant(scenario, variant), pick_question(scenario, question)
-    parts = ["\n".join(_wrap(line) for line in (scenario.title, talked_about.text, f"{setup.name}."))]
+    parts = [heading(scenario, pick_variant(scenario, variant), pick_question(scenario, question))]
     asked = aims_here(scenario, variant, question) if not all(found.values()) else tuple(found)
     parts += [_told(aim, told, NOTHING_FOUND if aim in asked else NOT_ASKED) for aim, told in found.items()]
     if not found:
@@ -39,8 +37,8 @@ def remedies_summary(scenario: Scenario, variant: str | None, question: str | No
 def _told(aim: Aim, remedies: Sequence[Remedy], otherwise: str) -> str:
     lines = [f"Aim: {IN_WORDS[aim]}"]
     for place, remedy in enumerate(remedies, 1):
-        lines.append(_wrap(f"{remedy.says}.", f"{place:3}. "))
-        lines += [_wrap(line, " " * 5) for line in (remedy.does, remedy.outcome, remedy.asks)]
+        lines.append(wrap(f"{remedy.says}.", f"{place:3}. "))
+        lines += [wrap(line, " " * 5) for line in (remedy.does, remedy.outcome, remedy.asks)]
     return "\n".join(lines if remedies else [*lines, f"     {otherwise}"])
 
 
@@ -98,9 +96,3 @@ def _figures(figures: Figures) -> dict[str, Any]:
         "vote_at_end": at_end,
         "vote_in_long_run": in_long_run,
     }
-
-
-def _wrap(text: str, before: str = "") -> str:
-    return textwrap.fill(
-        text, COLUMNS, initial_indent=before, subsequent_indent=" " * len(before), break_on_hyphens=False
-    )

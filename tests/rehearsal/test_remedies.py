@@ -1,0 +1,350 @@
+"""Remedies: minimal where they claim to be, recomputed exactly, ranked, neutral, stoppable."""
+
+from __future__ import annotations
+
+import json
+from itertools import combinations
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from meetings import IDS, meeting, meetings
+
+from deliberate.errors import DeliberateError
+from deliberate.rehearsal.rehearse import rehearse
+from deliberate.rehearsal.remedies import AIMS, aims_here, best_for_each_aim, remedies
+from deliberate.rehearsal.remedies.aims import ALL_OR_NOTHING
+from deliberate.rehearsal.remedies.candidates import joining
+from deliberate.rehearsal.remedies.figures import Effort, effort, figures, price, sketch_for
+from deliberate.rehearsal.remedies.grounds import Grounds
+from deliberate.rehearsal.remedies.report import NOTHING_ASKED, remedies_summary, remedies_to_json
+from deliberate.rehearsal.results import (
+    GoBetween,
+    GoRounds,
+    Introduce,
+    Introductions,
+    KeepOwnView,
+    MixedTables,
+    MovePoints,
+    SpeakFirst,
+)
+from deliberate.rehearsal.suggestions import apply
+from deliberate.scenario import edits
+from deliberate.scenario.values import Plan, Scenario, Stage
+
+NOW = "As it stands"
+CIRCLES = meeting(
+    [[40, 60, 0, 0], [60, 40, 0, 0], [0, 0, 40, 60], [0, 0, 60, 40]],
+    [80, 90, 20, 10],
+    plan=Plan((Stage("Plenary", 6),)),
+)
+SWING = meeting([[0, 0, 1, 1], [0, 0, 1, 1], [1, 1, 0, 0], [1, 1, 0, 0]], [90, 80, 20, 10])
+HUB = meeting(
+    [[94, 2, 2, 2], [60, 30, 5, 5], [60, 5, 30, 5], [60, 5, 5, 30]],
+    [90, 10, 20, 30],
+    plan=Plan((Stage("Plenary", 6),)),
+)
+
+
+# Minimal repairs
+
+
+def reach(arrows: np.ndarray) -> np.ndarray:
+    """(n, n) who hears whom, directly or through others, the own view included."""
+    together = arrows | np.eye(len(arrows), dtype=bool)
+    for _ in range(len(arrows)):
+        together = together | (together.astype(int) @ together.astype(int) > 0)
+    return together
+
+
+def closed_groups(arrows: np.ndarray) -> set[frozenset[int]]:
+    """Sets of people who hear only each other, by the definition: whom a member hears also hears her."""
+    hears = reach(arrows)
+    people = range(len(arrows))
+    return {
+        frozenset(other for other in people if hears[one, other])
+        for one in people
+        if all(hears[other, one] for other in people if hears[one, other])
+    }
+
+
+@st.composite
+def split_networks(draw: st.DrawFn) -> tuple[np.ndarray, Scenario]:
+    """Up to five people who fall into several closed groups; everybody hears herself and hears or is heard."""
+    size = draw(st.integers(3, 5))
+    picked = draw(st.lists(st.booleans(), min_size=size * size, max_size=size * size))
+    thinned = draw(st.lists(st.booleans(), min_size=size * size, max_size=size * size))
+    arrows = np.array(picked).reshape(size, size) & np.array(thinned).reshape(size, size)
+    np.fill_diagonal(arrows, False)
+    for one in np.flatnonzero(~(arrows.any(axis=0) | arrows.any(axis=1))):
+        arrows[one, one - 1] = True
+    points = np.where(arrows, 10, 0) + 40 * np.eye(size)
+    return arrows, meeting(points.tolist(), list(range(0, 100, 20))[:size])
+
+
+def with_arrows(arrows: np.ndarray, more: tuple[tuple[int, int], ...]) -> np.ndarray:
+    after = arrows.copy()
+    for listener, source in more:
+        after[listener, source] = True
+    return after
+
+
+def added(suggestion: Introduce | Introductions) -> tuple[tuple[int, int], ...]:
+    pairs = (
+        suggestion.arrows if isinstance(suggestion, Introductions) else ((suggestion.listener, suggestion.source),)
+    )
+    return tuple((IDS.index(listener), IDS.index(source)) for listener, source in pairs)
+
+
+@settings(max_examples=60)
+@given(split_networks())
+def test_minimal_repairs_are_minimal(network):
+    """k closed groups take k - 1 arrows to one, and k where every group's start shall count; fewer never do."""
+    arrows, scenario = network
+    groups = closed_groups(arrows)
+    found = list(joining(Grounds(sketch_for(scenario, NOW, "q"))))
+    if len(groups) == 1:
+        assert found == []
+        return
+    star, ring = found
+    assert len(added(star)) == len(groups) - 1
+    assert len(added(ring)) == len(groups)
+    assert len(closed_groups(with_arrows(arrows, added(star)))) == 1
+    everybody = frozenset().union(*groups)
+    assert next(iter(closed_groups(with_arrows(arrows, added(ring))))) >= everybody
+    free = [(a, b) for a in range(len(arrows)) for b in range(len(arrows)) if a != b and not arrows[a, b]]
+    for fewer in range(len(groups) - 1):
+        for more in combinations(free, fewer):
+            assert len(closed_groups(with_arrows(arrows, more))) > 1
+    for fewer in range(len(groups)):
+        for more in combinations(free, fewer):
+            after = closed_groups(with_arrows(arrows, more))
+            assert len(after) > 1 or not next(iter(after)) >= everybody
+
+
+@settings(max_examples=30)
+@given(split_networks())
+def test_a_minimal_repair_brings_a_common_view(network):
+    _, scenario = network
+    if "common-view" not in aims_here(scenario):
+        return
+    kinds = {}
+    for remedy in remedies(scenario, None, None, "common-view"):
+        kinds.setdefault(type(remedy.suggestion), remedy)
+        tried = apply(scenario, NOW, remedy.suggestion)
+        assert rehearse(tried, tried.variants[1].name).consensus_from_any_start
+    assert Introduce in kinds or Introductions in kinds
+
+
+def test_any_own_view_ends_a_swing():
+    found = remedies(SWING, None, None, "end-swing")
+    assert found[0].suggestion == KeepOwnView(("a", "b", "c", "d"), 20.0)
+    assert found[0].before.swings
+    for remedy in found:
+        tried = apply(SWING, NOW, remedy.suggestion)
+        assert rehearse(tried, tried.variants[1].name).settles_from_any_start
+    assert not rehearse(SWING).settles_from_any_start
+
+
+def test_two_swings_are_both_ended():
+    two = meeting([[0, 1, 0, 0], [1, 0, 0, 0], [0, 0, 0, 1], [0, 0, 1, 0]], [90, 80, 20, 10])
+    found = remedies(two, None, None, "end-swing")
+    assert found
+    assert all(not remedy.after.swings for remedy in found)
+    own = next(remedy.suggestion for remedy in found if isinstance(remedy.suggestion, KeepOwnView))
+    assert {"a", "b"} & set(own.people)
+    assert {"c", "d"} & set(own.people)
+
+
+# Aims and ranking
+
+
+def test_aims_are_those_that_the_figures_ask_for():
+    assert aims_here(CIRCLES) == ("common-view", "less-spread")
+    assert aims_here(SWING) == ("end-swing", "less-spread")
+    assert aims_here(HUB) == ("more-voices",)
+    calm = meeting([[40, 30, 30], [30, 40, 30], [30, 30, 40]], [40, 50, 60])
+    assert aims_here(calm) == ()
+    assert best_for_each_aim(calm) == {}
+
+
+def test_no_aim_is_an_outcome():
+    assert set(AIMS) == {"common-view", "end-swing", "sooner", "more-voices", "outside-heard", "less-spread"}
+    with pytest.raises(DeliberateError, match='there is no "pass"; the aims are common-view'):
+        remedies(CIRCLES, None, None, "pass")
+
+
+def test_turning_the_scale_round_changes_no_remedy():
+    """Neutral: with every start mirrored the same changes come in the same order, and the vote turns with them."""
+    mirrored = edits.set_beliefs(
+        HUB, {one.id: 100 - one.beliefs["q"] for one in HUB.variants[0].people}, "q", variant=NOW
+    )
+    for aim in AIMS:
+        one, other = remedies(HUB, None, None, aim), remedies(mirrored, None, None, aim)
+        assert [remedy.suggestion for remedy in one] == [remedy.suggestion for remedy in other]
+        assert [remedy.worth for remedy in one] == pytest.approx([remedy.worth for remedy in other])
+
+
+def test_the_best_comes_first_and_each_kind_once():
+    found = remedies(HUB, None, None, "more-voices")
+    around = next(remedy for remedy in found if isinstance(remedy.suggestion, GoRounds))
+    assert around.after.voices == pytest.approx(4)
+    worth = [remedy.worth for remedy in found]
+    assert worth == sorted(worth, reverse=True)
+    assert len({type(remedy.suggestion) for remedy in found}) == len(found)
+    assert any(isinstance(remedy.suggestion, SpeakFirst) for remedy in found)
+
+
+def test_moving_points_is_found_by_closed_form_and_is_the_best_move():
+    """The best single move of ten points in the hub's rows, tried out one by one."""
+    grounds = Grounds(sketch_for(HUB, NOW, "q"))
+    moves = list(grounds.moves(grounds.pull_on_influence()))
+    voices = {}
+    for listener in IDS[:4]:
+        points = edits.points_of(HUB.variants[0], listener)
+        for away in points:
+            for to in points:
+                if away != to and points[away] > 10:
+                    tried = apply(HUB, NOW, MovePoints(listener, away, to, 10.0))
+                    after = figures(sketch_for(tried, tried.variants[1].name, "q"))
+                    voices[listener, away, to] = after.voices
+    best = max(voices.values())
+    assert voices[moves[0].listener, moves[0].away, moves[0].to] == pytest.approx(best)
+
+
+def test_an_introduction_found_by_closed_form_narrows_the_spread_most_for_its_listener():
+    line = meeting(
+        [[50, 50, 0, 0], [30, 40, 30, 0], [0, 30, 40, 30], [0, 0, 50, 50]],
+        [90, 60, 40, 10],
+        plan=Plan((Stage(rounds=3),)),
+    )
+    grounds = Grounds(sketch_for(line, NOW, "q"))
+    chosen = next(grounds.introductions(grounds.pull_on_spread()))
+    spreads = {}
+    for listener, source in combinations(IDS[:4], 2):
+        for pair in ((listener, source), (source, listener)):
+            if pair[1] not in edits.points_of(line.variants[0], pair[0]):
+                tried = apply(line, NOW, Introduce(*pair, 10.0))
+                spreads[pair] = rehearse(tried, tried.variants[1].name).spread[-1]
+    mine = spreads[chosen.listener, chosen.source]
+    assert mine == min(spread for (listener, _), spread in spreads.items() if listener == chosen.listener)
+    assert mine < rehearse(line).spread[-1]
+
+
+def test_leaving_people_out_is_said_and_costs():
+    one_way = next(
+        remedy for remedy in remedies(CIRCLES, None, None, "common-view") if isinstance(remedy.suggestion, Introduce)
+    )
+    assert "would no longer count in the end" in one_way.does
+    assert len(one_way.after.left_out) == 2
+    assert one_way.worth < one_way.way - 0.1
+
+
+def test_people_outside_are_heard_again():
+    outside = meeting([[60, 40, 0], [40, 60, 0], [30, 30, 40]], [80, 70, 10], plan=Plan((Stage("Plenary", 6),)))
+    assert "outside-heard" in aims_here(outside)
+    for remedy in remedies(outside, None, None, "outside-heard"):
+        assert remedy.before.left_out == ("c",)
+        assert remedy.after.influence["c"] > 0
+        assert "of the long run would come from the starts of c, not none of it" in remedy.does
+
+
+def test_effort_counts_points_people_and_rounds():
+    def asked(suggestion) -> Effort:
+        tried = apply(CIRCLES, NOW, suggestion)
+        return effort(tried.variants[0], tried.variants[1], suggestion)
+
+    assert asked(Introduce("a", "c", 10)) == Effort(pytest.approx(10), 1, 0)
+    assert asked(MovePoints("a", "a", "b", 10)) == Effort(pytest.approx(10), 1, 0)
+    assert asked(GoBetween(("a", "c"), 10)) == Effort(pytest.approx(20), 3, 0)
+    assert asked(MixedTables((("a", "c"), ("b", "d")), 2, 10)) == Effort(pytest.approx(40), 4, 0)
+    assert asked(MixedTables((("a", "c"), ("b", "d")), 9, 10)).rounds == 4
+    assert price(Effort(0, 0, 0), 4, 6) == 0
+    assert price(Effort(200, 4, 6), 4, 6) == pytest.approx(1)
+
+
+def test_with_a_hearing_range_a_go_between_brings_camps_together():
+    far = edits.change_question(
+        meeting([[25, 25, 25, 25]] * 4, [10, 20, 60, 70], plan=Plan((Stage("Plenary", 8),))), "q", hearing_range=35
+    )
+    assert aims_here(far) == ("common-view", "less-spread")
+    found = remedies(far, None, None, "common-view")
+    assert [type(remedy.suggestion) for remedy in found] == [GoBetween]
+    assert "any start" not in found[0].does
+
+
+def test_firm_starts_leave_nothing_to_arrange_for_a_common_view():
+    firm = edits.set_firmness(CIRCLES, IDS[:4], 0.3, variant=NOW)
+    assert "common-view" not in aims_here(firm)
+    assert remedies(firm, None, None, "common-view") == ()
+
+
+# The rest
+
+
+@settings(max_examples=25)
+@given(meetings(5))
+def test_any_meeting_can_be_asked_for_any_aim(scenario):
+    for aim in AIMS:
+        for remedy in remedies(scenario, None, None, aim):
+            tried = apply(scenario, NOW, remedy.suggestion)
+            sketch = sketch_for(tried, tried.variants[1].name, "q")
+            assert vars(figures(sketch)) == vars(remedy.after)
+            assert remedy.way > 0 or aim in ALL_OR_NOTHING
+    told = best_for_each_aim(scenario)
+    json.dumps(remedies_to_json(scenario, None, None, told), allow_nan=False)
+    assert max(map(len, remedies_summary(scenario, None, None, told).splitlines())) < 80
+
+
+def test_it_can_be_watched_and_stopped():
+    seen: list[tuple[int, int]] = []
+    whole = remedies(CIRCLES, None, None, "less-spread", progress=lambda done, of: seen.append((done, of)))
+    assert [done for done, _ in seen] == list(range(seen[0][1] + 1))
+    stops = iter([False, False, True])
+    part = remedies(CIRCLES, None, None, "less-spread", stopped=lambda: next(stops))
+    assert len(part) < len(whole)
+
+
+def test_it_is_the_same_every_time():
+    one, other = (remedies(HUB, None, None, "less-spread") for _ in range(2))
+    assert [(remedy.suggestion, remedy.worth) for remedy in one] == [
+        (remedy.suggestion, remedy.worth) for remedy in other
+    ]
+
+
+def test_the_scenario_and_other_variants_are_left_alone():
+    more = edits.add_variant(CIRCLES, copy_of=NOW, name="Other")
+    more = edits.add_arrow(more, "a", "c", 10, variant="Other")
+    now, other = remedies(more, NOW, "q", "common-view"), remedies(more, "Other", "q", "common-view")
+    assert [remedy.suggestion for remedy in now] == [
+        remedy.suggestion for remedy in remedies(CIRCLES, None, None, "common-view")
+    ]
+    assert other == ()
+
+
+def test_words_and_json():
+    text = remedies_summary(CIRCLES, None, None, best_for_each_aim(CIRCLES))
+    assert "Aim: reach a common view from any start\n  1. " in text
+    assert text.endswith("A sketch, not a forecast of people.\n")
+    told = json.loads(json.dumps(remedies_to_json(CIRCLES, None, None, best_for_each_aim(CIRCLES))))
+    assert (told["format"], told["version"], told["variant"], told["question"]) == (
+        "deliberate-remedies",
+        1,
+        NOW,
+        "q",
+    )
+    assert [one["aim"] for one in told["aims"]] == ["common-view", "less-spread"]
+    best = told["aims"][0]["remedies"][0]
+    assert best["before"]["closed_groups"] == 2
+    assert best["after"]["closed_groups"] == 1
+    assert "-" in best["change"]["kind"]
+    calm = meeting([[50, 50], [50, 50]], [40, 50])
+    assert NOTHING_ASKED in remedies_summary(calm, None, None, best_for_each_aim(calm))
+    assert "do not ask for it" in remedies_summary(calm, None, None, {"end-swing": ()})
+
+
+def test_nobody_present():
+    absent = edits.set_presence(CIRCLES, IDS[:4], False, variant=NOW)
+    assert all(remedies(absent, None, None, aim) == () for aim in AIMS)
+    assert all(remedies(meeting([], []), None, None, aim) == () for aim in AIMS)
