@@ -47,7 +47,7 @@ def is_sound(rehearsal: Rehearsal, finding: Finding) -> None:
     assert all(set(group) <= known for group in finding.groups)
     assert all(group for group in finding.groups)
     assert all(set(arrow) <= known for arrow in finding.arrows)
-    assert all(math.isfinite(figure) for figure in finding.figures.values())
+    assert all(type(figure) in (int, float) and math.isfinite(figure) for figure in finding.figures.values())
     for text in (finding.says, finding.why):
         assert text.endswith(".")
         assert not text.endswith("..")
