@@ -48,16 +48,22 @@ def typed_share(text: str, what: str) -> Share:
     Raises DeliberateError naming `what` where it is none of these or does not lie between none and all.
     """
     fraction = _FRACTION.fullmatch(text.strip())
-    if fraction is not None and 0 < int(fraction[2]) >= int(fraction[1]):
-        return f"{fraction[1]}/{fraction[2]}"
-    if fraction is None:
-        tidy = text.strip().removesuffix("%")
-        share = typed_number(tidy, what)
-        if tidy != text.strip():
-            share = float(Fraction(repr(share)) / 100)
-        if 0 <= share <= 1:
+    if fraction is not None:
+        if 0 < int(fraction[2]) >= int(fraction[1]):
+            return f"{fraction[1]}/{fraction[2]}"
+    else:
+        share = _part_of_one(text.strip())
+        if share is not None and 0 <= share <= 1:
             return share
     raise DeliberateError(f"{what} must be {SHARE_WANTED}, from none to all, is “{text.strip()}”")
+
+
+def _part_of_one(text: str) -> float | None:
+    try:
+        share = typed_number(text.removesuffix("%"), "a share")
+    except DeliberateError:
+        return None
+    return float(Fraction(repr(share)) / 100) if text.endswith("%") else share
 
 
 def share_text(share: Share) -> str:

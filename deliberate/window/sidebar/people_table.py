@@ -40,7 +40,7 @@ class PeopleTable(QTableView):
         super().__init__(parent)
         self._session, self._look = session, look
         self._following = False
-        self._sorted_by = -1
+        self._sorted = (-1, Qt.SortOrder.AscendingOrder)
         self.people = PeopleModel(session, self)
         self.proxy = QSortFilterProxyModel(self)
         self.proxy.setDynamicSortFilter(False)
@@ -98,17 +98,16 @@ class PeopleTable(QTableView):
 
     def sort_by(self, column: int) -> None:
         """Sort by a column: up, down, then the meeting's own order again."""
+        up, down = Qt.SortOrder.AscendingOrder, Qt.SortOrder.DescendingOrder
+        before, self._sorted = self._sorted, (column, up)  # the header's own indicator has moved already
+        if before == (column, up):
+            self._sorted = (column, down)
+        elif before == (column, down):
+            self._sorted = (-1, up)
         header = self.horizontalHeader()
-        order = header.sortIndicatorOrder()
-        if column != self._sorted_by:
-            self._sorted_by, order = column, Qt.SortOrder.AscendingOrder
-        elif order == Qt.SortOrder.AscendingOrder:
-            order = Qt.SortOrder.DescendingOrder
-        else:
-            self._sorted_by = -1
-        header.setSortIndicatorShown(self._sorted_by >= 0)
-        header.setSortIndicator(column, order)
-        self.proxy.sort(self._sorted_by, order)
+        header.setSortIndicatorShown(self._sorted[0] >= 0)
+        header.setSortIndicator(*self._sorted)
+        self.proxy.sort(*self._sorted)
 
     # Selection, both ways
 

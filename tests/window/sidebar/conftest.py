@@ -1,0 +1,34 @@
+"""The left bar on its own, as wide as in the window."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+from circles import CIRCLES
+from pytestqt.qtbot import QtBot
+
+from deliberate.scenario.values import Scenario
+from deliberate.window.session import Session
+from deliberate.window.sidebar import Sidebar
+from deliberate.window.theme import Look
+
+
+@pytest.fixture
+def open_sidebar(
+    qtbot: QtBot, look: Look, open_session: Callable[..., Session]
+) -> Callable[..., tuple[Sidebar, Session]]:
+    """Opens the left bar on a meeting."""
+
+    def open_one(scenario: Scenario = CIRCLES, width: int = 290, height: int = 700) -> tuple[Sidebar, Session]:
+        session = open_session(scenario, rehearsed=False)
+        sidebar = Sidebar(session, look)
+        qtbot.addWidget(sidebar)
+        sidebar.resize(width, height)
+        sidebar.show()
+        qtbot.waitExposed(sidebar)
+        sidebar.activateWindow()
+        qtbot.waitUntil(sidebar.isActiveWindow)
+        return sidebar, session
+
+    return open_one
