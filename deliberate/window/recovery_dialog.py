@@ -16,6 +16,7 @@ INTRODUCTION = (
     "Deliberate ended before this work was saved. Bring a copy back to go on with it; the meeting's file stays as it "
     "is until you save."
 )
+MOST_ROWS_SHOWN = 5
 
 
 class RecoveryDialog(QDialog):
@@ -63,7 +64,8 @@ class RecoveryDialog(QDialog):
         column.addWidget(plain_label(self, text=INTRODUCTION))
         column.addWidget(self.list)
         column.addLayout(buttons)
-        self.list.setFixedHeight(64 + 46 * min(len(self._left), 4))
+        shown = min(self.list.count(), MOST_ROWS_SHOWN)
+        self.list.setFixedHeight(shown * (self.list.sizeHintForRow(0) + 2 * self.list.spacing()) + 4)
 
     def _bring_back(self) -> None:
         leftover = self._left.pop(self.list.currentRow())

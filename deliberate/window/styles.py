@@ -28,7 +28,7 @@ def style_sheet(theme: Theme) -> str:
         color: {theme.ink}; min-height: 16px;
     }}
     QPushButton:hover, QToolButton:hover {{ border-color: {theme.accent}; }}
-    QPushButton:focus, QToolButton:focus {{ border: 1px solid {theme.accent}; }}
+    QPushButton:focus, QToolButton:focus, QPushButton:default {{ border: 1px solid {theme.accent}; }}
     QPushButton:pressed, QToolButton:pressed, QToolButton:checked {{
         background: {theme.tint}; color: {theme.accent};
     }}
@@ -50,6 +50,8 @@ def style_sheet(theme: Theme) -> str:
         background: {theme.panel}; border: none; gridline-color: {theme.line};
         selection-background-color: {theme.tint}; selection-color: {theme.ink};
     }}
+    QListWidget::item {{ padding: 7px 10px; border-radius: 4px; }}
+    QListWidget::item:selected {{ background: {theme.tint}; color: {theme.ink}; }}
     QHeaderView {{ background: {theme.panel}; }}
     QHeaderView::section {{
         background: {theme.panel}; color: {theme.muted}; border: none; border-bottom: 1px solid {theme.line};
