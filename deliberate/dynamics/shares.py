@@ -81,16 +81,17 @@ def shares(network: Network, heard: Mask | None = None, unheard: Unheard = "own"
         heeded &= heard
     # Divide by about the row's largest weight that counts before summing: sums then neither overflow nor vanish, and
     # a power of two leaves every digit as it is.
-    counted = drawn if unheard == "own" else heeded
+    points = np.where(drawn if unheard == "own" else heeded, weight, 0.0)
     largest = own.copy()
-    np.maximum.at(largest, listener[counted], weight[counted])
+    np.maximum.at(largest, listener, points)
     largest[largest == 0] = 1.0
     unit = np.ldexp(1.0, np.frexp(largest)[1] - 1)
-    points = np.maximum(np.where(counted, weight, 0.0) / unit[listener], TINY)
+    points = np.maximum(points / unit[listener], TINY)
     to_own = np.where(own > 0, np.maximum(own / unit, TINY), 0.0)
-    if unheard == "own":
-        to_own += sum_by(listener, points * (drawn & ~heeded), count)
-    listener, source, points = listener[heeded], source[heeded], points[heeded]
+    if not heeded.all():
+        if unheard == "own":
+            to_own += sum_by(listener, points * (drawn & ~heeded), count)
+        listener, source, points = listener[heeded], source[heeded], points[heeded]
     total = to_own + sum_by(listener, points, count)
     alone = (total == 0) | ~network.present
     to_own[alone] = total[alone] = 1.0
