@@ -99,7 +99,8 @@ def words(suggestion: Suggestion, variant: Variant) -> str:
         case JointRound(rounds):
             return f"Begin with {count(rounds, 'round', 'rounds')} in which everybody hears everybody"
         case SpeakFirst(speakers, rounds, points):
-            given = f"; all give each of them {_of_100(points)} or more" if points else ""
+            them = "each of them" if len(speakers) > 1 else names(speakers, known)
+            given = f"; all give {them} {_of_100(points)} or more" if points else ""
             return f"Begin with {_rounds(rounds)} in which {_only(speakers, variant, known)} heard{given}"
         case PairTalks(pairs, rounds, points):
             given = f"; the two give each other {_of_100(points)} or more"

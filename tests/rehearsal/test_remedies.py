@@ -247,7 +247,7 @@ def test_people_outside_are_heard_again():
     for remedy in remedies(outside, None, None, "outside-heard"):
         assert remedy.before.left_out == ("c",)
         assert remedy.after.influence["c"] > 0
-        assert "of the long run would come from the starts of c, not none of it" in remedy.does
+        assert "of the long run would come from the starts of c instead of none" in remedy.does
 
 
 def test_effort_counts_points_people_and_rounds():

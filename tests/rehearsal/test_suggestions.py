@@ -120,7 +120,7 @@ CHANGES = [
     ),
     (
         SpeakFirst(("a",), 1, 5),
-        "Begin with one round in which only Amina is heard; all give each of them 5 of 100 points or more",
+        "Begin with one round in which only Amina is heard; all give Amina 5 of 100 points or more",
         "Amina heard first",
     ),
     (

@@ -123,7 +123,8 @@ def test_trying_it_gives_what_was_said(slug):
                 vote = next(iter(tally(question, saved.ballot, tried.people, played[None, :])))
                 assert remedy.after.vote_at_end == vote
             if aim in ("common-view", "less-spread"):
-                assert f"views would be {number(spread, question)} apart" in remedy.does
+                shown = number(spread, question)
+                assert f"views would be {shown} apart" in remedy.does or (shown == "0" and "under 0." in remedy.does)
 
 
 @pytest.mark.parametrize("slug", DEMOS)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Iterator
 from itertools import islice, permutations
 
@@ -246,4 +247,4 @@ def _usual_own_points(grounds: Grounds) -> float:
     """What people keep for the own view on average, to the next five, and no less than an equal share."""
     here = grounds.sketch.here
     usual = 5.0 * round(HUNDRED * float(grounds.weights.diagonal()[here].mean()) / 5)
-    return max(min(usual, OWN_IN_GO_ROUND), round(HUNDRED / len(here), 1))
+    return max(min(usual, OWN_IN_GO_ROUND), float(math.ceil(HUNDRED / len(here))))

@@ -17,7 +17,9 @@ from deliberate.rehearsal.results import (
     Suggestion,
     Tally,
 )
-from deliberate.rehearsal.words import amount, count, in_words, names, percent, with_unit
+from deliberate.rehearsal.words import amount, count, decimals, in_words, names, percent, sentence, with_unit
+
+ROUNDING = 1e-9  # of the scale's width
 
 
 def does(aim: Aim, sketch: Sketch, before: Figures, after: Figures) -> str:
@@ -46,27 +48,34 @@ def _served(aim: Aim, sketch: Sketch, before: Figures, after: Figures) -> str:
                 f"All would be within {sketch.tolerance} of each other from round {first} on, not from round {now} on"
             )
         case "more-voices":
-            voices = [amount(round(one.voices, 1)) for one in (after, before)]
-            return f"The result would be carried as if by {voices[0]} equal voices, not {voices[1]}"
+            voices, now = (amount(round(one.voices, 1)) for one in (after, before))
+            return f"The result would be carried as if by {voices} equal voices instead of {now}"
         case "outside-heard":
             share = sum(after.influence.get(one, 0.0) for one in before.left_out)
             whose = names(before.left_out, sketch.shown_names)
             still = sum(one in after.left_out for one in before.left_out)
             rest = f"; {in_words(still, 'start', 'starts')} would still not count" if still else ""
-            return f"{percent(share)} of the long run would come from the starts of {whose}, not none of it{rest}"
+            return f"{percent(share)} of the long run would come from the starts of {whose} instead of none{rest}"
         case "less-spread":
-            return _spread(sketch, before, after)[:1].upper() + _spread(sketch, before, after)[1:]
+            return sentence(_spread(sketch, before, after))
 
 
 def _spread(sketch: Sketch, before: Figures, after: Figures) -> str:
-    spreads = (sketch.number(one.spread_at_end) for one in (after, before))
-    return "at the plan's end views would be {} apart, not {}".format(*spreads)
+    apart, now = (_distance(sketch, one.spread_at_end) for one in (after, before))
+    return f"at the plan's end views would be {apart} apart instead of {now}"
+
+
+def _distance(sketch: Sketch, size: float) -> str:
+    """A distance between views; one too small to show is not told as none."""
+    text = sketch.number(size)
+    tiny = size > ROUNDING * sketch.question.width and text == "0"
+    return f"under {sketch.number(10.0 ** -decimals(sketch.question))}" if tiny else text
 
 
 def outcome(sketch: Sketch, before: Figures, after: Figures) -> str:
     """Mean and vote at the plan's end, before and after."""
     first, now = (with_unit(one.mean_at_end, sketch.question) for one in (after, before))
-    mean = f"the mean stays at {now}" if first == now else f"the mean would be {first}, not {now}"
+    mean = f"the mean stays at {now}" if first == now else f"the mean would be {first} instead of {now}"
     if before.vote_at_end is None or after.vote_at_end is None:
         return f"At the plan's end {mean}."
     return f"At the plan's end {mean}; {_votes(before.vote_at_end, after.vote_at_end)}."
@@ -78,9 +87,9 @@ def _votes(now: Tally, then: Tally) -> str:
     if _counts(now) == _counts(then) and now.passes == then.passes:
         return f"the vote stays {_counts(now)} and {either}"
     if now.passes == then.passes:
-        return f"the vote would be {_counts(then)}, not {_counts(now)}, and {either} either way"
-    passing, as_before = ("pass", "does not pass") if then.passes else ("not pass", "passes")
-    return f"the vote would be {_counts(then)} and {passing}, not {_counts(now)}, which {as_before}"
+        return f"the vote would be {_counts(then)} instead of {_counts(now)} and {either} either way"
+    would, is_now = ("pass", "does not") if then.passes else ("not pass", "passes")
+    return f"the vote would {would} with {_counts(then)}; as it stands it {is_now} with {_counts(now)}"
 
 
 def _counts(tally: Tally) -> str:
@@ -100,7 +109,7 @@ def asks(effort: Effort) -> str:
     if effort.rounds > 0:
         parts.append(f"{in_words(effort.rounds, 'round more', 'rounds more')}")
     text = ", ".join(parts) or "Only the order changes"
-    return f"{text[:1].upper()}{text[1:]}."
+    return f"{sentence(text)}."
 
 
 def concerned(suggestion: Suggestion) -> tuple[str, ...]:
