@@ -17,10 +17,13 @@ from deliberate.errors import DeliberateError
 
 DONE, OTHERWISE, BAD_INPUT = 0, 1, 2
 MOST_ROUNDS = 1_000_000
+MOST_DRAWS = 1_000_000
+LARGEST_SEED = 2**63 - 1
 
 WINDOW_HELP = """\
 usage: deliberate [FILE]
        deliberate rehearse FILE [options]
+       deliberate doubt FILE [options]
        deliberate leverage FILE [options]
        deliberate remedies FILE [options]
        deliberate check FILE
@@ -31,6 +34,7 @@ it stalls. FILE is a scenario, `something.deliberate.json`.
   deliberate [FILE]         open the window on FILE, or on what was open last
   deliberate rehearse FILE  print the rehearsal; needs no display. Its options:
                             `deliberate rehearse -h`
+  deliberate doubt FILE     draw the guesses again and again: how sure is that
   deliberate leverage FILE  say what the result hangs on, guess by guess
   deliberate remedies FILE  say which change of process would help
   deliberate check FILE     say `ok`, or where the file is wrong and how
@@ -60,6 +64,8 @@ def _run(arguments: Sequence[str]) -> int:
     match arguments:
         case ["rehearse", *rest]:
             return _on_file(_rehearse, _rehearse_parser().parse_args(rest))
+        case ["doubt", *rest]:
+            return _on_file(_doubt, _doubt_parser().parse_args(rest))
         case ["leverage", *rest]:
             return _on_file(_leverage, _leverage_parser().parse_args(rest))
         case ["remedies", *rest]:
@@ -101,6 +107,30 @@ def _rehearse(options: argparse.Namespace) -> None:
         from deliberate.rehearsal.summary import summary
 
         _print(summary(scenario, rehearsal, findings(scenario, rehearsal)))
+
+
+def _doubt(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+    from deliberate.rehearsal.doubt import DRAWS, SEED, doubt
+    from deliberate.rehearsal.doubt_report import doubt_summary, doubt_to_json
+    from deliberate.rehearsal.doubt_results import Concentration
+
+    scenario = read(options.file)
+    given = {basis: getattr(options, basis) for basis in ("guess", "stated", "observed")}
+    found = doubt(
+        scenario,
+        options.variant,
+        options.question,
+        draws=DRAWS if options.draws is None else options.draws,
+        seed=SEED if options.seed is None else options.seed,
+        concentration=Concentration(**{basis: value for basis, value in given.items() if value is not None}),
+    )
+    if options.json:
+        from msgspec import json
+
+        _print(json.encode(doubt_to_json(found)) + b"\n")
+    else:
+        _print(doubt_summary(scenario, found))
 
 
 def _leverage(options: argparse.Namespace) -> None:
@@ -207,9 +237,25 @@ def _rehearse_parser() -> argparse.ArgumentParser:
     parser.add_argument(
         "--tolerance",
         metavar="X",
-        type=_tolerance,
+        type=_above_zero,
         help="how near is agreed, on the scale (default: 1 %% of its width)",
     )
+    return parser
+
+
+def _doubt_parser() -> argparse.ArgumentParser:
+    parser = _meeting_parser(
+        "doubt", "Draw everything that is guessed many times and say what holds, and in how many draws."
+    )
+    parser.add_argument("--draws", metavar="N", type=_draws, help="how many draws (default: 2048)")
+    parser.add_argument("--seed", metavar="S", type=_seed, help="the same seed gives the same draws (default: 1)")
+    for basis, default in (("guess", 10), ("stated", 40), ("observed", 160)):
+        parser.add_argument(
+            f"--{basis}",
+            metavar="K",
+            type=_above_zero,
+            help=f"how closely points of this basis are drawn; 4 times K halves the error (default: {default})",
+        )
     return parser
 
 
@@ -235,12 +281,24 @@ def _check_parser() -> argparse.ArgumentParser:
 
 
 def _rounds(text: str) -> int:
-    if not (text.isascii() and text.isdigit() and len(text) <= 9 and int(text) <= MOST_ROUNDS):
-        raise argparse.ArgumentTypeError(f"must be a whole number from 0 to {MOST_ROUNDS:,}, is {text!r}")
+    return _whole(text, 0, MOST_ROUNDS)
+
+
+def _draws(text: str) -> int:
+    return _whole(text, 1, MOST_DRAWS)
+
+
+def _seed(text: str) -> int:
+    return _whole(text, 0, LARGEST_SEED)
+
+
+def _whole(text: str, least: int, most: int) -> int:
+    if not (text.isascii() and text.isdigit() and len(text) <= len(str(most)) and least <= int(text) <= most):
+        raise argparse.ArgumentTypeError(f"must be a whole number from {least} to {most:,}, is {text!r}")
     return int(text)
 
 
-def _tolerance(text: str) -> float:
+def _above_zero(text: str) -> float:
     try:
         value = float(text)
     except ValueError:

@@ -22,6 +22,7 @@ from deliberate.rehearsal.doubt_results import (
     Concentration,
     Doubt,
     FindingOdds,
+    Guess,
     Odds,
     VoteDoubt,
     call_of,
@@ -137,10 +138,10 @@ class _Counted:
     def doubt(self, wanted: int, seed: int, concentration: Concentration) -> Doubt:
         sketch, draws = self._sketch, self.done
         played, long_run = self._played[..., :draws], self._long_run[:, :draws]
-        ends = played[-1]
+        mean = _mean(sketch, played)
         spread = _spread(sketch, played)
         vote = self._vote()
-        about: Outcome = "vote" if vote is not None and call_of(vote.passes[-1]) in IN_DOUBT else "mean"
+        about, hangs_on = self._hangs_on(vote)
         return Doubt(
             variant=sketch.rehearsal.variant,
             question=sketch.rehearsal.question,
@@ -150,6 +151,8 @@ class _Counted:
             concentration=concentration,
             beliefs=_bands(played),
             long_run=_bands(long_run),
+            mean=_bands(mean),
+            mean_in_long_run=_bands(_mean(sketch, long_run)),
             spread=_bands(spread),
             spread_in_long_run=_bands(_spread(sketch, long_run)),
             settles=Odds.of(int(self._settles[:draws].sum()), draws),
@@ -157,9 +160,9 @@ class _Counted:
             tolerance=sketch.rehearsal.tolerance,
             vote=vote,
             findings=self._finding_odds(),
-            hangs_on=self._guesses.weightiest(about),
+            hangs_on=hangs_on,
             hangs_about=about,
-            says=self._says(vote, ends),
+            says=self._says(vote, _bands(mean[-1])),
             notes=tuple(self._notes(wanted)),
         )
 
@@ -175,6 +178,14 @@ class _Counted:
             quorum_met=self._sketch.electorate.quorum_met,
         )
 
+    def _hangs_on(self, vote: VoteDoubt | None) -> tuple[Outcome, tuple[Guess, ...]]:
+        """About the vote while that is in doubt and some guess stands out; otherwise about the mean view."""
+        if vote is not None and call_of(vote.passes[-1]) in IN_DOUBT:
+            found = self._guesses.weightiest("vote")
+            if found:
+                return "vote", found
+        return "mean", self._guesses.weightiest("mean")
+
     def _finding_odds(self) -> tuple[FindingOdds, ...]:
         odds = []
         for finding, check, holds in zip(self._told, self._checks, self._holds, strict=True):
@@ -184,13 +195,13 @@ class _Counted:
                 odds.append(FindingOdds(finding, None if check is None else Odds.of(holds, self.done), False))
         return tuple(odds)
 
-    def _says(self, vote: VoteDoubt | None, ends: Floats) -> str:
-        if vote is not None and len(self._sketch.voters):
-            return says_vote(vote.passes[-1], self.done, vote.quorum_met)
-        here = ends[self._sketch.present]
-        if not len(here):
+    def _says(self, vote: VoteDoubt | None, mean: Floats) -> str:
+        sketch = self._sketch
+        if not sketch.present.any():
             return "Nobody is present."
-        return says_mean(self._sketch, _bands(here.mean(axis=0)))
+        if vote is not None and len(sketch.voters):
+            return says_vote(vote.passes[-1], self.done, vote.quorum_met)
+        return says_mean(sketch, mean)
 
     def _notes(self, wanted: int) -> Sequence[str]:
         sketch, meeting, draws = self._sketch, self._meeting, self.done
@@ -219,6 +230,14 @@ def _checks(meeting: GuessedMeeting, told: Sequence[Finding]) -> list[Check | No
         place = sum(other.kind == finding.kind for other in told[:at])
         checks.append(None if by_structure(meeting.sketch, finding) else check_of(meeting, finding, place))
     return checks
+
+
+def _mean(sketch: Sketch, beliefs: Floats) -> Floats:
+    """Mean of (..., n, d) beliefs over those present; of all where nobody is."""
+    counted = sketch.present if sketch.present.any() else ~sketch.present
+    if not len(counted):
+        return np.zeros((*beliefs.shape[:-2], beliefs.shape[-1]))
+    return beliefs[..., counted, :].mean(axis=-2)
 
 
 def _spread(sketch: Sketch, beliefs: Floats) -> Floats:

@@ -116,7 +116,8 @@ class Guess:
 class Doubt:
     """Everything drawn: `draws` times, from `seed`, rows with `concentration`.
 
-    spread and what is said about it are those of the people who take part in the talk. settles: there is a limit (no
+    mean is the mean view of those present; spread, and what is said about it, is that of the people who take part in
+    the talk. settles: there is a limit (no
     swing). agrees: the spread is within `tolerance` at the plan's end. The long run is the average over a swing where
     there is one. hangs_on: at most three guesses, the weightiest first, about the vote or about the mean view of
     those present at the plan's end (`hangs_about`). says: the vote, or the mean view where there is no vote.
@@ -130,6 +131,8 @@ class Doubt:
     concentration: Concentration
     beliefs: Floats  # (levels, rounds + 1, people)
     long_run: Floats  # (levels, people)
+    mean: Floats  # (levels, rounds + 1)
+    mean_in_long_run: Floats  # (levels,)
     spread: Floats  # (levels, rounds + 1)
     spread_in_long_run: Floats  # (levels,)
     settles: Odds

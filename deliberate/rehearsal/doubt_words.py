@@ -5,7 +5,7 @@ from __future__ import annotations
 from deliberate.rehearsal.doubt_results import Odds, call_of
 from deliberate.rehearsal.findings.sketch import Sketch
 from deliberate.rehearsal.results import Floats
-from deliberate.rehearsal.words import amount, sentence
+from deliberate.rehearsal.words import amount
 
 _CALLS = {
     "too-close": "too close to call",
@@ -44,8 +44,3 @@ def says_mean(sketch: Sketch, bands: Floats) -> str:
         f"The mean view at the plan's end lies between {views[0]} and {views[2]} in 8 of 10 draws, half of them"
         f" below {views[1]}."
     )
-
-
-def says_agrees(sketch: Sketch, agrees: Odds, draws: int) -> str:
-    """Whether views are together at the plan's end."""
-    return sentence(f"within {sketch.tolerance} of each other at the plan's end in {in_draws(agrees, draws)}")

@@ -89,7 +89,13 @@ def wrapped(texts: Iterable[str]) -> str:
 
 
 def wrap(text: str, before: str = "") -> str:
-    """`text` in lines of at most COLUMNS, with `before` in front of the first and as much room before the others."""
-    return textwrap.fill(
-        text, COLUMNS, initial_indent=before, subsequent_indent=" " * len(before), break_on_hyphens=False
+    """`text` in lines of at most COLUMNS, with `before` in front of the first and as much room before the others; a
+    figure and its % stay together."""
+    filled = textwrap.fill(
+        text.replace(" %", "\N{NO-BREAK SPACE}%"),
+        COLUMNS,
+        initial_indent=before,
+        subsequent_indent=" " * len(before),
+        break_on_hyphens=False,
     )
+    return filled.replace("\N{NO-BREAK SPACE}%", " %")
