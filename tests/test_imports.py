@@ -33,7 +33,7 @@ def test_the_package_loads_without_qt_and_networkx() -> None:
     assert not {"PySide6", "shiboken6", "pyqtgraph", "networkx"} & loaded_by("import deliberate")
 
 
-@pytest.mark.parametrize("command", ["rehearse", "check"])
+@pytest.mark.parametrize("command", ["rehearse", "check", "leverage", "remedies"])
 def test_commands_without_a_screen_load_neither_qt_nor_networkx(command: str) -> None:
     demo = min((CHECKOUT / "scenarios").glob("*.deliberate.json"))
     loaded = loaded_by(

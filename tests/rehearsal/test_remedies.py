@@ -301,8 +301,8 @@ def test_it_can_be_watched_and_stopped():
     seen: list[tuple[int, int]] = []
     whole = remedies(CIRCLES, None, None, "less-spread", progress=lambda done, of: seen.append((done, of)))
     assert [done for done, _ in seen] == list(range(seen[0][1] + 1))
-    stops = iter([False, False, True])
-    part = remedies(CIRCLES, None, None, "less-spread", stopped=lambda: next(stops))
+    looks = iter([False] * 4 + [True] * 2)
+    part = remedies(CIRCLES, None, None, "less-spread", stopped=lambda: next(looks))
     assert len(part) < len(whole)
 
 

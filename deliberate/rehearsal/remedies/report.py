@@ -43,7 +43,7 @@ def _told(aim: Aim, remedies: Sequence[Remedy], otherwise: str) -> str:
 
 
 def remedies_to_json(scenario: Scenario, variant: str | None, question: str | None, found: Found) -> dict[str, Any]:
-    """The same at full precision: plain dicts, lists, text and finite numbers."""
+    """The same at full precision: plain dicts, lists, tuples, text and finite numbers."""
     return {
         "format": "deliberate-remedies",
         "version": 1,

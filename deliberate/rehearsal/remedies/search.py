@@ -101,7 +101,7 @@ class _Search:
             if stopped():
                 break
             progress(done, len(waiting))
-            remedy = self._tried(aim, suggestion)
+            remedy = self._tried(aim, suggestion, stopped)
             kind = _kind(suggestion)
             if remedy is not None and _better(remedy, found.get(kind)):
                 found[kind] = remedy
@@ -109,10 +109,12 @@ class _Search:
             progress(len(waiting), len(waiting))
         return tuple(sorted(found.values(), key=lambda one: -one.worth)[:TOLD])
 
-    def _tried(self, aim: Aim, suggestion: Suggestion) -> Remedy | None:
+    def _tried(self, aim: Aim, suggestion: Suggestion, stopped: Stopped) -> Remedy | None:
         try:
             changed = apply(self.scenario, self.variant, suggestion)
         except DeliberateError:  # no room in a row, or a table that nobody can sit at
+            return None
+        if stopped():  # in a large meeting making the variant takes as long as rehearsing it
             return None
         place = variant_index(self.scenario, self.variant)
         after = figures(sketch_for(changed, changed.variants[place + 1].name, self.question))
