@@ -2,7 +2,9 @@
 
 The slowest mode of the shares T (its leading right eigenvector after the constant one) is nearly constant on such
 parts. People are put in its order and cut where least influence flows across for what either side has: a sweep
-over Cheeger cuts (Fiedler 1973; Jerrum and Sinclair 1989). A part that is slow inside is cut again.
+over Cheeger cuts (Fiedler 1973; Jerrum and Sinclair 1989). A part that is slow inside is cut again. So many parts
+there are, so many modes are slow, the constant one included (Simon and Ando 1961, from memory); where the last of
+them is as fast as the talk inside, as on a ring, the cuts fall anywhere and tell nothing.
 """
 
 from __future__ import annotations
@@ -22,6 +24,7 @@ STEPS = 64
 MOST_PARTS = 6
 SMALLEST_PART = 2
 TIMES_SLOWER = 3.0  # with each other than inside
+TIMES_SLOWER_ALL = 1.5  # the fastest of the modes across than inside
 REAL = 1e-6
 
 Matrix = Floats | csr_array
@@ -46,24 +49,27 @@ def parting(shares: Matrix, influence: Floats) -> Parting | None:
         return None
     flows = _flows(shares, influence)
     whole = np.arange(people)
-    rate, mode = _slowest(shares)
+    rates, mode = _slowest(shares)
     if mode is None:
         return None
-    across = _halving(rate)
+    across = _halving(rates[0])
     parts, waiting = [], _cut(whole, mode, flows, influence)
     inside = 0.0
     while waiting:
         part = waiting.pop()
-        own_rate, mode = _slowest(_by_itself(shares, part))
-        if _halving(own_rate) * TIMES_SLOWER <= across:
+        alone = _by_itself(shares, part)
+        own_rates, mode = _slowest(alone)
+        if _halving(own_rates[0]) * TIMES_SLOWER <= across:
             parts.append(part)
-            inside = max(inside, _halving(own_rate))
+            inside = max(inside, _halving(_modulus(alone)))
             continue
         cut = _cut(part, mode, flows, influence) if mode is not None else []
         if not cut or len(parts) + len(waiting) + len(cut) > MOST_PARTS:
             return None
         waiting += cut
-    if len(parts) < 2:
+    if len(parts) < 2 or inside * TIMES_SLOWER > across:
+        return None
+    if inside * TIMES_SLOWER_ALL > _halving(rates[len(parts) - 2]):
         return None
     return Parting(tuple(sorted(parts, key=lambda part: part[0])), across, inside)
 
@@ -75,34 +81,53 @@ def _halving(rate: float) -> float:
     return math.inf if rate >= 1 else math.log(0.5) / math.log(rate)
 
 
-def _slowest(shares: Matrix) -> tuple[float, Floats | None]:
-    """The leading eigenvalue after 1 and its mode; no mode where it is not a positive real number.
+def _slowest(shares: Matrix) -> tuple[Floats, Floats | None]:
+    """The leading eigenvalues after 1 by their real parts, and the mode of the first; no mode where that is not a
+    positive real number.
 
     Subspace iteration with the lazy map (I + T)/2, in which swings die out, then Rayleigh-Ritz.
     """
-    people = shares.shape[0]
-    if people == 1:
-        return 0.0, None
-    size = min(MODES, people)
-    space = np.random.default_rng(0).standard_normal((people, size))
-    space[:, 0] = 1.0
-    if people <= FULL_PEOPLE:
-        full = shares if isinstance(shares, np.ndarray) else shares.toarray()
-        lazy = (full + np.eye(people)) / 2
-        for _ in range(SQUARINGS):
-            lazy = lazy @ lazy
-        space = np.linalg.qr(lazy @ np.linalg.qr(lazy @ space)[0])[0]
-    else:
-        for step in range(STEPS):
-            space = (space + shares @ space) / 2
-            if step % 8 == 7:
-                space = np.linalg.qr(space)[0]
-    values, vectors = np.linalg.eig(space.T @ (shares @ space))
+    if shares.shape[0] == 1:
+        return np.zeros(1), None
+    space = _subspace(shares, lazy=True)
+    values, vectors = np.linalg.eig(space.T @ _centred(shares @ space))
     order = np.argsort(-values.real)
-    second = values[order[1]]
+    second = values[order[0]]
     if abs(second.imag) > REAL * abs(second) or second.real <= 0:
-        return float(abs(second)), None
-    return float(min(second.real, 1.0)), space @ vectors[:, order[1]].real
+        return np.array([abs(second)]), None
+    return np.minimum(values[order].real, 1.0), space @ vectors[:, order[0]].real
+
+
+def _modulus(shares: Matrix) -> float:
+    """The second-largest modulus of the eigenvalues, swings included."""
+    if shares.shape[0] == 1:
+        return 0.0
+    space = _subspace(shares, lazy=False)
+    return float(np.abs(np.linalg.eigvals(space.T @ _centred(shares @ space))).max())
+
+
+def _centred(modes: Floats) -> Floats:
+    """Modes (n, k) without their constant part, so that the eigenvalue 1 becomes 0 and the others stay."""
+    return modes - modes.mean(axis=0)
+
+
+def _subspace(shares: Matrix, lazy: bool) -> Floats:
+    """(n, k) an orthonormal basis near the leading modes after the constant one, of the shares or of the lazy map."""
+    people = shares.shape[0]
+    space = _centred(np.random.default_rng(0).standard_normal((people, min(MODES, people - 1))))
+    if people <= FULL_PEOPLE:
+        step = shares if isinstance(shares, np.ndarray) else shares.toarray()
+        power = _centred((step + np.eye(people)) / 2 if lazy else step)
+        for _ in range(SQUARINGS):
+            power = power @ power
+            power /= max(np.abs(power).max(), np.finfo(float).tiny)
+        return np.linalg.qr(power @ np.linalg.qr(power @ space)[0])[0]
+    for step in range(STEPS):
+        heard = _centred(shares @ space)
+        space = (space + heard) / 2 if lazy else heard
+        if step % 8 == 7:
+            space = np.linalg.qr(space)[0]
+    return space
 
 
 @dataclass(frozen=True, eq=False)

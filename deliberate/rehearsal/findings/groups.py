@@ -31,7 +31,8 @@ def closed_groups(sketch: Sketch) -> Iterator[Finding]:
         says=_says_closed(sketch, groups, gap if apart else None),
         why=_why_closed(sketch, groups, ends),
         people=sketch.ids(np.concatenate(groups)),
-        figures={"groups": len(groups), "gap": gap} | {f"view_{at + 1}": end for at, end in enumerate(ends[:9].tolist())},
+        figures={"groups": len(groups), "gap": gap}
+        | {f"view_{at}": end for at, end in enumerate(ends[:9].tolist(), 1)},
         groups=tuple(sketch.ids(group) for group in groups),
         suggestion=_meeting(sketch, groups),
     )

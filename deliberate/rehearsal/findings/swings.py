@@ -83,11 +83,13 @@ def _why_swing(sketch: Sketch, phases: list[Indices]) -> str:
     most = 4 if len(phases) == 2 else 3
     named = [sketch.names(phase, most) for phase in phases[:NAMED_PHASES]]
     first = named[0]
+    takes = f"take{ending(len(phases[0]))}"
     if len(phases) == 2:
-        links = f"{first} take{ending(len(phases[0]))} over only what {named[1]} held before, and the other way round"
+        links = f"{first} {takes} over only what {named[1]} held before, and the other way round"
     elif len(phases) == NAMED_PHASES:
-        takes = f"take{ending(len(phases[0]))}"
-        links = f"{first} {takes} over from {named[1]}, these from {named[2]}, and these from {first}"
+        # A part is named again by its one member, or referred back to.
+        again = [name if len(phase) == 1 else "these" for name, phase in zip(named, phases, strict=True)]
+        links = f"{first} {takes} over from {named[1]}, {again[1]} from {named[2]}, and {again[2]} from {first}"
     else:
         links = f"The {len(phases)} parts stand in a ring, and each takes over only what the next one held before"
     if sketch.variant.plan.afterwards == "repeat":
