@@ -14,7 +14,7 @@ from typing import NoReturn
 from deliberate.errors import DeliberateError
 
 FRESH = ".deliberate-{}.tmp"
-HALF_WRITTEN_SECONDS = 600  # by then nobody is still writing it
+HALF_WRITTEN_SECONDS = 3_600  # by then nobody is still writing it, even if another machine's clock is off
 
 
 def replace_file(path: str | os.PathLike[str], data: bytes, *, private: bool = False) -> None:

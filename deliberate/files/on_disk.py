@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import Literal
 
 from deliberate.errors import DeliberateError
-from deliberate.files.atomic import replace_file
+from deliberate.files.atomic import clear_half_written, replace_file
 from deliberate.files.reading import decode, read_bytes
 from deliberate.files.writing import encode
 from deliberate.scenario.checks import validate
@@ -37,6 +37,7 @@ def write_noting(scenario: Scenario, path: Path) -> OnDisk:
     """Save a scenario whole or not at all and note its file. Raises DeliberateError as `writing.write` does."""
     data = encode(validate(scenario))
     replace_file(path, data)
+    clear_half_written(path.parent)
     return OnDisk(_digest(data), _stamp(path))
 
 

@@ -248,7 +248,7 @@ class MainWindow(QMainWindow):
             QTimer.singleShot(0, self, self.files.look_at_disk)  # a question must not open in the middle of the event
 
     def dragEnterEvent(self, event: QDragEnterEvent) -> None:
-        if dropped_file(event.mimeData()) is not None:
+        if dropped_file(event.mimeData()) is not None and QApplication.activeModalWidget() is None:
             event.acceptProposedAction()
 
     def dropEvent(self, event: QDropEvent) -> None:

@@ -6,7 +6,16 @@ from dataclasses import replace
 from pathlib import Path
 
 from PySide6.QtCore import QLockFile, QMimeData, QObject
-from PySide6.QtWidgets import QApplication, QFileDialog, QMessageBox, QWidget
+from PySide6.QtWidgets import (
+    QAbstractSpinBox,
+    QApplication,
+    QFileDialog,
+    QLineEdit,
+    QMessageBox,
+    QPlainTextEdit,
+    QWidget,
+)
+from shiboken6 import isValid
 
 from deliberate import files
 from deliberate.errors import DeliberateError
@@ -140,6 +149,7 @@ class MeetingFiles(QObject):
 
     def save(self) -> bool:
         """Save to the meeting's file; ask where to when it has none. True when it is on disk."""
+        self._finish_typing()
         if self._held is None:
             return self.ask_save_as()
         if on_disk.compare(self._held.path, self._held.known) == "changed":
@@ -148,6 +158,7 @@ class MeetingFiles(QObject):
 
     def ask_save_as(self) -> bool:
         """Ask for a file and save there. True when it is on disk."""
+        self._finish_typing()
         proposed = self._session.path or self._folder() / (_file_name(self._session.scenario.title) + SUFFIX)
         chosen, _ = QFileDialog.getSaveFileName(self._window, "Save the meeting as", str(proposed), FILTER)
         return bool(chosen) and self.save_as(Path(chosen))
@@ -169,6 +180,7 @@ class MeetingFiles(QObject):
 
     def may_leave(self) -> bool:
         """Whether the meeting on screen may be left: it is saved, or she said what to do with it."""
+        self._finish_typing()
         if not self._session.modified:
             return True
         answer = self._ask_to_save()
@@ -268,6 +280,15 @@ class MeetingFiles(QObject):
             return None
 
     # Parts
+
+    def _finish_typing(self) -> None:
+        """Have what stands in a field taken up, as if she had gone elsewhere: else it would not be saved."""
+        field = self._window.focusWidget()
+        if not isinstance(field, QLineEdit | QPlainTextEdit | QAbstractSpinBox):
+            return
+        field.clearFocus()
+        if isValid(field) and field.isVisible():
+            field.setFocus()
 
     def _show(self, scenario: Scenario, held: HeldFile | None) -> None:
         self._hold(held)

@@ -73,3 +73,11 @@ def test_what_does_not_fit_is_not_saved(path: Path) -> None:
     with pytest.raises(DeliberateError):
         write_noting(replace(DEMO, title=""), path)
     assert compare(path, known) == "same"
+
+
+def test_saving_clears_what_an_earlier_crash_left_beside(path: Path) -> None:
+    left = path.with_name(".deliberate-0123456789abcdef.tmp")
+    left.touch()
+    os.utime(left, (1_000_000, 1_000_000))
+    write_noting(DEMO, path)
+    assert list(path.parent.iterdir()) == [path]

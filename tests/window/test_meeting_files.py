@@ -201,6 +201,52 @@ def test_reverting_can_be_undone(open_file: Open, path: Path) -> None:
     assert window.isWindowModified()
 
 
+def test_what_is_being_typed_is_saved_too(qtbot: QtBot, open_file: Open, path: Path) -> None:
+    window = open_file(path)
+    window.canvas.setFocus()
+    window.session.select(["amina"])
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F2)
+    field = window.focusWidget()
+    assert isinstance(field, QLineEdit)
+    qtbot.keyClicks(field, "Amina the first")
+    qtbot.keyClick(field, Qt.Key.Key_S, Qt.KeyboardModifier.ControlModifier)
+    assert files.read(path).variants[0].people[0].name == "Amina the first"
+    assert not window.isWindowModified()
+
+
+def test_what_is_being_typed_is_asked_about_when_leaving(qtbot: QtBot, open_file: Open, path: Path) -> None:
+    window = open_file(path)
+    window.canvas.setFocus()
+    window.session.select(["amina"])
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F2)
+    qtbot.keyClicks(window.focusWidget(), "Amina the first")
+    with answering("Save"):
+        window.close()
+    assert files.read(path).variants[0].people[0].name == "Amina the first"
+
+
+def test_a_field_keeps_the_focus_when_its_text_is_taken_up(qtbot: QtBot, open_file: Open, path: Path) -> None:
+    window = open_file(path)
+    title = window.sidebar.meeting.title
+    window.sidebar.tabs.setCurrentIndex(window.sidebar.pages.indexOf(window.sidebar.meeting))
+    title.setFocus()
+    title.selectAll()
+    qtbot.keyClicks(title, "Label, second reading")
+    qtbot.keyClick(title, Qt.Key.Key_S, Qt.KeyboardModifier.ControlModifier)
+    assert files.read(path).title == "Label, second reading"
+    assert title.hasFocus()
+
+
+def test_nothing_is_taken_while_a_question_is_up(open_file: Open, path: Path) -> None:
+    window = open_file(path)
+    taken: list[bool] = []
+    start(window, 61.0)
+    QTimer.singleShot(0, lambda: taken.append(drop(window, of_files(path))))
+    with answering("Cancel"):
+        window.close()
+    assert taken == [False]
+
+
 # Other programs
 
 
