@@ -38,6 +38,12 @@ def tooltip(text: str) -> str:
     return f"<span>{escape(text)}</span>"
 
 
+def explain(widget: QWidget, text: str) -> None:
+    """Say `text` in the widget's tooltip, and to a screen reader, which would otherwise read out the tooltip's tags."""
+    widget.setToolTip(tooltip(text))
+    widget.setAccessibleDescription(text)
+
+
 def elided(text: str, font: QFont, width: float) -> str:
     """`text` shortened at its end to fit into `width` pixels."""
     return QFontMetricsF(font).elidedText(text, Qt.TextElideMode.ElideRight, width)

@@ -89,3 +89,9 @@ def start(surroundings: dict[str, str]) -> Iterator[Callable[..., subprocess.Pop
     for program in started:
         program.kill()
         program.wait()
+
+
+@pytest.fixture
+def checkout() -> Path:
+    """The folder that holds scenarios/."""
+    return Path(__file__).resolve().parent.parent.parent

@@ -60,17 +60,17 @@ class ScreenReader:
         self._bus.close()
 
     def items(self) -> list[Item]:
-        """Everything, in the order in which it would be walked through. What vanishes meanwhile is left out."""
+        """All that can be seen, in the order in which it would be walked through. What vanishes meanwhile is left
+        out."""
         return list(self._under(*ROOT))
 
     def find(self, name: str, role: str = "") -> Item | None:
-        """The first item that can be seen, has this whole name, and (if given) this role."""
-        wanted = (item for item in self.items() if item.showing and item.name == name and role in ("", item.role))
-        return next(wanted, None)
+        """The first item that has this whole name and (if given) this role."""
+        return next((item for item in self._under(*ROOT) if item.name == name and role in ("", item.role)), None)
 
     def says(self, part: str) -> bool:
-        """Whether any visible item's name or description has `part` in it."""
-        return any(part in item.name or part in item.description for item in self.items() if item.showing)
+        """Whether any item's name or description has `part` in it."""
+        return any(part in item.name or part in item.description for item in self._under(*ROOT))
 
     def _under(self, program: str, path: str) -> Iterator[Item]:
         try:
@@ -79,10 +79,12 @@ class ScreenReader:
             return
         for place in children:
             try:
-                yield self._item(*place)
+                item = self._item(*place)
             except DBusErrorResponse:
                 continue
-            yield from self._under(*place)
+            if item.showing or item.role == "application":
+                yield item
+                yield from self._under(*place)
 
     def _item(self, program: str, path: str) -> Item:
         (role,) = self._ask(program, path, ACCESSIBLE, "GetRoleName")

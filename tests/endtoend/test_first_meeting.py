@@ -8,7 +8,7 @@ from pathlib import Path
 from patience import until
 
 PLACES = {"Noor": (420, 250), "Teo": (640, 250), "Ilse": (530, 450)}
-STARTS = {"Noor": 80, "Teo": 20, "Ilse": 50}
+STARTS = {"Noor": 80, "Teo": 20, "Ilse": 60}
 
 
 def test_draw_three_people_play_read_and_save(start, hands, reader, home: Path) -> None:

@@ -164,6 +164,7 @@ class Keys:
             self.listener = None
             if focus is not None and focus.kind == "person" and focus.index != listener:
                 canvas.commands.draw_arrow(scene.ids[listener], scene.ids[focus.index])
+                self._follow_selection()
         elif event.key() == Key.Key_Escape:
             self.listener = None
         else:
@@ -171,6 +172,12 @@ class Keys:
         canvas.refresh_hint()
         canvas.update()
         return True
+
+    def _follow_selection(self) -> None:
+        """Put the focus on the selected arrow, so that a number typed next means what has the focus."""
+        selected = self._canvas.picture.emphasis.arrows
+        if len(selected) == 1:
+            self.focus_on(Hit("arrow", min(selected)))
 
     def _arrow_key(self, event: QKeyEvent) -> bool:
         if event.key() not in _ARROWS or event.modifiers() & ~(Modifier.ShiftModifier | Modifier.KeypadModifier):

@@ -24,6 +24,7 @@ from deliberate.scenario.edits.points import points_of
 from deliberate.scenario.values import Arrow, Person, Scenario
 from deliberate.window.canvas import Canvas, clipboard
 from deliberate.window.canvas.editors import parse_number
+from deliberate.window.canvas.picture import Hit
 from deliberate.window.session import Session
 from deliberate.window.theme import Look
 
@@ -190,6 +191,8 @@ def test_an_arrow_by_keyboard(open_canvas: Open) -> None:
     press(canvas, Key.Key_Return)
     assert arrow_between(canvas.session.variant, "chiara", "davor") is not None
     assert canvas.session.selection.arrows == {("chiara", "davor")}
+    press(canvas, Key.Key_3, Key.Key_0, Key.Key_Return)  # the new arrow has the focus
+    assert canvas.keys.focused() == Hit("arrow", canvas.picture.scene.arrow_index["chiara", "davor"])
 
 
 def test_an_arrow_by_keyboard_can_be_left(open_canvas: Open) -> None:
