@@ -11,11 +11,13 @@ from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.sparse import csr_array
 
+from deliberate.dynamics.camps import stationary_of_camps
 from deliberate.dynamics.destination import Destination, group_numbers
 from deliberate.dynamics.elimination import stationary
-from deliberate.dynamics.krylov import gmres
+from deliberate.dynamics.krylov import gmres, leading_eigenvalue
 from deliberate.dynamics.network import Floats, Indices, sum_by
 from deliberate.dynamics.process import Leg
 from deliberate.dynamics.structure import ClosedSet, Structure, structure
@@ -27,8 +29,11 @@ FULL_PEOPLE = 3000
 # Relative accuracy aimed at, and the one below which the reader is told.
 AIM = 1e-11
 ENOUGH = 1e-9
-# Steps shorter than this are rounding.
+# Steps shorter than this are rounding; shares that a turn moves no more than this are those of the long run.
 ROUNDING = 1e-15
+STILL = 1e-14
+# Rounding beside so small a gap to 1 is more than ENOUGH.
+BLURRED = 1e-7
 # A part of the old shares is kept in every step, which makes groups that swing converge as well.
 HELD_BACK = 0.1
 STEPS = 400
@@ -118,6 +123,7 @@ class Iterated(Destination):
         within, self.exact = _influence(turn, groups, group_of)
         super().__init__(groups, group_of, within, np.flatnonzero(turn.firmness))
         self._turn = turn
+        self._slowest: float | None = None
         self._inner = None if turn.matrix is None else turn.matrix[self.passing][:, self.passing]
 
     def carry(self, views: Floats, starts: Floats) -> Floats:
@@ -160,11 +166,31 @@ class Iterated(Destination):
             after = inner(answer) + given
             step = np.abs(after - answer).max() / max(np.abs(after).max(), TINY)
             answer = after
-        if steps.arrived:
+        if steps.arrived and _fades(inner, np.ones(len(given)), lambda held: held.max(initial=0.0)).all():
             return answer
-        answer, exact = _direct(lambda x: x - inner(x), self._inner, given, transposed)
+        if self._slowest is None:  # the same forwards and backwards
+            self._slowest = abs(leading_eigenvalue(inner, len(given), KRYLOV)[0])
+        answer, exact = _direct(lambda x: x - inner(x), self._inner, given, self._slowest, transposed)
         self.exact &= exact
         return answer
+
+
+def _fades(apply: Callable[[Floats], Floats], held: Floats, size: Callable[[Floats], Floats]) -> NDArray[np.bool_]:
+    """Whether what `size` measures, 1 or so at first, comes to nothing within STEPS applications.
+
+    Where it does, short steps of an iteration mean that it has arrived. Where it does not they mean nothing: parts
+    that hear each other with 1e-14 take steps that look like rounding for ever.
+    """
+    left = np.asarray(size(held))
+    for done in range(0, STEPS, TRIAL):
+        before = left
+        for _ in range(TRIAL):
+            held = apply(held)
+        left = np.asarray(size(held))
+        pace = left / np.maximum(before, TINY)
+        if (left <= ENOUGH).all() or (left * pace ** ((STEPS - done) / TRIAL) > ENOUGH).any():
+            break
+    return left <= ENOUGH
 
 
 class _Steps:
@@ -205,26 +231,43 @@ def _influence(turn: LargeTurn, groups: tuple[ClosedSet, ...], group_of: Indices
         step = (np.abs(after - share) / after).max()
         share = after
     within[settled] = share
-    if steps.arrived:
-        return within, True
-    return _finished(turn, groups, number, settled, within)
-
-
-def _finished(
-    turn: LargeTurn, groups: tuple[ClosedSet, ...], number: Indices, settled: Indices, within: Floats
-) -> tuple[Floats, bool]:
-    """Does the groups again in which the iteration was too slow."""
+    mixed = _groups_that_mix(turn, number, settled, len(groups))
     moved = np.abs(turn.give_back(within)[0][settled] - within[settled]) / within[settled]
-    slow = np.unique(number[moved > 1e-14])
+    mixed[number[moved > STILL]] = False
     exact = True
-    for at in slow:
-        members = groups[at].members
-        if turn.matrix is not None and len(members) <= FULL_PEOPLE:
-            within[members] = stationary(turn.matrix[members][:, members].toarray())
-        else:
-            within[members], well = _influence_by_krylov(turn, members)
-            exact &= well
+    for at in np.flatnonzero(~mixed):
+        within[groups[at].members], well = _influence_of_slow(turn, groups[at].members, within)
+        exact &= well
     return within, exact
+
+
+def _groups_that_mix(turn: LargeTurn, number: Indices, settled: Indices, groups: int) -> NDArray[np.bool_]:
+    """(groups,) True where any beliefs come together quickly, if a part of the old ones is kept."""
+    nothing = np.zeros(turn.people)
+
+    def lazily(beliefs: Floats) -> Floats:
+        whole = nothing.copy()
+        whole[settled] = beliefs
+        return HELD_BACK * beliefs + (1 - HELD_BACK) * turn.apply(whole, nothing)[settled]
+
+    def spread(beliefs: Floats) -> Floats:
+        high, low = np.full(groups, -np.inf), np.full(groups, np.inf)
+        np.maximum.at(high, number, beliefs)
+        np.minimum.at(low, number, beliefs)
+        return high - low
+
+    return _fades(lazily, np.random.default_rng(0).random(len(settled)), spread)
+
+
+def _influence_of_slow(turn: LargeTurn, members: Indices, within: Floats) -> tuple[Floats, bool]:
+    """(k,) the shares of one closed group in which iteration is too slow, and whether they are exact."""
+    if turn.matrix is None:
+        return _influence_by_krylov(turn, members)
+    matrix = turn.matrix if len(members) == turn.people else turn.matrix[members][:, members]
+    if len(members) <= FULL_PEOPLE:
+        return stationary(matrix.toarray()), True
+    share = stationary_of_camps(matrix, within[members])
+    return (share, True) if share is not None else _influence_by_krylov(turn, members)
 
 
 def _influence_by_krylov(turn: LargeTurn, members: Indices) -> tuple[Floats, bool]:
@@ -240,23 +283,27 @@ def _influence_by_krylov(turn: LargeTurn, members: Indices) -> tuple[Floats, boo
     whole[members[0]] = 1.0
     given = turn.give_back(whole)[0][rest]
     inner = None if turn.matrix is None else turn.matrix[rest][:, rest]
-    share, exact = _direct(lambda x: x - back(x), inner, given, transposed=True)
+    slowest, _ = leading_eigenvalue(back, len(rest), KRYLOV)
+    share, exact = _direct(lambda x: x - back(x), inner, given, abs(slowest), transposed=True)
     share = np.concatenate([[1.0], np.maximum(share, 0.0)])
     return share / share.sum(), exact
 
 
 def _direct(
-    missing: Callable[[Floats], Floats], inner: csr_array | None, given: Floats, transposed: bool
+    missing: Callable[[Floats], Floats], inner: csr_array | None, given: Floats, slowest: float, transposed: bool
 ) -> tuple[Floats, bool]:
     """Solves missing(x) = given with GMRES, or by factors where that does not get there and they are small; and
     whether the answer can be trusted to 1e-9.
 
     inner: the matrix N with missing(x) = x - N x (x - x N when `transposed`), where there is one.
+    slowest: its largest eigenvalue, about.
     """
     size = len(given)
     thin = inner is not None and inner.nnz <= THIN * size
     restarts = THIN_RESTARTS if thin else RESTARTS
     answer, last = _refined(lambda wanted: gmres(missing, wanted, KRYLOV, restarts), missing, given)
+    if 1 - slowest < BLURRED:  # then corrections do not show how far off the answer is
+        return answer, False
     if last <= AIM or not thin:
         return answer, last <= ENOUGH
     from scipy.sparse.linalg import splu
