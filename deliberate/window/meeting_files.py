@@ -11,7 +11,6 @@ from PySide6.QtWidgets import (
     QApplication,
     QFileDialog,
     QLineEdit,
-    QMessageBox,
     QPlainTextEdit,
     QWidget,
 )
@@ -33,6 +32,7 @@ from deliberate.window.session import Session
 SUFFIX = ".deliberate.json"
 FILTER = f"Meetings (*{SUFFIX});;All files (*)"
 
+SAVE, DISCARD = "&Save", "&Discard"
 AS_COPY = "&Open as a copy"
 KEEP_MINE, LOAD_THEIRS, OTHER_NAME = "&Keep mine", "&Load theirs", "&Save mine under another name …"
 REPLACE = "&Replace it"
@@ -183,10 +183,9 @@ class MeetingFiles(QObject):
         self._finish_typing()
         if not self._session.modified:
             return True
-        answer = self._ask_to_save()
-        if answer == QMessageBox.StandardButton.Save:
-            return self.save()
-        return answer == QMessageBox.StandardButton.Discard
+        what = f"“{self._session.scenario.title}” has changes that are not saved."
+        answer = ask(self._window, "Save the changes?", what, [SAVE, DISCARD])
+        return self.save() if answer == SAVE else answer == DISCARD
 
     def close(self) -> None:
         """The window closes: free the file and remove the copy of unsaved work."""
@@ -243,10 +242,9 @@ class MeetingFiles(QObject):
     def offer_leftovers(self) -> None:
         """Offer the unsaved work of windows that ended without saving, if there is any."""
         leftovers = self._recovery.leftovers()
-        wanted = tuple(leftover for leftover in leftovers if not _saved_after_all(leftover))
-        if not wanted:
+        if not leftovers:
             return
-        dialog = RecoveryDialog(wanted, self._window)
+        dialog = RecoveryDialog(leftovers, self._window)
         dialog.chosen.connect(self.bring_back)
         dialog.open()
 
@@ -335,20 +333,6 @@ class MeetingFiles(QObject):
         self._session.said.emit(f"Saved as {path.name}")
         return True
 
-    def _ask_to_save(self) -> QMessageBox.StandardButton:
-        box = QMessageBox(self._window)
-        box.setIcon(QMessageBox.Icon.Question)
-        box.setWindowTitle("Save the changes?")
-        box.setTextFormat(box.textFormat().PlainText)
-        box.setText(f"“{self._session.scenario.title}” has changes that are not saved.")
-        box.setStandardButtons(
-            QMessageBox.StandardButton.Save | QMessageBox.StandardButton.Discard | QMessageBox.StandardButton.Cancel
-        )
-        box.setDefaultButton(QMessageBox.StandardButton.Save)
-        answer = QMessageBox.StandardButton(box.exec())
-        box.deleteLater()
-        return answer
-
     def _may_replace(self, path: Path) -> bool:
         what = f"There is already a file {path.name} in {path.parent}."
         return ask(self._window, f"Replace “{path.name}”?", what, [REPLACE]) == REPLACE
@@ -364,19 +348,6 @@ def dropped_file(data: QMimeData) -> Path | None:
     """The one file that is dragged, or None where it is something else or several."""
     urls = data.urls() if data.hasUrls() else []
     return Path(urls[0].toLocalFile()) if len(urls) == 1 and urls[0].isLocalFile() else None
-
-
-def _saved_after_all(leftover: Leftover) -> bool:
-    """Remove a copy whose content is what its file holds: the crash came after saving."""
-    if leftover.head is None or leftover.head.path is None:
-        return False
-    try:
-        same = copies.bring_back(leftover.path).scenario == files.read(leftover.head.path)
-    except DeliberateError:
-        return False
-    if same:
-        leftover.discard()
-    return same
 
 
 def _same_place(one: Path, other: Path) -> bool:

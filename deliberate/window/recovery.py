@@ -12,6 +12,7 @@ from pathlib import Path
 from PySide6.QtCore import QLockFile, QObject, QThreadPool, QTimer, Signal
 
 from deliberate.errors import DeliberateError
+from deliberate.files import read
 from deliberate.files import recovery as copies
 from deliberate.files.atomic import clear_half_written
 from deliberate.files.recovery import Copy, Head
@@ -119,10 +120,10 @@ class Recovery(QObject):
         return any(path != self._path for path in copies.copies(self._folder))
 
     def leftovers(self) -> tuple[Leftover, ...]:
-        """The copies of windows that are gone, the newest first, each locked for the caller."""
+        """The unsaved work of windows that are gone, the newest first, each copy locked for the caller."""
         clear_half_written(self._folder)
         found = (self._leftover(path) for path in copies.copies(self._folder) if path != self._path)
-        return tuple(leftover for leftover in found if leftover is not None)
+        return tuple(leftover for leftover in found if leftover is not None and not _saved_after_all(leftover))
 
     def _leftover(self, path: Path) -> Leftover | None:
         lock = locked(_lock_path(path))
@@ -177,6 +178,19 @@ class Recovery(QObject):
         if why and not self._failing:
             self.failed.emit(why)
         self._failing = bool(why)
+
+
+def _saved_after_all(leftover: Leftover) -> bool:
+    """Remove a copy whose content is what its file holds: the crash came after saving."""
+    if leftover.head is None or leftover.head.path is None:
+        return False
+    try:
+        same = copies.bring_back(leftover.path).scenario == read(leftover.head.path)
+    except DeliberateError:
+        return False
+    if same:
+        leftover.discard()
+    return same
 
 
 def _lock_path(copy: Path) -> Path:
