@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 
-from msgspec import UNSET
 from msgspec.structs import replace
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QMenu, QVBoxLayout, QWidget
@@ -81,7 +80,7 @@ class AgreementTests(QWidget):
         if [test.test for test in tests] != [row.kind for row in self.rows]:
             self._rebuild([test.test for test in tests])
         for row, test in zip(self.rows, tests, strict=True):
-            row.read(test)
+            row.read(test, self._session.question.id)
         self.empty.setVisible(not tests)
 
     def _rebuild(self, kinds: list[str]) -> None:
@@ -170,8 +169,8 @@ class TestRow(QWidget):
             self.fields[field] = number
         return line
 
-    def read(self, test: AgreementTest) -> None:
-        """Show the numbers of `test`."""
+    def read(self, test: AgreementTest, question: str) -> None:
+        """Show the numbers of `test`, which belongs to `question`."""
         for field, line in self.fields.items():
             value = getattr(test, field)
-            line.show_text("" if value is UNSET else share_text(value) if field == "at_least" else plain(value))
+            line.show_text(share_text(value) if field == "at_least" else plain(value), question)

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 
 from PySide6.QtCore import QEvent, QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QFocusEvent, QKeyEvent, QWheelEvent
-from PySide6.QtWidgets import QComboBox, QFrame, QLineEdit, QPlainTextEdit, QSizePolicy, QWidget
+from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit, QSizePolicy, QWidget
 
 from deliberate.window.text import tooltip
 
@@ -31,6 +31,7 @@ class LineField(QLineEdit):
     def __init__(self, name: str, parent: QWidget, *, hint: str = "", meaning: str = "") -> None:
         super().__init__(parent)
         self._kept = ""
+        self._subject: object = None
         self.setAccessibleName(name)
         self.setPlaceholderText(hint)
         if meaning:
@@ -38,10 +39,11 @@ class LineField(QLineEdit):
             self.setAccessibleDescription(meaning)
         self.editingFinished.connect(self.hand_over)
 
-    def show_text(self, text: str) -> None:
-        """The text that holds now; what is being typed is left alone."""
-        self._kept = text
-        if not (self.hasFocus() and self.isModified()) and text != self.text():
+    def show_text(self, text: str, subject: object = None) -> None:
+        """The text that holds now for `subject`. What is being typed for the same one is left alone."""
+        typing = self.hasFocus() and self.isModified() and subject == self._subject
+        self._kept, self._subject = text, subject
+        if not typing and text != self.text():
             self.setText(text)
             self.setCursorPosition(0)
 
@@ -87,7 +89,9 @@ class TextField(QPlainTextEdit):
 
     def __init__(self, name: str, parent: QWidget, *, lines: int, notes: bool = False, hint: str = "") -> None:
         super().__init__(parent)
-        self._kept, self._notes, self._lines = "", notes, lines
+        self._kept = ""
+        self._subject: object = None
+        self._notes, self._lines = notes, lines
         self.setAccessibleName(name)
         self.setPlaceholderText(hint)
         self.setTabChangesFocus(True)
@@ -102,10 +106,11 @@ class TextField(QPlainTextEdit):
         if notes:
             self.textChanged.connect(self._typing)
 
-    def show_text(self, text: str) -> None:
-        """The text that holds now; what is being typed is left alone."""
-        self._kept = text
-        if not (self.hasFocus() and self.document().isModified()) and text != self.toPlainText():
+    def show_text(self, text: str, subject: object = None) -> None:
+        """The text that holds now for `subject`. What is being typed for the same one is left alone."""
+        typing = self.hasFocus() and self.document().isModified() and subject == self._subject
+        self._kept, self._subject = text, subject
+        if not typing and text != self.toPlainText():
             self.setPlainText(text)
 
     def hand_over(self) -> None:
@@ -184,8 +189,3 @@ class Choice(QComboBox):
 
     def wheelEvent(self, event: QWheelEvent) -> None:
         event.ignore()
-
-
-def quiet(field: QPlainTextEdit) -> None:
-    """No frame of Qt's own: the style sheet draws the field."""
-    field.setFrameShape(QFrame.Shape.NoFrame)

@@ -44,7 +44,7 @@ class MeetingPage(Page):
         self.title.show_text(scenario.title)
         self.notes.show_text(scenario.notes)
         self.variant_heading.setText(f"Notes on “{variant.name}”")
-        self.variant_notes.show_text(variant.notes)
+        self.variant_notes.show_text(variant.notes, variant.name)
 
     def _set_notes(self, text: str) -> None:
         self._note("Change the notes", lambda scenario: edits.set_notes(scenario, text))

@@ -70,8 +70,8 @@ class PointsTable(QWidget):
         self.table.let_go.connect(self.delegate.finish)
         self.table.customContextMenuRequested.connect(self._open_menu)
         self.make_room.toggled.connect(self._set_make_room)
-        self.add.returnPressed.connect(self._hear)
-        # Queued, so that it comes after the completer has put the name into the field.
+        # Queued: Return in the list ends the field too, before the completer has put the name into it.
+        self.add.returnPressed.connect(self._hear, Qt.ConnectionType.QueuedConnection)
         self.completer.activated.connect(self._hear, Qt.ConnectionType.QueuedConnection)
         session.player.moved.connect(self._follow_round)
         session.rehearsal_changed.connect(self._follow_round)
@@ -124,14 +124,14 @@ class PointsTable(QWidget):
         typed = " ".join(self.add.text().split())
         if not typed:
             return
-        try_names = shown_names(self._session.variant)
-        exact = [one for one, name in try_names.items() if name.casefold() == typed.casefold()]
-        found = exact or [one for one, name in try_names.items() if name.casefold().startswith(typed.casefold())]
+        known = shown_names(self._session.variant)
+        exact = [one for one, name in known.items() if name.casefold() == typed.casefold()]
+        found = exact or [one for one, name in known.items() if name.casefold().startswith(typed.casefold())]
         if len(found) != 1:
             how_many = "nobody here" if not found else "more than one person"
             self._session.refused.emit(f"{how_many} is called “{typed}”: choose a name from the list")
         elif self.model.hears(found[0]):
-            self._session.refused.emit(f"{try_names[found[0]]} counts already: change the points in the table")
+            self._session.refused.emit(f"{known[found[0]]} counts already: change the points in the table")
         elif self.model.hear(found[0]):
             self.add.clear()
 

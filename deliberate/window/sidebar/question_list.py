@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QSize, Qt
+from PySide6.QtCore import QSize, Qt, Signal
 from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QAbstractItemView, QHBoxLayout, QListWidget, QListWidgetItem, QVBoxLayout, QWidget
 
@@ -18,6 +18,8 @@ NEW_TEXT = "What else is to be decided?"
 
 class QuestionList(QWidget):
     """The row that is current is the question on screen."""
+
+    added = Signal()
 
     def __init__(self, session: Session, parent: QWidget) -> None:
         super().__init__(parent)
@@ -94,6 +96,7 @@ class QuestionList(QWidget):
         )
         if added:
             session.show_question(new)
+            self.added.emit()
 
     def _move(self, by: int) -> None:
         question, to = self._session.question.id, self._here() + by

@@ -55,6 +55,7 @@ class QuestionPage(Page):
         self.text.given.connect(lambda text: self._change("Change what is asked", text=text))
         self.column.addWidget(self.text)
         self.column.addWidget(self.questions)
+        self.questions.added.connect(self._ask_for_text)
         self._add_scale()
         self._add_vote()
         self.add_heading("Hearing")
@@ -121,19 +122,23 @@ class QuestionPage(Page):
     def read(self) -> None:
         question = self.session.question
         self.questions.read()
-        self.text.show_text(question.text)
-        self.low.show_text(plain(question.low))
-        self.high.show_text(plain(question.high))
-        self.low_label.show_text(question.low_label)
-        self.high_label.show_text(question.high_label)
-        self.unit.show_text(question.unit)
+        self.text.show_text(question.text, question.id)
+        self.low.show_text(plain(question.low), question.id)
+        self.high.show_text(plain(question.high), question.id)
+        self.low_label.show_text(question.low_label, question.id)
+        self.high_label.show_text(question.high_label, question.id)
+        self.unit.show_text(question.unit, question.id)
         for mark in (self.pass_mark, self.objection, self.hearing):
             mark.read(question)
-        self.undecided.show_text(plain(question.undecided))
+        self.undecided.show_text(plain(question.undecided), question.id)
         self.undecided.setEnabled(question.pass_mark is not None)
         self.undecided_label.setEnabled(question.pass_mark is not None)
         self.vote_words.setText(vote_in_words(question))
         self.tests.read()
+
+    def _ask_for_text(self) -> None:
+        self.text.setFocus()
+        self.text.selectAll()
 
     # Edits
 
@@ -151,7 +156,7 @@ class QuestionPage(Page):
             lambda _: {"undecided": typed_number(text, "the undecided band") if text.strip() else 0.0},
         )
 
-    def _set_scale(self, low: str = "", high: str = "") -> None:
+    def _set_scale(self, low: str | None = None, high: str | None = None) -> None:
         question = self.session.question
         numbers = "rescale" if self.along.isChecked() else "keep"
         self.session.edit(
@@ -159,8 +164,8 @@ class QuestionPage(Page):
             lambda scenario: edits.set_scale(
                 scenario,
                 question.id,
-                typed_number(low, "the low end") if low else question.low,
-                typed_number(high, "the high end") if high else question.high,
+                question.low if low is None else typed_number(low, "the low end"),
+                question.high if high is None else typed_number(high, "the high end"),
                 numbers=numbers,
             ),
         )
@@ -184,7 +189,7 @@ class MarkRow:
         value = getattr(question, self._mark.field)
         self.box.setChecked(value is not None)
         self.field.setEnabled(value is not None)
-        self.field.show_text("" if value is None else plain(value))
+        self.field.show_text("" if value is None else plain(value), question.id)
 
     def _switch(self, wanted: bool) -> None:
         mark = self._mark

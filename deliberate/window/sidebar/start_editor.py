@@ -112,7 +112,8 @@ class StartEditor(QWidget):
     def _show(self, field: LineField, column: Column, people: Sequence[Person]) -> None:
         question = self._session.question
         texts = {typed_over(column, Row(person, 0.0, 0.0), question) for person in people}
-        field.show_text(texts.pop() if len(texts) == 1 else "")
+        subject = (self._session.variant.name, question.id, [person.id for person in people])
+        field.show_text(texts.pop() if len(texts) == 1 else "", subject)
         field.setPlaceholderText(SEVERAL if texts else "")
 
     def _value(self) -> float:

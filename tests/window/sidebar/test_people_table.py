@@ -90,7 +90,7 @@ def test_the_model_is_sound_while_the_meeting_changes(qtbot: QtBot, open_sidebar
 
 def test_names_have_room_and_numbers_are_whole(qtbot: QtBot, open_sidebar: Open) -> None:
     for width in (250, 290, 420):
-        sidebar, session = open_sidebar(width=width)
+        sidebar, _ = open_sidebar(width=width)
         table = sidebar.people.table
         letter = table.fontMetrics().horizontalAdvance("n")
         assert table.columnWidth(Column.NAME) >= 10 * letter
