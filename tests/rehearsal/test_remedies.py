@@ -31,7 +31,7 @@ from deliberate.rehearsal.results import (
 )
 from deliberate.rehearsal.suggestions import apply
 from deliberate.scenario import edits
-from deliberate.scenario.values import Plan, Scenario, Stage
+from deliberate.scenario.values import Person, Plan, Scenario, Stage, Variant
 
 NOW = "As it stands"
 CIRCLES = meeting(
@@ -348,3 +348,10 @@ def test_nobody_present():
     absent = edits.set_presence(CIRCLES, IDS[:4], False, variant=NOW)
     assert all(remedies(absent, None, None, aim) == () for aim in AIMS)
     assert all(remedies(meeting([], []), None, None, aim) == () for aim in AIMS)
+
+
+def test_crowds_are_refused_in_words():
+    people = tuple(Person(f"p{at}") for at in range(1_001))
+    crowd = edits.replace_variant(CIRCLES, NOW, Variant(NOW, people))
+    with pytest.raises(DeliberateError, match="among up to 1,000 people, there are 1,001"):
+        remedies(crowd, None, None, "sooner")

@@ -24,7 +24,7 @@ IN_WORDS: dict[Aim, str] = {
 ALL_OR_NOTHING: tuple[Aim, ...] = ("common-view", "end-swing")
 FEW_VOICES = 0.5  # of those present: fewer equal voices than this ask for more
 WIDE = 0.1  # of the scale: a larger spread at the plan's end asks for less
-LEAST_WAY = 0.05  # a change that goes less of the way is not told
+LEAST_WAY = 0.1  # a change that goes less of the way is not told
 
 
 @dataclass(frozen=True)

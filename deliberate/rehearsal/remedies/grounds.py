@@ -8,7 +8,7 @@ from functools import cached_property
 
 import numpy as np
 
-from deliberate.dynamics.leverage import FULL_PEOPLE, pull_at_end, pull_in_long_run, weight_shares
+from deliberate.dynamics.leverage import pull_at_end, pull_in_long_run, weight_shares
 from deliberate.dynamics.network import Network
 from deliberate.dynamics.process import course
 from deliberate.rehearsal.assemble import heard
@@ -18,6 +18,7 @@ from deliberate.rehearsal.results import Floats, Introduce, MovePoints
 
 POINTS = 10.0  # what an introduction gets, and what is moved within a row
 PICKED = 3  # listeners looked at for each kind of change within a row
+EIGEN_PEOPLE = 200  # all eigenvectors of more take too long to wait for
 ROUNDING = 1e-9
 LONG = 3  # a repeated plan is followed for so many passes to see who counts
 
@@ -130,7 +131,7 @@ class Grounds:
         (left vector) x (right vector) (Wilkinson 1965). None for plans in which several rounds alternate."""
         process = self.sketch.assembly.process
         lasting = course(process).lasting
-        if self._unsure or len(lasting) > 1 or lasting[0].rounds > 1:
+        if self._unsure or len(lasting) > 1 or lasting[0].rounds > 1 or len(self.sketch.here) > EIGEN_PEOPLE:
             return None
         kept = (1 - process.firmness)[:, None] * lasting[0].shares.as_full()
         here = self.sketch.here
@@ -147,8 +148,8 @@ class Grounds:
 
     @property
     def _unsure(self) -> bool:
-        """Closed forms do not hold where beliefs decide who is heard, and full arrays must fit."""
-        return self.sketch.question.hearing_range is not None or len(self.sketch.present) > FULL_PEOPLE
+        """Closed forms do not hold where beliefs decide who is heard."""
+        return self.sketch.question.hearing_range is not None
 
     def introductions(self, pull: Floats | None) -> Iterator[Introduce]:
         """The new arrows that would lower what is pulled most, one for a listener."""

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 
+from deliberate.dynamics.leverage import FULL_PEOPLE
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.remedies.aims import AIMS, ALL_OR_NOTHING, Aim, Meeting, as_aim, asked_for, reached, way
@@ -64,15 +65,15 @@ def remedies(
 
     `variant` is a name and `question` an id; None for the first ones. progress is called with how many candidates
     have been computed and how many there are; when `stopped` says so the search ends, and what it found comes back.
-    Raises DeliberateError for names that are not there.
+    Raises DeliberateError for names that are not there and for more than 1,000 people.
     """
-    search = _Search(scenario, pick_variant(scenario, variant).name, pick_question(scenario, question).id)
+    search = _search(scenario, variant, question)
     return search.best(as_aim(aim), progress or (lambda done, of: None), stopped or (lambda: False))
 
 
 def aims_here(scenario: Scenario, variant: str | None = None, question: str | None = None) -> tuple[Aim, ...]:
     """The aims that the figures of a meeting ask for."""
-    search = _Search(scenario, pick_variant(scenario, variant).name, pick_question(scenario, question).id)
+    search = _search(scenario, variant, question)
     return tuple(aim for aim in AIMS if asked_for(aim, search.before, search.meeting))
 
 
@@ -82,6 +83,15 @@ def best_for_each_aim(
     """The best change for each aim that the figures ask for; no change where nothing that is tried serves it."""
     found = {aim: remedies(scenario, variant, question, aim) for aim in aims_here(scenario, variant, question)}
     return {aim: best[:1] for aim, best in found.items()}
+
+
+def _search(scenario: Scenario, variant: str | None, question: str | None) -> _Search:
+    setup, asked = pick_variant(scenario, variant), pick_question(scenario, question)
+    if len(setup.people) > FULL_PEOPLE:
+        raise DeliberateError(
+            f"remedies are looked for among up to {FULL_PEOPLE:,} people, there are {len(setup.people):,}"
+        )
+    return _Search(scenario, setup.name, asked.id)
 
 
 class _Search:

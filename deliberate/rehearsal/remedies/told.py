@@ -45,7 +45,7 @@ def _served(aim: Aim, sketch: Sketch, before: Figures, after: Figures) -> str:
         case "sooner":
             first, now = (amount(one.rounds_to_agree) for one in (after, before))
             return (
-                f"All would be within {sketch.tolerance} of each other from round {first} on, not from round {now} on"
+                f"All would be within {sketch.tolerance} of each other from round {first} on instead of round {now}"
             )
         case "more-voices":
             voices, now = (amount(round(one.voices, 1)) for one in (after, before))
