@@ -31,6 +31,16 @@ def extract(variant: Variant, ids: Ids) -> Clip:
     )
 
 
+def with_ids(clip: Clip, new_ids: Mapping[str, str]) -> Clip:
+    """The same people under other ids."""
+    return Clip(
+        people=tuple(replace(person, id=new_ids[person.id]) for person in clip.people),
+        arrows=tuple(
+            changed(arrow, listener=new_ids[arrow.listener], source=new_ids[arrow.source]) for arrow in clip.arrows
+        ),
+    )
+
+
 def paste(scenario: Scenario, clip: Clip, offset: tuple[float, float] = NO_OFFSET, *, variant: str) -> Scenario:
     """Add the clip's people to `variant` as new people, moved by `offset`, with the arrows among them.
 
