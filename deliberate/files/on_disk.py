@@ -6,7 +6,6 @@ import hashlib
 import os
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Literal
 
 from deliberate.errors import DeliberateError
 from deliberate.files.atomic import clear_half_written, replace_file
@@ -15,6 +14,7 @@ from deliberate.files.writing import encode
 from deliberate.scenario.checks import validate
 from deliberate.scenario.values import Scenario
 
+GONE, UNREADABLE = "gone", "unreadable"
 Stamp = tuple[int, int, int]  # inode, size, time of the last change in nanoseconds
 
 
@@ -41,24 +41,21 @@ def write_noting(scenario: Scenario, path: Path) -> OnDisk:
     return OnDisk(_digest(data), _stamp(path))
 
 
-def look(path: Path) -> OnDisk | None:
-    """What the file at `path` holds now, or None where it is gone or cannot be read."""
+def look(path: Path, known: OnDisk | None = None) -> OnDisk:
+    """What the file at `path` holds now; its digest is GONE or UNREADABLE where there is nothing to be seen.
+
+    Another digest than the `known` one is a change, a new date alone is none. The content is read only when size,
+    time or place on the disk differ from what is known.
+    """
     stamp = _stamp(path)
+    if stamp is None:
+        return OnDisk(GONE)
+    if known is not None and stamp == known.stamp:
+        return known
     try:
         return OnDisk(_digest(read_bytes(path)), stamp)
     except DeliberateError:
-        return None
-
-
-def compare(path: Path, known: OnDisk) -> Literal["same", "changed", "gone"]:
-    """Whether the file at `path` still holds what is `known` of it. A new date alone is no change."""
-    stamp = _stamp(path)
-    if stamp is None:
-        return "gone"
-    if stamp == known.stamp:
-        return "same"
-    now = look(path)
-    return "same" if now is not None and now.digest == known.digest else "changed"
+        return OnDisk(UNREADABLE, stamp)
 
 
 def _digest(data: bytes) -> str:

@@ -20,7 +20,7 @@ from deliberate import files
 from deliberate.errors import DeliberateError
 from deliberate.files import on_disk
 from deliberate.files import recovery as copies
-from deliberate.files.on_disk import OnDisk
+from deliberate.files.on_disk import GONE, OnDisk
 from deliberate.scenario.values import Ballot, Question, Scenario, Variant
 from deliberate.window.asking import ask, tell
 from deliberate.window.held_file import HeldFile, InUseError, Locks
@@ -73,7 +73,7 @@ class MeetingFiles(QObject):
         self._session, self._window = session, window
         self.recent, self._recovery, self._locks = recent, recovery, locks
         self._held: HeldFile | None = None
-        self._told_gone = False
+        self._told = ""  # what the file held when she was told of it last
 
     # Opening
 
@@ -152,8 +152,9 @@ class MeetingFiles(QObject):
         self._finish_typing()
         if self._held is None:
             return self.ask_save_as()
-        if on_disk.compare(self._held.path, self._held.known) == "changed":
-            return self._ask_about_change(self._held, before_saving=True)
+        now = on_disk.look(self._held.path, self._held.known)
+        if now.digest not in (self._held.known.digest, GONE):
+            return self._ask_about_change(self._held, now, before_saving=True)
         return self._write(self._held.path, self._held.lock)
 
     def ask_save_as(self) -> bool:
@@ -199,11 +200,13 @@ class MeetingFiles(QObject):
         held = self._held
         if held is None or QApplication.activeModalWidget() is not None:
             return
-        state = on_disk.compare(held.path, held.known)
-        if state == "changed":
-            self._ask_about_change(held, before_saving=False)
-        elif state == "gone" and not self._told_gone:
-            self._told_gone = True
+        now = on_disk.look(held.path, held.known)
+        if now.digest == held.known.digest:
+            self._told = ""
+        elif now.digest == self._told:
+            return
+        elif now.digest == GONE:
+            self._told = GONE
             self._session.mark_unsaved()
             tell(
                 self._window,
@@ -211,11 +214,12 @@ class MeetingFiles(QObject):
                 f"Another program moved, renamed or deleted {held.path}. The meeting is still in this window; saving "
                 "puts it there again, Save as puts it elsewhere.",
             )
-        elif state == "same":
-            self._told_gone = False
+        else:
+            self._ask_about_change(held, now, before_saving=False)
 
-    def _ask_about_change(self, held: HeldFile, *, before_saving: bool) -> bool:
+    def _ask_about_change(self, held: HeldFile, now: OnDisk, *, before_saving: bool) -> bool:
         """Both versions stay until she has chosen. True when hers is on disk then."""
+        self._told = now.digest
         mine = "your unsaved changes" if self._session.modified else "what you see here"
         what = (
             f"Another program changed {held.path.name} on disk after it was opened here. Keep {mine}, or load the "
@@ -231,10 +235,9 @@ class MeetingFiles(QObject):
             return False
         if before_saving:
             return answer == REPLACE and self._write(held.path, held.lock)
-        # Keeping her own leaves the file alone until she saves; it is not asked about again unless it changes again.
-        now = on_disk.look(held.path)
-        self._hold(replace(held, known=now or held.known))
-        self._session.mark_unsaved()
+        if answer == KEEP_MINE:  # the file stays as it is until she saves
+            self._hold(replace(held, known=now))
+            self._session.mark_unsaved()
         return False
 
     # After a crash
@@ -297,7 +300,7 @@ class MeetingFiles(QObject):
         if before is not None and (held is None or held.lock is not before.lock) and before.lock is not None:
             before.lock.unlock()
         self._recovery.digest = None if held is None else held.known.digest
-        self._told_gone = False
+        self._told = ""
 
     def _lock(self, path: Path) -> QLockFile | None:
         """The lock for `path`: the one at hand if it is the open meeting's file."""

@@ -315,6 +315,24 @@ def test_a_change_is_seen_before_saving_over_it(open_file: Open, path: Path) -> 
     assert not window.isWindowModified()
 
 
+def test_who_does_not_choose_is_not_asked_again_until_it_changes_again(
+    qtbot: QtBot, open_file: Open, path: Path
+) -> None:
+    window = open_file(path)
+    files.write(THEIRS, path)
+    with answering("Cancel"):
+        come_back(qtbot, window)
+    for _ in range(2):
+        come_back(qtbot, window)
+        assert QApplication.activeModalWidget() is None
+    with answering("Cancel"):
+        assert not window.files.save()
+    files.write(replace(THEIRS, title="Theirs again"), path)
+    with answering("Load theirs"):
+        come_back(qtbot, window)
+    assert window.session.scenario.title == "Theirs again"
+
+
 def test_theirs_that_cannot_be_read_leaves_mine(qtbot: QtBot, open_file: Open, path: Path) -> None:
     window = open_file(path)
     path.write_text("{", encoding="utf-8")
@@ -323,6 +341,8 @@ def test_theirs_that_cannot_be_read_leaves_mine(qtbot: QtBot, open_file: Open, p
     assert said[0].endswith("was changed on disk")
     assert said[2].endswith("was not opened")
     assert window.session.scenario == CIRCLES
+    come_back(qtbot, window)
+    assert QApplication.activeModalWidget() is None
 
 
 def test_a_file_that_vanished_is_told_once_and_saved_anew(qtbot: QtBot, open_file: Open, path: Path) -> None:
