@@ -110,4 +110,5 @@ class GuessedMeeting:
         electorate = self.sketch.electorate
         if electorate is None:
             return None
-        return electorate.tally(np.moveaxis(played, 1, 2).reshape(-1, played.shape[1]))
+        rounds, people, draws = played.shape
+        return electorate.tally(np.moveaxis(played, 1, 2).reshape(rounds * draws, people))
