@@ -52,6 +52,12 @@ def test_graphs_there_and_back():
     assert deliberate.from_networkx(graph).variants[0].people == scenario.variants[1].people
 
 
+def test_what_it_hangs_on_and_what_would_help():
+    scenario = deliberate.read(RESERVOIR)
+    assert deliberate.leverage(scenario).levers[0].people == ("ngozi",)
+    assert deliberate.remedies(scenario, None, None, "more-voices")[0].after.voices == pytest.approx(7)
+
+
 def test_everything_public_is_there_and_nothing_else():
     for name in deliberate.__all__:
         assert getattr(deliberate, name) is not None

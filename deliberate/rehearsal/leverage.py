@@ -272,7 +272,7 @@ class _Levers:
         people: tuple[str, ...],
         arrows: tuple[tuple[str, str], ...],
     ) -> Lever:
-        says = f"If {condition}, {_moves(moved, self.question)}."
+        says = f"If {condition}, {moves_in_words(moved, self.question)}."
         return Lever(kind, says, amount, *moved, people, arrows)
 
     def _of_arrows(self, pull: Floats) -> Floats:
@@ -292,8 +292,8 @@ def _ends(voices: Sequence[int], pull: Floats) -> tuple[int, int]:
     return by_pull[0], by_pull[-1]
 
 
-def _moves(moved: tuple[float, float], question: Question) -> str:
-    """Both changes of the mean in words."""
+def moves_in_words(moved: tuple[float, float], question: Question) -> str:
+    """What a change at the plan's end and one in the long run do to the mean: "the mean would be ..."."""
     end, last = (_higher(change, question) for change in moved)
     if end == last:
         same = "the mean would stay as it is"

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+from itertools import groupby
 from typing import Any
 
 from deliberate.rehearsal.choosing import pick_question, pick_variant
-from deliberate.rehearsal.leverage import Lever, Leverage
+from deliberate.rehearsal.leverage import Lever, Leverage, moves_in_words
 from deliberate.rehearsal.page import CAUTION, heading, wrap
 from deliberate.rehearsal.results import Floats
-from deliberate.rehearsal.words import number, with_unit
-from deliberate.scenario.values import Scenario
+from deliberate.rehearsal.words import amount, names, number, with_unit
+from deliberate.scenario.values import Question, Scenario
 
 TOLD = 12  # levers in the text; the JSON has all
 
@@ -18,16 +20,39 @@ def leverage_summary(scenario: Scenario, found: Leverage) -> str:
     """What the result hangs on, for people; the largest first. Made for 80 columns."""
     question = pick_question(scenario, found.question)
     end, last = (with_unit(result, question) for result in (found.result_at_end, found.result_in_long_run))
-    lines = [heading(scenario, pick_variant(scenario, found.variant), question), ""]
-    lines.append(wrap(f"The mean of those present is {end} at the plan's end and {last} in the long run."))
-    told = found.levers[:TOLD]
-    lines += ["", "What it hangs on" if told else "Nobody is present, so it hangs on nothing."]
-    lines += [wrap(lever.says, f"{place:3}. ") for place, lever in enumerate(told, 1)]
-    if len(found.levers) > TOLD:
-        lines += ["", wrap(f"These are {TOLD} of {len(found.levers)} guesses, by what they move at the plan's end.")]
-    step = number(found.step, question)
-    lines += ["", wrap(f"Starts are moved by {step}, rows and firmness by 10 of 100, one at a time.")]
-    return "\n".join([*lines, "", CAUTION]) + "\n"
+    told = list(_together(scenario, found, question))
+    lines = [
+        heading(scenario, pick_variant(scenario, found.variant), question),
+        "",
+        wrap(f"The mean of those present is {end} at the plan's end and {last} in the long run."),
+        "",
+        "What it hangs on" if told else "Nobody is present, so it hangs on nothing.",
+        *(wrap(says, f"{place:3}. ") for place, says in enumerate(told[:TOLD], 1)),
+        "",
+        wrap(
+            f"Starts are moved by {number(found.step, question)}, rows and firmness by 10 of 100, one at a time;"
+            f" {amount(len(found.levers))} guesses were tried, sorted by what they move at the plan's end."
+        ),
+        "",
+        CAUTION,
+    ]
+    return "\n".join(lines) + "\n"
+
+
+def _together(scenario: Scenario, found: Leverage, question: Question) -> Iterator[str]:
+    """The levers in sentences; starts next to each other that move the mean alike share one."""
+    variant = pick_variant(scenario, found.variant)
+    for (kind, moves), grouped in groupby(found.levers, lambda lever: _alike(lever, question)):
+        levers = tuple(grouped)
+        if kind == "start" and len(levers) > 1:
+            people = names([lever.people[0] for lever in levers], variant)
+            yield f"If one of {people} started {number(found.step, question)} higher, {moves}."
+        else:
+            yield from (lever.says for lever in levers)
+
+
+def _alike(lever: Lever, question: Question) -> tuple[str, str]:
+    return lever.kind, moves_in_words((lever.at_end, lever.in_long_run), question)
 
 
 def leverage_to_json(scenario: Scenario, found: Leverage) -> dict[str, Any]:

@@ -21,7 +21,7 @@ from deliberate.rehearsal.results import (
     Tally,
 )
 from deliberate.scenario.edits.points import HUNDRED, rows_of
-from deliberate.scenario.values import Scenario, Variant
+from deliberate.scenario.values import FrozenDict, Scenario, Variant
 
 COUNTS = 1e-9  # a start with less influence does not count
 MOVED = 1e-9  # points; less is rounding
@@ -82,7 +82,9 @@ def figures(sketch: Sketch) -> Figures:
         rounds_to_agree=sketch.agreed if sketch.common_view is not None else None,
         spread_at_end=sketch.spread(ends),
         voices=1 / float(influence @ influence) if influence.any() else 0.0,
-        influence={person: float(influence[at]) for at, person in enumerate(rehearsal.people) if present[at]},
+        influence=FrozenDict(
+            {person: float(influence[at]) for at, person in enumerate(rehearsal.people) if present[at]}
+        ),
         mean_at_end=_mean(ends[present]),
         mean_in_long_run=_mean(sketch.long_run[present]),
         vote_at_end=None if rehearsal.ballot is None else rehearsal.ballot[sketch.end],
