@@ -58,6 +58,11 @@ def locked(path: Path) -> QLockFile | None:
     not locked."""
     lock = QLockFile(str(path))
     lock.setStaleLockTime(0)  # only its owner's end makes it free, never its age
-    if not lock.tryLock(0) and lock.error() == QLockFile.LockError.LockFailedError:
-        return None
-    return lock
+    if lock.tryLock(0) or lock.error() != QLockFile.LockError.LockFailedError:
+        return lock
+    # Qt believes in a dead owner only where its number and the machine's name tell it so, and both may have changed
+    # hands since: a laptop's name comes with the network. The file itself tells: a living owner keeps the system from
+    # taking it away.
+    if lock.removeStaleLockFile() and lock.tryLock(0):
+        return lock
+    return None

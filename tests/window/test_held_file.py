@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import subprocess
 import sys
 from collections.abc import Callable
@@ -87,6 +88,31 @@ def test_a_killed_process_holds_nothing(locks: Locks, path: Path, tmp_path: Path
             locks.take(path)
         holder.kill()
     assert locks.take(path) is not None
+
+
+@pytest.mark.parametrize("line", [0, 1, 2])
+def test_neither_another_machine_name_nor_another_owner_of_the_number_keeps_a_dead_lock(
+    locks: Locks, path: Path, tmp_path: Path, line: int
+) -> None:
+    with other_process(tmp_path, path) as holder:
+        holder.kill()
+    (lock,) = (tmp_path / "private" / "open").iterdir()
+    lines = lock.read_text(encoding="utf-8").splitlines()
+    lines[0] = str(os.getpid())  # a living process got the number
+    lines[line] = ("1", "python", "another-machine")[line]
+    lock.write_text("\n".join(lines) + "\n", encoding="utf-8")
+    assert locks.take(path) is not None
+
+
+def test_a_living_lock_with_another_machine_name_is_left_alone(locks: Locks, path: Path, tmp_path: Path) -> None:
+    with other_process(tmp_path, path) as holder:
+        (lock,) = (tmp_path / "private" / "open").iterdir()
+        lines = lock.read_text(encoding="utf-8").splitlines()
+        lines[2] = "another-machine"
+        lock.write_text("\n".join(lines) + "\n", encoding="utf-8")
+        with pytest.raises(InUseError):
+            locks.take(path)
+        holder.kill()
 
 
 def test_where_no_lock_can_be_made_work_goes_on(path: Path, tmp_path: Path) -> None:
