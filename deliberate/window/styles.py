@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from deliberate.files.resources import resources
 from deliberate.window.theme import Theme
 
 
 def style_sheet(theme: Theme) -> str:
     """Quiet fields, hairlines, one accent for what has the focus or is chosen."""
+    tick = (resources() / f"tick-{theme.name}.svg").as_posix()
     return f"""
     QLabel[muted="true"] {{ color: {theme.muted}; }}
     QWidget[hairline="true"] {{ background: {theme.line}; }}
@@ -45,7 +47,7 @@ def style_sheet(theme: Theme) -> str:
         min-height: 18px;
     }}
     QLineEdit:focus, QPlainTextEdit:focus {{ border-color: {theme.accent}; }}
-    QLineEdit:disabled {{ color: {theme.muted}; }}
+    QLineEdit:disabled {{ color: {theme.muted}; background: {theme.raised}; border-color: {theme.raised}; }}
     QTableView, QListView {{
         background: {theme.panel}; border: none; gridline-color: {theme.line};
         selection-background-color: {theme.tint}; selection-color: {theme.ink};
@@ -81,6 +83,16 @@ def style_sheet(theme: Theme) -> str:
     QToolTip {{
         background: {theme.raised}; color: {theme.ink}; border: 1px solid {theme.line}; padding: 4px;
     }}
+    QCheckBox {{ spacing: 6px; }}
+    QCheckBox::indicator, QTableView::indicator {{
+        width: 13px; height: 13px; border: 1px solid {theme.mark}; border-radius: 3px; background: {theme.panel};
+    }}
+    QCheckBox::indicator:checked, QTableView::indicator:checked {{
+        background: {theme.accent}; border-color: {theme.accent}; image: url("{tick}");
+    }}
+    QTableView::indicator:checked {{ background: {theme.mark}; border-color: {theme.mark}; }}
+    QCheckBox::indicator:hover, QCheckBox::indicator:focus {{ border-color: {theme.accent}; }}
+    QCheckBox:focus {{ color: {theme.accent}; }}
     QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
     QScrollBar:horizontal {{ background: transparent; height: 10px; margin: 0; }}
     QScrollBar::handle {{

@@ -14,7 +14,7 @@ from deliberate.window.session import Session
 from deliberate.window.sidebar.fields import LineField
 from deliberate.window.sidebar.numbers import plain, share_text, typed_number, typed_share
 from deliberate.window.sidebar.page import small_button
-from deliberate.window.text import plain_label, tooltip
+from deliberate.window.text import explain, plain_label, tooltip
 
 TITLES = {
     "share-within": "Share within a range",
@@ -145,7 +145,7 @@ class TestRow(QWidget):
         self.kind = kind
         self.fields: dict[str, LineField] = {}
         title = QLabel(TITLES[kind], self)
-        title.setToolTip(tooltip(MEANINGS[kind]))
+        explain(title, MEANINGS[kind])
         self.remove = small_button("Remove", f"Remove the test {TITLES[kind]}", self)
         self.remove.clicked.connect(lambda: self.removal_wanted.emit(self))
         head = QHBoxLayout()

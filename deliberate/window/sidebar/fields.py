@@ -8,7 +8,7 @@ from PySide6.QtCore import QEvent, QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QFocusEvent, QKeyEvent, QWheelEvent
 from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit, QSizePolicy, QWidget
 
-from deliberate.window.text import tooltip
+from deliberate.window.text import explain
 
 REST_MS = 500  # a pause in typing after which longer texts are handed over
 
@@ -35,8 +35,7 @@ class LineField(QLineEdit):
         self.setAccessibleName(name)
         self.setPlaceholderText(hint)
         if meaning:
-            self.setToolTip(tooltip(meaning))
-            self.setAccessibleDescription(meaning)
+            explain(self, meaning)
         self.editingFinished.connect(self.hand_over)
 
     def show_text(self, text: str, subject: object = None) -> None:
@@ -185,7 +184,7 @@ class Choice(QComboBox):
         """The value that holds now."""
         place = next((i for i in range(self.count()) if self.itemData(i) == value), -1)
         self.setCurrentIndex(place)
-        self.setToolTip(tooltip(self.currentText()) if place >= 0 else "")
+        explain(self, self.currentText())  # all of it, where the field is too narrow
 
     def wheelEvent(self, event: QWheelEvent) -> None:
         event.ignore()

@@ -7,7 +7,7 @@ from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import QFrame, QGridLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
 from deliberate.window.session import Session
-from deliberate.window.text import plain_label, strong, tooltip
+from deliberate.window.text import explain, plain_label, strong
 
 
 class Page(QScrollArea):
@@ -76,6 +76,6 @@ def small_button(text: str, meaning: str, parent: QWidget) -> QPushButton:
     """A quiet button of few words that says in full what it does."""
     button = QPushButton(text, parent)
     button.setProperty("quiet", True)
-    button.setToolTip(tooltip(meaning))
+    explain(button, meaning)
     button.setAccessibleName(meaning)
     return button

@@ -28,6 +28,24 @@ Index = QModelIndex | QPersistentModelIndex
 SORT_ROLE = Qt.ItemDataRole.UserRole
 BELIEF_ROLE = Qt.ItemDataRole.UserRole + 1  # belief to colour the cell's swatch with
 
+COLUMNS = len(Column)
+_LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
+_RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
+_ALIGNED = tuple(_LEFT if column in (Column.NAME, Column.ROLE) else _RIGHT for column in Column)
+_SHOWN = Qt.ItemFlag.ItemIsEnabled | Qt.ItemFlag.ItemIsSelectable | Qt.ItemFlag.ItemNeverHasChildren
+_UNLIKE_OTHERS = {Column.NOW: _SHOWN, Column.PRESENT: _SHOWN | Qt.ItemFlag.ItemIsUserCheckable}
+_FLAGS = tuple(_UNLIKE_OTHERS.get(column, _SHOWN | Qt.ItemFlag.ItemIsEditable) for column in Column)
+# While painting, Qt asks every cell for fonts, brushes and more; only these depend on the person.
+_TOLD = {
+    Qt.ItemDataRole.DisplayRole,
+    Qt.ItemDataRole.EditRole,
+    Qt.ItemDataRole.CheckStateRole,
+    Qt.ItemDataRole.ToolTipRole,
+    Qt.ItemDataRole.AccessibleTextRole,
+    SORT_ROLE,
+    BELIEF_ROLE,
+}
+
 
 class PeopleModel(QAbstractTableModel):
     """One row per person. An edit goes to the session; with several people selected it goes to all of them."""
@@ -46,7 +64,7 @@ class PeopleModel(QAbstractTableModel):
         return 0 if parent is not None and parent.isValid() else len(self._variant.people)
 
     def columnCount(self, parent: Index | None = None) -> int:
-        return 0 if parent is not None and parent.isValid() else len(Column)
+        return 0 if parent is not None and parent.isValid() else COLUMNS
 
     def person(self, row: int) -> Person:
         """The person in `row`."""
@@ -75,7 +93,7 @@ class PeopleModel(QAbstractTableModel):
             return
         rows = list(compress(range(len(differs)), differs))
         if rows:
-            self.dataChanged.emit(self.index(rows[0], 0), self.index(rows[-1], len(Column) - 1))
+            self.dataChanged.emit(self.index(rows[0], 0), self.index(rows[-1], COLUMNS - 1))
 
     def refresh_now(self) -> None:
         """Read the beliefs at the present round again."""
@@ -91,17 +109,12 @@ class PeopleModel(QAbstractTableModel):
     def flags(self, index: Index) -> Qt.ItemFlag:
         if not index.isValid():
             return Qt.ItemFlag.NoItemFlags
-        flags = Qt.ItemFlag.ItemIsEnabled | Qt.ItemFlag.ItemIsSelectable | Qt.ItemFlag.ItemNeverHasChildren
-        if index.column() == Column.PRESENT:
-            return flags | Qt.ItemFlag.ItemIsUserCheckable
-        if index.column() != Column.NOW:
-            return flags | Qt.ItemFlag.ItemIsEditable
-        return flags
+        return _FLAGS[index.column()]
 
     def headerData(
         self, section: int, orientation: Qt.Orientation, role: int = Qt.ItemDataRole.DisplayRole
     ) -> str | Qt.AlignmentFlag | None:
-        if orientation != Qt.Orientation.Horizontal or not 0 <= section < len(Column):
+        if orientation != Qt.Orientation.Horizontal or not 0 <= section < COLUMNS:
             return None
         heading = HEADINGS[Column(section)]
         if role == Qt.ItemDataRole.DisplayRole:
@@ -109,11 +122,15 @@ class PeopleModel(QAbstractTableModel):
         if role in (Qt.ItemDataRole.ToolTipRole, Qt.ItemDataRole.AccessibleTextRole):
             return heading.meaning
         if role == Qt.ItemDataRole.TextAlignmentRole:
-            return _alignment(section)
+            return _ALIGNED[section]
         return None
 
     def data(self, index: Index, role: int = Qt.ItemDataRole.DisplayRole) -> object:
         if not index.isValid() or not 0 <= index.row() < len(self._variant.people):
+            return None
+        if role == Qt.ItemDataRole.TextAlignmentRole:
+            return _ALIGNED[index.column()]
+        if role not in _TOLD:
             return None
         column, row = Column(index.column()), self.row(index.row())
         if role == Qt.ItemDataRole.DisplayRole:
@@ -124,8 +141,6 @@ class PeopleModel(QAbstractTableModel):
             return sort_key(column, row, self._question)
         if role == Qt.ItemDataRole.CheckStateRole and column == Column.PRESENT:
             return Qt.CheckState.Checked if row.person.present else Qt.CheckState.Unchecked
-        if role == Qt.ItemDataRole.TextAlignmentRole:
-            return _alignment(column)
         if role == BELIEF_ROLE and column == Column.NOW:
             return row.now
         if role == Qt.ItemDataRole.ToolTipRole and column == Column.NAME:
@@ -181,8 +196,3 @@ def _same_points(variant: Variant, before: Variant) -> bool:
     return variant.arrows is before.arrows and [one.own_weight for one in variant.people] == [
         one.own_weight for one in before.people
     ]
-
-
-def _alignment(column: int) -> Qt.AlignmentFlag:
-    left = column in (Column.NAME, Column.ROLE)
-    return (Qt.AlignmentFlag.AlignLeft if left else Qt.AlignmentFlag.AlignRight) | Qt.AlignmentFlag.AlignVCenter

@@ -21,7 +21,7 @@ from deliberate.rehearsal.words import amount, shown_names
 from deliberate.window.session import Session
 from deliberate.window.sidebar.points_delegate import NUMBER_SAMPLE, PointsDelegate
 from deliberate.window.sidebar.points_model import BASES, BASIS, NAME, POINTS, PointsModel
-from deliberate.window.text import ElidedLabel, plain_label, strong
+from deliberate.window.text import ElidedLabel, explain, plain_label, strong
 from deliberate.window.theme import Look
 
 COLOURS_EVERY_MS = 100
@@ -44,8 +44,9 @@ class PointsTable(QWidget):
         self.table.setItemDelegate(self.delegate)
         self.table.fit_columns()
         self.make_room = QCheckBox("the others make room", self)
-        self.make_room.setToolTip(
-            "When one number changes, all others shrink or grow in proportion; otherwise only the own view does"
+        explain(
+            self.make_room,
+            "When one number changes, all others shrink or grow in proportion; otherwise only the own view does",
         )
         self.make_room.setChecked(True)
         self.sum = plain_label(self)

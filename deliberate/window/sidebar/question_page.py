@@ -16,7 +16,7 @@ from deliberate.window.sidebar.fields import LineField, TextField
 from deliberate.window.sidebar.numbers import plain, typed_number
 from deliberate.window.sidebar.page import Page, label_for
 from deliberate.window.sidebar.question_list import QuestionList
-from deliberate.window.text import plain_label, tooltip
+from deliberate.window.text import explain, plain_label
 
 
 @dataclass(frozen=True)
@@ -84,10 +84,9 @@ class QuestionPage(Page):
         grid.setColumnStretch(1, 1)
         grid.setColumnStretch(2, 1)
         self.along = QCheckBox("Numbe&rs move along", body)
-        self.along.setToolTip(
-            tooltip(
-                "When an end changes, starts, margins and marks keep their place on the scale; otherwise they stay"
-            )
+        explain(
+            self.along,
+            "When an end changes, starts, margins and marks move in proportion; otherwise they stay as they are",
         )
         self.along.setChecked(True)
         self.column.addWidget(self.along)
@@ -177,7 +176,7 @@ class MarkRow:
     def __init__(self, page: QuestionPage, grid: QGridLayout, row: int, mark: Mark) -> None:
         self._page, self._mark = page, mark
         self.box = QCheckBox(mark.label, page.body)
-        self.box.setToolTip(tooltip(mark.meaning))
+        explain(self.box, mark.meaning)
         self.field = LineField(mark.name, page.body, meaning=mark.meaning)
         grid.addWidget(self.box, row, 0)
         grid.addWidget(self.field, row, 1)

@@ -15,7 +15,7 @@ from deliberate.window.session import Session
 from deliberate.window.sidebar.fields import LineField
 from deliberate.window.sidebar.numbers import plain, typed_number
 from deliberate.window.sidebar.people_columns import HEADINGS, UNKNOWN, Column, Row, change, typed_over
-from deliberate.window.text import ElidedLabel
+from deliberate.window.text import ElidedLabel, explain
 
 STEPS = 1_000
 FIELD_ROOM = 20
@@ -40,7 +40,7 @@ class StartEditor(QWidget):
         self.field = LineField("Starting belief as a number", self, meaning=HEADINGS[Column.START].meaning)
         self.field.setAlignment(Qt.AlignmentFlag.AlignRight)
         self.known = QCheckBox("known", self)
-        self.known.setToolTip("Without a start the middle of the scale is used, and said so")
+        explain(self.known, "Without a start the middle of the scale is used, and said so")
         self.low = ElidedLabel(self, muted=True)
         self.high = ElidedLabel(self, muted=True, align=Qt.AlignmentFlag.AlignRight)
         row = QHBoxLayout()

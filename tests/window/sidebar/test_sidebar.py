@@ -3,7 +3,9 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import pytest
-from circles import AS_IT_STANDS, CIRCLES
+from circles import AS_IT_STANDS, CIRCLES, LABEL
+from msgspec.structs import replace
+from PySide6.QtCore import QPoint
 from PySide6.QtWidgets import (
     QAbstractButton,
     QAbstractItemView,
@@ -18,6 +20,8 @@ from pytestqt.qtbot import QtBot
 from sidebar_hands import Key, Keys, press, replace_text, tick, type_over
 
 from deliberate.scenario import edits
+from deliberate.scenario.rules import READY_RULES
+from deliberate.scenario.values import AgreementTest
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.sidebar.people_columns import Column
@@ -204,3 +208,28 @@ def test_typing_goes_to_whom_it_was_typed_for(open_sidebar: Open) -> None:
     session.select(people=["bilal"])
     sidebar.people.table.setFocus()
     assert session.variant.people[1].beliefs["label"] == 80.0
+
+
+@pytest.mark.parametrize("width", [240, 250, 290])
+def test_nothing_is_cut_off_at_the_right(open_sidebar: Open, width: int) -> None:
+    rule = next(rule for rule in READY_RULES if rule.name == "Two-thirds with at most a quarter against")
+    tests = (
+        AgreementTest(test="share-within", low=0.0, high=5e6, at_least="3/4"),
+        AgreementTest(test="spread", at_most=1.0),
+    )
+    question = replace(LABEL, high=5e6, low_label="nothing " * 20, unit="thousand " * 20, agreement=tests)
+    scenario = replace(
+        CIRCLES, questions=(question, replace(question, id="other")), ballot=rule.ballot, title="long " * 30
+    )
+    sidebar, session = open_sidebar(scenario, width=width)
+    session.select(people=["amina"])
+    for place, page in enumerate((sidebar.people, sidebar.question, sidebar.ballot, sidebar.meeting)):
+        sidebar.tabs.setCurrentIndex(place)
+        QApplication.processEvents()
+        if place:
+            assert page.body.width() <= page.viewport().width()
+        for widget in page.findChildren(QWidget):
+            if isinstance(widget, CONTROLS) and widget.isVisible() and _of_page(widget):
+                right = widget.mapTo(sidebar, QPoint(widget.width(), 0)).x()
+                assert right <= width, widget
+                assert widget.width() >= min(widget.minimumSizeHint().width(), 60), widget
