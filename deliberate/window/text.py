@@ -39,7 +39,7 @@ def tooltip(text: str) -> str:
 
 
 def explain(widget: QWidget, text: str) -> None:
-    """Say `text` in the widget's tooltip, and to a screen reader, which would otherwise read out the tooltip's tags."""
+    """Say `text` in the widget's tooltip, and to a screen reader, which would otherwise read out its tags."""
     widget.setToolTip(tooltip(text))
     widget.setAccessibleDescription(text)
 

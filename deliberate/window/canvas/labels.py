@@ -10,10 +10,12 @@ from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
+Mask = NDArray[np.bool_]
 
 CELL = 6.0  # pixels of the grid in which arrows are looked up
 GAP = 5.0  # between ring and name
 OVER_SOMETHING = 60.0  # what covering a disc costs, or another name
+CUT_OFF = 25.0  # what reaching over the edge of the paper costs
 _ALL_INK = 20.0  # what lying wholly on arrows costs
 # Middle of the name relative to the person: columns times (radius + gap + half a name), rows likewise. Later places
 # are only taken when they are better by the price in the last column.
@@ -31,10 +33,13 @@ _PLACES = np.array(
 )
 
 
-def place_labels(places: Floats, radius: float, sizes: Floats, arrow_lines: Floats) -> tuple[Indices, Floats]:
+def place_labels(
+    places: Floats, radius: float, sizes: Floats, arrow_lines: Floats, paper: tuple[float, float] | None = None
+) -> tuple[Indices, Floats]:
     """Which place each name takes (for `offsets`), and what it covers there (0: nothing at all).
 
-    `places` (people, 2), `sizes` (people, 2), `arrow_lines` rows (x1, y1, x2, y2). Shapes (people,).
+    `places` (people, 2), `sizes` (people, 2), `arrow_lines` rows (x1, y1, x2, y2), `paper` the width and height that
+    names had better stay on. Shapes (people,).
     """
     count = len(places)
     if count == 0:
@@ -43,6 +48,8 @@ def place_labels(places: Floats, radius: float, sizes: Floats, arrow_lines: Floa
     middle = places[:, None] + _PLACES[None, :, :2] * _steps(radius, half)[:, None]  # (people, candidates, 2)
     price = np.broadcast_to(_PLACES[:, 2], middle.shape[:2]) + _Ink(arrow_lines).under(middle, half) * _ALL_INK
     price = price + _discs_covered(middle, half, places, radius) * OVER_SOMETHING
+    if paper is not None:
+        price = price + _cut_off(middle, half, paper) * CUT_OFF
     return _choose(middle, half, price)
 
 
@@ -75,6 +82,12 @@ def _choose(middle: Floats, half: Floats, price: Floats) -> tuple[Indices, Float
         chosen[person], done[person] = best, True
         cost[person] = own[best] - _PLACES[best, 2]
     return chosen, cost
+
+
+def _cut_off(middle: Floats, half: Floats, paper: tuple[float, float]) -> Mask:
+    """Which candidates reach over the edge of the paper, shape (people, candidates)."""
+    low, high = middle - half[:, None], middle + half[:, None]
+    return (low < 0).any(axis=-1) | (high > np.array(paper)).any(axis=-1)
 
 
 def _discs_covered(middle: Floats, half: Floats, places: Floats, radius: float) -> Floats:

@@ -1,6 +1,8 @@
-"""Names on the canvas: wrapped over two lines, placed clear of discs and arrows, painted from cached layouts."""
+"""Names on the canvas: wrapped over a few lines, placed clear of discs and arrows, painted from cached layouts."""
 
 from __future__ import annotations
+
+import re
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,6 +18,8 @@ Indices = NDArray[np.intp]
 LEAST_PX, LEAST_PX_IN_CROWDS = 8.0, 14.0  # radius below which names are shown only for those selected or pointed at
 COMMITTEE = 60  # people; of more, names that would lie on something wait until they are pointed at
 CROWD = 200  # people; names of so many only cover the picture
+LINES, LINES_IN_COMMITTEE = 2, 3
+_BREAKS = re.compile(r"\s+|(?<=\w)[-־‐](?=\w)")
 _HALO = ((-1, 0), (1, 0), (0, -1), (0, 1), (-1, -1), (1, 1), (-1, 1), (1, -1))
 
 
@@ -23,7 +27,7 @@ class Names:
     """Measured names of one set of people at one size, and where they go."""
 
     def __init__(self) -> None:
-        self._texts: dict[tuple[str, int], tuple[QStaticText, QSizeF]] = {}
+        self._texts: dict[tuple[str, int, int], tuple[QStaticText, QSizeF]] = {}
         self._font: QFont | None = None
         self._chosen = np.zeros(0, dtype=np.intp)
         self.sizes = np.zeros((0, 2))
@@ -31,16 +35,25 @@ class Names:
         self._shown: list[QStaticText] = []
 
     def place(
-        self, names: tuple[str, ...], points: Floats, radius: float, arrow_lines: Floats, font: QFont, room: float
+        self,
+        names: tuple[str, ...],
+        points: Floats,
+        radius: float,
+        arrow_lines: Floats,
+        font: QFont,
+        room: float,
+        paper: tuple[float, float],
     ) -> None:
-        """Measure and place the names of people at `points` (pixels); `room` is how wide a line may be."""
+        """Measure and place the names of people at `points`; `room` is how wide a line may be, `paper` how wide and
+        high the picture is. All in pixels."""
+        lines = LINES_IN_COMMITTEE if len(names) <= COMMITTEE else LINES
         if self._font != font or len(self._texts) > 4000:
             self._texts.clear()
             self._font = QFont(font)
-        laid = [self._laid(name, room) for name in names]
+        laid = [self._laid(name, room, lines) for name in names]
         self._shown = [text for text, _ in laid]
         self.sizes = np.array([(size.width(), size.height()) for _, size in laid]).reshape(len(names), 2)
-        self._chosen, self.crowded = place_labels(points, radius, self.sizes, arrow_lines)
+        self._chosen, self.crowded = place_labels(points, radius, self.sizes, arrow_lines, paper)
 
     def clear(self) -> NDArray[np.bool_]:
         """Whose name lies on no disc and no other name, shape (people,)."""
@@ -85,11 +98,11 @@ class Names:
             painter.setPen(muted if pale[index] else ink)
             painter.drawStaticText(QPointF(x, y), text)
 
-    def _laid(self, name: str, room: float) -> tuple[QStaticText, QSizeF]:
-        key = (name, round(room))
+    def _laid(self, name: str, room: float, most: int) -> tuple[QStaticText, QSizeF]:
+        key = (name, round(room), most)
         if key not in self._texts:
             assert self._font is not None
-            lines = wrapped(name, self._font, room)
+            lines = wrapped(name, self._font, room, most)
             metrics = QFontMetricsF(self._font)
             width = max(metrics.horizontalAdvance(line) for line in lines)
             text = QStaticText("\n".join(lines).replace("\n", "\u2028"))
@@ -108,22 +121,26 @@ def has_room(people: int, radius: float) -> bool:
     return radius >= (LEAST_PX_IN_CROWDS if people > CROWD else LEAST_PX)
 
 
-def wrapped(name: str, font: QFont, room: float) -> list[str]:
-    """`name` on one line, or on two of which the second is shortened; broken at a space where there is one."""
+def wrapped(name: str, font: QFont, room: float, most: int = 2) -> list[str]:
+    """`name` on up to `most` lines, broken at spaces and behind hyphens where there are any; what is more than
+    that is shortened at the end of the last line."""
     metrics = QFontMetricsF(font)
-    if metrics.horizontalAdvance(name) <= room:
-        return [name]
-    words = name.split(" ")
-    first = words[0]
-    used = 1
-    while used < len(words) and metrics.horizontalAdvance(f"{first} {words[used]}") <= room:
-        first += f" {words[used]}"
-        used += 1
-    rest = " ".join(words[used:])
-    if metrics.horizontalAdvance(first) > room or not rest:
-        cut = max(1, _fitting(name, metrics, room))
-        first, rest = name[:cut], name[cut:]
-    return [first, metrics.elidedText(rest, Qt.TextElideMode.ElideRight, room)]
+    lines = []
+    rest = name
+    while rest and len(lines) < most - 1:
+        line, rest = _broken(rest, metrics, room)
+        lines.append(line)
+    return [*lines, metrics.elidedText(rest, Qt.TextElideMode.ElideRight, room)] if rest else lines
+
+
+def _broken(text: str, metrics: QFontMetricsF, room: float) -> tuple[str, str]:
+    """The first line of `text` in `room`, and what is left."""
+    if metrics.horizontalAdvance(text) <= room:
+        return text, ""
+    ends = [match.end() for match in _BREAKS.finditer(text)]
+    fit = max((end for end in ends if metrics.horizontalAdvance(text[:end].rstrip()) <= room), default=0)
+    end = fit or max(1, _fitting(text, metrics, room))
+    return text[:end].rstrip(), text[end:].lstrip()
 
 
 def _fitting(text: str, metrics: QFontMetricsF, room: float) -> int:

@@ -312,7 +312,8 @@ class Picture:
         if has_room(len(scene.ids), radius):
             lines, _ = geometry.strokes(self.curves(shown), np.full(len(shown), 6))
         room = min(max(radius * 4.4, 56.0), 190.0)
-        self.names.place(scene.names, self.view.to_screen(scene.places), radius, lines, font, room)
+        points, paper = self.view.to_screen(scene.places), (self.width, self.height)
+        self.names.place(scene.names, points, radius, lines, font, room, paper)
 
     def _named(self) -> Flags:
         """Whose names are painted."""

@@ -66,7 +66,9 @@ def paint_chart(painter: QPainter, frame: Frame, content: Content, theme: Theme,
     _paint_stages(painter, frame, content, theme)
     _paint_marks(painter, frame, content, theme)
     _paint_curves(painter, frame, content, theme, at)
-    _paint_endings(painter, frame, content, theme)
+    taken = _paint_endings(painter, frame, content, theme)
+    painter.setFont(font)
+    _paint_mark_words(painter, frame, content, theme, taken)
 
 
 def _paint_band(painter: QPainter, frame: Frame, content: Content, theme: Theme, at: NDArray[np.intp]) -> None:
@@ -90,20 +92,36 @@ def _paint_stages(painter: QPainter, frame: Frame, content: Content, theme: Them
 
 
 def _paint_marks(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
-    question, metrics = content.question, QFontMetricsF(painter.font())
+    question = content.question
     if question.pass_mark is not None and question.undecided:
         top, bottom = (float(frame.y(question.pass_mark + way * question.undecided)) for way in (1, -1))
         painter.fillRect(
             QRectF(frame.rect.left(), top, frame.rect.width(), bottom - top), mix(theme.panel, theme.mark, 0.28)
         )
-    for value, words in ((question.pass_mark, "pass mark"), (question.objection_mark, "objection below")):
-        if value is None:
-            continue
+    painter.setPen(QPen(QColor(theme.mark), 1, Qt.PenStyle.DotLine))
+    for value, _ in _marks(question):
         y = round(float(frame.y(value))) + 0.5
-        painter.setPen(QPen(QColor(theme.mark), 1, Qt.PenStyle.DotLine))
         painter.drawLine(QLineF(frame.rect.left(), y, frame.rect.right(), y))
+
+
+def _marks(question: Question) -> list[tuple[float, str]]:
+    """The marks on the scale that decide something, with their words."""
+    both = ((question.pass_mark, "pass mark"), (question.objection_mark, "objection below"))
+    return [(value, words) for value, words in both if value is not None]
+
+
+def _paint_mark_words(painter: QPainter, frame: Frame, content: Content, theme: Theme, taken: list[QRectF]) -> None:
+    """What the marks are, on top of the curves: at the right, or in the middle where an ending stands there."""
+    metrics = QFontMetricsF(painter.font())
+    for value, words in _marks(content.question):
+        width, y = metrics.horizontalAdvance(words), float(frame.y(value))
+        box = QRectF(frame.rect.right() - width - 6, y - metrics.height() - 1, width, metrics.height())
+        if any(box.intersects(other) for other in taken):
+            box.moveLeft(frame.rect.center().x() - width / 2)
+        painter.fillRect(box.adjusted(-2, 1, 2, -1), mix(theme.panel, theme.mark, 0.16))
         painter.setPen(QColor(theme.muted))
-        painter.drawText(QPointF(frame.rect.right() - metrics.horizontalAdvance(words) - 4, y - 3), words)
+        painter.drawText(box, Qt.AlignmentFlag.AlignCenter | Qt.TextFlag.TextDontClip, words)
+        taken.append(box)
 
 
 def _paint_curves(painter: QPainter, frame: Frame, content: Content, theme: Theme, at: NDArray[np.intp]) -> None:
@@ -158,7 +176,8 @@ def _paint_names(painter: QPainter, frame: Frame, content: Content, theme: Theme
         taken.append(box)
 
 
-def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:
+def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> list[QRectF]:
+    """Where views end, with its words; returns where these stand."""
     font = QFont(painter.font())
     font.setWeight(QFont.Weight.DemiBold)
     painter.setFont(font)
@@ -181,6 +200,7 @@ def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: The
         box = _kept_apart(box, taken, frame.rect)
         _paint_label(painter, box, words, theme)
         taken.append(box)
+    return taken
 
 
 def _paint_label(painter: QPainter, box: QRectF, words: str, theme: Theme) -> None:
