@@ -193,7 +193,10 @@ def _paint_endings(painter: QPainter, frame: Frame, content: Content, theme: The
         box = QRectF(frame.rect.left() + 8, frame.rect.top() + 3, metrics.horizontalAdvance(words), metrics.height())
         _paint_label(painter, box, words, theme)
         taken.append(box)
-    for value, words in sorted(content.endings.lines, reverse=True):
+    # From the nearer edge inwards, so that words that make room for others keep the order of their values.
+    lines = sorted(content.endings.lines)
+    upper = bool(lines) and float(frame.y(lines[len(lines) // 2][0])) < frame.rect.center().y()
+    for value, words in reversed(lines) if upper else lines:
         width = metrics.horizontalAdvance(words)
         y = float(frame.y(value))
         box = QRectF(frame.rect.right() - width - 6, y - metrics.height() - 2, width, metrics.height())
