@@ -286,10 +286,35 @@ class _Run:
         """Bounds say that none of the next `turns` turns is wide."""
         if self._judge.steady:
             return not self._judge.wide(beliefs)
-        if self._leads_to is not None and len(self._leads_to) == 1 and self._at_rest(beliefs, 0):
+        after = self._power(0).apply(beliefs, self._judge.start)
+        widest, step = self._widest(beliefs), np.abs(after - beliefs).max()
+        if widest + 2 * (turns - 1) * step <= self._judge.tolerance:
             return True
-        step = np.abs(self._power(0).apply(beliefs, self._judge.start) - beliefs).max()
-        return self._widest(beliefs) + 2 * (turns - 1) * step <= self._judge.tolerance
+        if self._leads_to is None or len(self._leads_to) > 1:
+            return False
+        if self._at_rest(beliefs, 0):
+            return True
+        extra = self._beyond_straight(beliefs - self._leads_to[0], after - self._leads_to[0], turns - 1)
+        return max(widest, self._ends_within) + extra <= self._judge.tolerance
+
+    def _beyond_straight(self, gap: Floats, next_gap: Floats, turns: int) -> float:
+        """How far spreads can go, within so many turns, beyond those of now and of the long run.
+
+        Where every gap to the long run shrinks by a factor between low and high, and nobody hears gaps of both
+        signs, the same holds in all turns to come, since shares are not negative: gap low^k <= gap(k) <= gap high^k.
+        Were all factors one, beliefs would go straight to where they end.
+        """
+        open_ = np.abs(gap) > self._judge.slack
+        size, later = np.abs(gap[open_]), np.abs(next_gap[open_])
+        heard = self._power(0).kept[:, open_] @ size
+        one_sign = np.abs(heard - np.abs(next_gap)).max(initial=0.0) <= self._judge.slack
+        same_sign = (gap[open_] * next_gap[open_] >= 0).all() and (
+            np.abs(next_gap[~open_]) <= self._judge.slack
+        ).all()
+        if not (one_sign and same_sign and (later <= size).all()):
+            return np.inf
+        factors = later / size
+        return float(min(1.0, turns * np.ptp(factors)) * size.max(initial=0.0)) if len(size) else 0.0
 
     def _carried_on(self, beliefs: Floats, played: int) -> int | None:
         """The last wide round if the pace of the next few turns goes on."""
