@@ -114,7 +114,7 @@ class _Sketch:
             within = with_unit(rehearsal.tolerance, self.question)
             when = "from the start" if agreed == 0 else f"from round {amount(agreed)} on"
             facts.append(("Agree", f"within {within} of each other {when}"))
-        if rehearsal.rounds_to_halve is not None:
+        if rehearsal.rounds_to_halve is not None and self.present.sum() > 1:
             facts.append(("Pace", _halving(rehearsal.rounds_to_halve)))
         facts += [("Voices", voices) for voices in self._voices()]
         if rehearsal.ballot is not None:
@@ -139,7 +139,9 @@ class _Sketch:
         return f"yes, on views from {number(low, self.question)} to {with_unit(high, self.question, beside=low)}"
 
     def _rounds_to_agree(self) -> int | None:
-        """Of those present."""
+        """Of those present; one person alone has nobody to agree with."""
+        if self.present.sum() < 2:
+            return None
         assembly = assemble(self.variant, self.question)
         return rounds_to_agree_among(np.flatnonzero(self.present), assembly, self.question, self.rehearsal)
 

@@ -66,7 +66,7 @@ def percent(share: float) -> str:
     """A share of one as "81 %"; near both ends with a decimal, and never rounded to nothing or to all."""
     hundredth = share * 100
     if hundredth <= 0 or hundredth >= 100 or 0.995 <= hundredth <= 99.005:
-        return f"{hundredth:.0f} %"
+        return f"{math.floor(hundredth + 0.5)} %"
     if hundredth < 0.05:
         return "under 0.1 %"
     if hundredth > 99.95:
@@ -119,14 +119,20 @@ def shown_names(variant: Variant) -> Mapping[str, str]:
 def names(ids: Iterable[str], variant: Variant | Mapping[str, str], most: int = 4) -> str:
     """The people as a list of at most `most` entries: "Amina and Bilal", "Amina, Bilal, Chen and 3 others".
 
+    A name that is a number stands in quotation marks, so that it is not read as a figure.
+
     `variant` may also be what `shown_names` gives, which saves time where many lists are made of one variant.
     """
     known = shown_names(variant) if isinstance(variant, Variant) else variant
-    shown = [known.get(one, one) for one in ids]
+    shown = [_told_from_figures(known.get(one, one)) for one in ids]
     if len(shown) > max(most, 1):
         kept = max(most - 1, 1)
         shown = [*shown[:kept], count(len(shown) - kept, "other", "others")]
     return listing(shown)
+
+
+def _told_from_figures(name: str) -> str:
+    return name if any(map(str.isalpha, name)) or not any(map(str.isdigit, name)) else f'"{name}"'
 
 
 def sentence(text: str) -> str:

@@ -48,7 +48,7 @@ def test_nobody_and_nobody_present() -> None:
 
 def test_one_person_alone() -> None:
     assert kinds(meeting([[1]], [20])) == []
-    assert set(kinds(meeting([[1]], [20], question=LEVY))) == {"vote", "quorum"}
+    assert set(kinds(meeting([[1]], [20], question=LEVY))) == {"vote"}
 
 
 @given(meetings())

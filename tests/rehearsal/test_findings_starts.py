@@ -79,5 +79,11 @@ def test_somebody_absent_whom_nobody_would_hear() -> None:
     assert finding.why == "Nobody present gives them points, so the talk of the others is the same without them."
 
 
+def test_nobody_is_there() -> None:
+    finding = told(meeting([[1]], [50], people={"a": {"present": False}}), "absent")
+    assert finding.says == "a is absent and heard by nobody."
+    assert finding.why == "So nobody is there to talk, and no view moves."
+
+
 def test_all_are_there() -> None:
     assert "absent" not in kinds(meeting(EVEN, [50, 60, 90]))

@@ -148,6 +148,7 @@ def test_a_quorum_of_two_thirds_of_six_is_four_and_not_five() -> None:
 
 
 def test_the_only_person_with_a_vote() -> None:
-    assert told(quorum("1/2", "", 1), "quorum").why == (
-        "The only person with a vote is present and the rule asks for 1."
+    assert "quorum" not in kinds(quorum("1/2", "", 1))
+    assert told(quorum("1/2", "a", 1), "quorum").why == (
+        "The only person with a vote is absent and the rule asks for 1, so nothing can pass; a is absent."
     )

@@ -1,5 +1,6 @@
 import textwrap
 
+import numpy as np
 import pytest
 from hypothesis import given
 from meetings import meeting, meetings
@@ -84,6 +85,27 @@ def test_figures_are_those_of_people_who_are_present():
     assert "carried as if by 2 equal voices; 2 people are present" in text
     assert "Note: one person is absent" in text.replace("\n", " ")
     assert "100" not in text.partition("Start")[2].partition("Settles")[0]
+
+
+def test_agreement_of_those_present_is_counted_beyond_the_rounds_played():
+    # A spread of 4^-t (DeGroot 1974, from memory), and somebody absent at the other end of the scale.
+    points, away = [[1, 1, 0], [1, 3, 0], [0, 0, 1]], {"c": {"present": False}}
+    for rounds in (0, 2, 9):
+        text = said(meeting(points, [0, 90, 100], people=away), rounds=rounds)
+        assert "within 1 of each other from round 4 on" in text
+    # Views of firm people can meet and come apart again: a and b start at 0 and take in c, who starts at 100.
+    firm = {"a": {"firmness": 0.5}, "b": {"firmness": 0.5}, "d": {"present": False}}
+    apart = meeting([[0, 0, 1, 0], [0, 0, 1, 0], [1, 1, 0, 0], [0, 0, 0, 1]], [0, 0, 100, 50], people=firm)
+    spreads = np.ptp(rehearse(apart, rounds=60).rounds[:, :3], axis=1)
+    last_wide = int(np.flatnonzero(spreads > 1)[-1])
+    assert f"within 1 of each other from round {last_wide + 1} on" in said(apart)
+
+
+def test_one_person_has_nobody_to_agree_with():
+    text = said(meeting([[1]], [20]))
+    assert "Settles  yes, on 20" in text
+    assert "Agree" not in text
+    assert "Pace" not in text
 
 
 def test_agreement_tests_and_quorum_are_told():

@@ -3,7 +3,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from deliberate.rehearsal import words
-from deliberate.scenario.values import Person, Question, Variant
+from deliberate.scenario.values import AgreementTest, Person, Question, Variant
 
 
 def scale(low: float, high: float, unit: str = "") -> Question:
@@ -58,6 +58,7 @@ def test_units_stand_behind_the_figure():
         (0.004, "0.4 %"),
         (0.00999, "1 %"),
         (0.8123, "81 %"),
+        (0.125, "13 %"),
         (0.99, "99 %"),
         (0.994, "99.4 %"),
         (0.9999, "over 99.9 %"),
@@ -116,3 +117,22 @@ def test_people_of_one_name_are_told_apart_by_id():
 
 def test_a_sentence_begins_with_a_capital():
     assert words.sentence("views settle on Ada's") == "Views settle on Ada's"
+
+
+def test_names_that_are_numbers_are_told_from_figures():
+    people = {"p1": "7", "p2": "12 b", "p3": "3-4", "p4": "٤"}
+    assert words.names(people, people) == '"7", 12 b, "3-4" and "٤"'
+
+
+@pytest.mark.parametrize(
+    ("test", "said"),
+    [
+        (AgreementTest("rand-ucla"), "RAND/UCLA"),
+        (AgreementTest("share-within", low=7, high=9, at_least="3/4"), "3/4 within 7 to 9"),
+        (AgreementTest("share-within", low=7, high=9, at_least=0.755), "75.5 % within 7 to 9"),
+        (AgreementTest("quartile-range", at_most=1), "quartile range at most 1"),
+        (AgreementTest("spread", at_most=0.0001), "spread at most 0.0001"),
+    ],
+)
+def test_what_an_agreement_test_asks(test, said):
+    assert words.agreement_test(test, Question("q", "t", 1, 9)) == said

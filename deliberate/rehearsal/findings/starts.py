@@ -91,7 +91,9 @@ def absent(sketch: Sketch) -> Iterator[Finding]:
     lost = network.present[network.listener] & ~network.present[network.source]
     heeders = np.unique(network.listener[lost])
     why = "Nobody present gives them points, so the talk of the others is the same without them."
-    if len(heeders):
+    if not sketch.present.any():
+        why = "So nobody is there to talk, and no view moves."
+    elif len(heeders):
         all_own = all(stage.unheard == "own" for stage in sketch.variant.plan.stages)
         whither = "stay with the own view" if all_own else "go to the own view or to those still heard"
         verb = "give" if len(heeders) != 1 else "gives"

@@ -121,7 +121,7 @@ def no_quorum(sketch: Sketch) -> Iterator[Finding]:
 def bare_quorum(sketch: Sketch) -> Iterator[Finding]:
     """Just enough people with a vote are present."""
     seats = _seats(sketch)
-    if seats is None or seats.missing != 0 or not seats.needed:
+    if seats is None or seats.missing != 0 or not seats.needed or seats.eligible == 1:
         return
     yield Finding(
         kind="quorum",
