@@ -30,15 +30,17 @@ MOST_NAMED_PAIRS = 3
 def apply(scenario: Scenario, variant_name: str, suggestion: Suggestion) -> Scenario:
     """The scenario with one more variant right behind `variant_name`: a copy of it with the change.
 
-    Its name says what differs, after the name it builds on unless that is the first variant's. What each change
-    does is told where it is defined, in `results`. Raises DeliberateError for unknown names and ids, and where a
-    change cannot be made.
+    Its name says what differs, after the name it builds on unless that is the first variant's, and its notes say
+    it in full, in place of notes that were true of the other set-up. What each change does is told where it is
+    defined, in `results`. Raises DeliberateError for unknown names and ids, and where a change cannot be made.
     """
     before = variant_named(scenario, variant_name)
     change = _in_short(suggestion, before)
     wanted = change if before is scenario.variants[0] else f"{before.name}, {change}"
     name = edits.fresh_variant_name(scenario, wanted)
-    return _changed(edits.add_variant(scenario, copy_of=variant_name, name=name), name, suggestion)
+    scenario = edits.add_variant(scenario, copy_of=variant_name, name=name)
+    scenario = edits.set_variant_notes(scenario, name, f"{words(suggestion, before)}.")
+    return _changed(scenario, name, suggestion)
 
 
 def _changed(scenario: Scenario, name: str, suggestion: Suggestion) -> Scenario:
@@ -97,7 +99,7 @@ def words(suggestion: Suggestion, variant: Variant) -> str:
                 f" each gives her {_of_100(points)}"
             )
         case JointRound(rounds):
-            return f"Begin with {count(rounds, 'round', 'rounds')} in which everybody hears everybody"
+            return f"Begin with {_rounds(rounds)} in which everybody hears everybody"
         case SpeakFirst(speakers, rounds, points):
             them = "each of them" if len(speakers) > 1 else names(speakers, known)
             given = f"; all give {them} {_of_100(points)} or more" if points else ""

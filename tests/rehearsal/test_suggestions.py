@@ -154,6 +154,7 @@ def test_changes_of_process_in_words_and_as_variants(suggestion, said, name):
     after = apply(CIRCLES, "As it stands", suggestion)
     assert [variant.name for variant in after.variants] == ["As it stands", name]
     assert after.variants[0] is CIRCLES.variants[0]
+    assert after.variants[1].notes == f"{said}."
     assert validate(after) is after
     assert after.variants[1].plan.rounds == 6  # at equal length
 
@@ -207,8 +208,8 @@ def test_unknown_names_are_refused():
         (Introduce("a", "c", 10), "Let Amina hear Chidi: 10 of 100 points"),
         (KeepOwnView(("a",), 20), "Let the own view of Amina count for 20 of 100 points"),
         (KeepOwnView(("a", "d"), 12.5), "Let the own views of Amina and Dolores count for 12.5 of 100 points each"),
-        (JointRound(1), "Begin with 1 round in which everybody hears everybody"),
-        (JointRound(2), "Begin with 2 rounds in which everybody hears everybody"),
+        (JointRound(1), "Begin with one round in which everybody hears everybody"),
+        (JointRound(2), "Begin with two rounds in which everybody hears everybody"),
     ],
 )
 def test_suggestions_in_words(suggestion, said):
