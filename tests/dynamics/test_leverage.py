@@ -126,6 +126,27 @@ def test_a_finite_change_of_two_people_exactly():
     assert result[0] == pytest.approx(2 / 3, rel=1e-12)
 
 
+def test_total_effects_as_published():
+    """Friedkin and Johnsen 1999 (quoted): what each start counts for in each limit, within 0.0015."""
+    points = [[0.220, 0.120, 0.360, 0.300], [0.147, 0.215, 0.344, 0.294], [0, 0, 1, 0], [0.090, 0.178, 0.446, 0.286]]
+    effects = [[0.280, 0.045, 0.551, 0.124], [0.047, 0.278, 0.549, 0.126], [0, 0, 1, 0], [0.030, 0.048, 0.532, 0.390]]
+    process = plain(points, np.diag(points))
+    for person, expected in enumerate(effects):
+        _, counts = pull_in_long_run(process, np.array([25.0, 25, 75, 85]), np.eye(4)[person])
+        assert counts == pytest.approx(expected, abs=0.0015)
+
+
+def test_fundamental_matrix_as_published():
+    """Grinstead and Snell 1997, Land of Oz: Z from memory, fixed vector (2/5, 1/5, 2/5) quoted. The pull of row i
+    is p_i times Z b."""
+    process = plain([[1 / 2, 1 / 4, 1 / 4], [1 / 2, 0, 1 / 2], [1 / 4, 1 / 4, 1 / 2]])
+    fundamental = np.array([[86, 3, -14], [6, 63, 6], [-14, 3, 86]]) / 75
+    for start in np.eye(3):
+        pull, counts = pull_in_long_run(process, start, np.full(3, 1 / 3))
+        assert counts == pytest.approx([0.4, 0.2, 0.4])
+        assert pull == pytest.approx(np.outer([0.4, 0.2, 0.4], fundamental @ start))
+
+
 def test_equal_people_have_equal_leverage():
     """Everybody gives the same; two who start alike cannot differ."""
     matrix = np.full((5, 5), 0.1)

@@ -232,6 +232,26 @@ def test_an_introduction_found_by_closed_form_narrows_the_spread_most_for_its_li
     assert mine < rehearse(line).spread[-1]
 
 
+@given(st.integers(0, 10_000), st.booleans())
+@settings(max_examples=30)
+def test_what_slows_the_pace_is_its_derivative(seed, firm):
+    """The closed form for the pace against a small move of points."""
+    random = np.random.default_rng(seed)
+    points = random.uniform(5, 20, (4, 4)) + 20 * np.eye(4)
+    scenario = meeting((100 * points / points.sum(axis=1, keepdims=True)).tolist(), [10, 40, 60, 90])
+    if firm:
+        scenario = edits.set_firmness(scenario, "b", 0.3, variant=NOW)
+    pull = Grounds(sketch_for(scenario, NOW, "q")).pull_on_pace()
+    step = 1e-4
+    rates = []
+    for sign in (1, -1):
+        moved = dict(edits.points_of(scenario.variants[0], "a"))
+        moved["c"] += sign * 100 * step
+        moved["d"] -= sign * 100 * step
+        rates.append(rehearse(edits.give_points(scenario, "a", moved, variant=NOW)).rate)
+    assert pull[0, 2] - pull[0, 3] == pytest.approx((rates[0] - rates[1]) / (2 * step), abs=1e-3)
+
+
 def test_leaving_people_out_is_said_and_costs():
     one_way = next(
         remedy for remedy in remedies(CIRCLES, None, None, "common-view") if isinstance(remedy.suggestion, Introduce)
