@@ -17,6 +17,7 @@ from deliberate.rehearsal.doubt_draws import Chunk, GuessedMeeting
 from deliberate.rehearsal.doubt_findings import Check, by_structure, check_of
 from deliberate.rehearsal.doubt_guesses import Guesses, Outcome
 from deliberate.rehearsal.doubt_results import (
+    ALWAYS,
     LEVELS,
     Call,
     Concentration,
@@ -190,7 +191,7 @@ class _Counted:
         odds = []
         for finding, check, holds in zip(self._told, self._checks, self._holds, strict=True):
             if by_structure(self._sketch, finding):
-                odds.append(FindingOdds(finding, Odds(1.0, 0.0), True))
+                odds.append(FindingOdds(finding, ALWAYS, True))
             else:
                 odds.append(FindingOdds(finding, None if check is None else Odds.of(holds, self.done), False))
         return tuple(odds)

@@ -171,8 +171,8 @@ def doubt_to_json(found: Doubt) -> dict[str, Any]:
         "mean_in_long_run": found.mean_in_long_run.tolist(),
         "spread": found.spread.tolist(),
         "spread_in_long_run": found.spread_in_long_run.tolist(),
-        "settles": asdict(found.settles),
-        "agrees": asdict(found.agrees),
+        "settles": _odds(found.settles),
+        "agrees": _odds(found.agrees),
         "tolerance": found.tolerance,
         "ballot": None if found.vote is None else list(_ballots(found)),
         "ballot_in_long_run": None if found.vote is None else _odds(found.vote.passes_in_long_run),
@@ -187,7 +187,7 @@ def doubt_to_json(found: Doubt) -> dict[str, Any]:
 def _ballots(found: Doubt) -> Iterator[dict[str, Any]]:
     for at, passes in enumerate(found.vote.passes):
         yield {
-            "passes": asdict(passes),
+            "passes": _odds(passes),
             "for": found.vote.in_favour[:, at].tolist(),
             "against": found.vote.against[:, at].tolist(),
             "quorum_met": found.vote.quorum_met,
@@ -195,7 +195,7 @@ def _ballots(found: Doubt) -> Iterator[dict[str, Any]]:
 
 
 def _odds(odds: Odds | None) -> dict[str, float] | None:
-    return None if odds is None else asdict(odds)
+    return None if odds is None else {"share": odds.share, "error": odds.error}
 
 
 def _finding(odds: FindingOdds) -> dict[str, Any]:

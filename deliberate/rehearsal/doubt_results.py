@@ -31,43 +31,56 @@ class Concentration:
 
 @dataclass(frozen=True)
 class Odds:
-    """In what share of the draws something holds, and the standard error of that share as an estimate of the odds.
+    """In what share of the draws something holds, and how far that is the odds themselves.
 
-    The error is half the width of Wilson's interval for one standard deviation (Wilson 1927), so it does not vanish
-    where all draws agree. It is that of independent draws; draws of starts are spread more evenly, so it is on the
-    safe side.
+    error: half the width of Wilson's interval for one standard deviation (Wilson 1927), which does not vanish where
+    all draws agree. sure: what share the commoner of the two, holding or not, has at least, to two standard
+    deviations. Both are those of independent draws; draws of starts are spread more evenly, so they are on the safe
+    side.
     """
 
     share: float
     error: float
+    sure: float
 
     @staticmethod
     def of(hits: float, draws: int) -> Odds:
         """The odds when `hits` of `draws` draws show it."""
         share = hits / draws
-        error = math.sqrt(share * (1 - share) / draws + 1 / (4 * draws * draws)) / (1 + 1 / draws)
-        return Odds(share, error)
+        _, error = _wilson(share, draws, 1.0)
+        middle, width = _wilson(max(share, 1 - share), draws, 2.0)
+        return Odds(share, error, middle - width)
 
     @property
     def against(self) -> Odds:
         """The odds of the opposite."""
-        return Odds(1 - self.share, self.error)
+        return Odds(1 - self.share, self.error, self.sure)
+
+
+ALWAYS = Odds(1.0, 0.0, 1.0)
+
+
+def _wilson(share: float, draws: int, deviations: float) -> tuple[float, float]:
+    """The middle of Wilson's interval for a share, and half its width."""
+    squared = deviations**2 / draws
+    width = math.sqrt(squared * share * (1 - share) + squared**2 / 4)
+    return (share + squared / 2) / (1 + squared), width / (1 + squared)
 
 
 Call = Literal["too-close", "leans", "nearly-all", "all"]
 
-# The commoner outcome, less two standard errors, must have at least this share of the draws.
+# What the commoner outcome has of the draws at least, to two standard deviations.
 LEANS_FROM = 0.80
 NEARLY_ALL_FROM = 0.95
 
 
 def call_of(odds: Odds) -> Call:
-    """How sure the draws are, whichever way: never surer than the share of the commoner outcome allows."""
-    commoner = max(odds.share, 1 - odds.share)
-    if commoner == 1:
-        return "all" if 1 - 2 * odds.error >= NEARLY_ALL_FROM else "leans"
-    sure = commoner - 2 * odds.error
-    return "nearly-all" if sure >= NEARLY_ALL_FROM else "leans" if sure >= LEANS_FROM else "too-close"
+    """How sure the draws are, whichever way, and never surer than that."""
+    if odds.sure < LEANS_FROM:
+        return "too-close"
+    if odds.sure < NEARLY_ALL_FROM:
+        return "leans"
+    return "all" if odds.share in (0.0, 1.0) else "nearly-all"
 
 
 @dataclass(frozen=True, eq=False)

@@ -1,0 +1,124 @@
+"""What doubt costs: 2,000 draws of a committee and of a large group, beside a loop over plain rehearsals, and how
+soon it stops. Processor time, since the bounds are for a machine that has nothing else to do.
+
+The bounds are the project's own; a benchmark fails when its median is beyond them.
+"""
+
+from __future__ import annotations
+
+import time
+
+import numpy as np
+import pytest
+from bench_rehearsal import committee
+from msgspec.structs import replace
+
+from deliberate.dynamics.drawn_talk import never
+from deliberate.dynamics.draws import RowSource, draw_starts
+from deliberate.rehearsal.assemble import assemble
+from deliberate.rehearsal.doubt import doubt
+from deliberate.rehearsal.rehearse import rehearse
+from deliberate.scenario.values import FrozenDict, Plan, Scenario, Stage
+
+DRAWS = 2_048
+LOOPED = 64  # draws of the loop; the whole loop takes so many times as long
+STOPS_WITHIN = 0.2
+
+pytestmark = pytest.mark.benchmark(timer=time.process_time)
+
+
+def guessed(people: int, arrows: int, firmness: float = 0.0) -> Scenario:
+    """The random meeting with margins of ten around all starts and twelve rounds in three stages."""
+    scenario = committee(people, arrows)
+    (variant,) = scenario.variants
+    plan = Plan((Stage("Go-round", 4), Stage("Silence", 4, "silence"), Stage("Plenary", 4)))
+    everybody = tuple(
+        replace(person, margins=FrozenDict(q=10.0), firmness=firmness if at % 2 else 0.0)
+        for at, person in enumerate(variant.people)
+    )
+    return replace(scenario, variants=(replace(variant, people=everybody, plan=plan),))
+
+
+@pytest.mark.parametrize(
+    ("people", "arrows", "firmness", "bound"),
+    [(40, 300, 0.0, 2), (40, 1560, 0.0, 2), (40, 300, 0.3, 2), (150, 1500, 0.0, 30), (150, 22_000, 0.0, 30)],
+)
+def test_2000_draws(benchmark, people, arrows, firmness, bound):
+    scenario = guessed(people, arrows, firmness)
+    doubt(scenario, draws=64)
+    benchmark.pedantic(doubt, (scenario,), {"draws": DRAWS}, rounds=3)
+    assert benchmark.stats.stats.median < bound
+
+
+def test_draws_beside_a_loop_over_rehearsals(benchmark):
+    """40 people, 12 rounds: everything that `doubt` tells, beside one `rehearse` for each of its draws."""
+    scenario = guessed(40, 300)
+    doubt(scenario, draws=64)
+    one_by_one(scenario, 4)
+    pairs = [(seconds(doubt, scenario), seconds(one_by_one, scenario, LOOPED)) for _ in range(5)]
+    batched, looped = np.median(pairs, axis=0)
+    times = looped * DRAWS / LOOPED / batched
+    benchmark.extra_info["times as fast"] = round(float(times), 1)
+    benchmark.pedantic(doubt, (scenario,), {"draws": DRAWS}, rounds=3)
+    assert times > 20
+
+
+def one_by_one(scenario: Scenario, draws: int) -> None:
+    """A rehearsal for each draw of the points and the starts."""
+    (variant,), (question,) = scenario.variants, scenario.questions
+    process = assemble(variant, question).process
+    source = np.random.default_rng(1)
+    rows = RowSource(process.network, np.full(process.network.arrows, 10.0)).draw(draws, source)
+    given = np.array([person.beliefs["q"] for person in variant.people])
+    starts = draw_starts(np.maximum(given - 10, 0), np.minimum(given + 10, 100), draws, source)
+    for at in range(draws):
+        people = tuple(
+            replace(person, own_weight=own, beliefs=FrozenDict(q=start))
+            for person, own, start in zip(
+                variant.people, rows.own[:, at].tolist(), starts[:, at].tolist(), strict=True
+            )
+        )
+        arrows = tuple(
+            replace(arrow, weight=weight)
+            for arrow, weight in zip(variant.arrows, rows.weight[:, at].tolist(), strict=True)
+        )
+        rehearse(replace(scenario, variants=(replace(variant, people=people, arrows=arrows),)))
+
+
+@pytest.mark.parametrize(("people", "arrows"), [(40, 300), (150, 22_000), (500, 5_000), (2_000, 20_000)])
+def test_stopping(benchmark, people, arrows):
+    """From the moment somebody wants to stop until the answer is there, wherever the work is at that moment; the
+    longest of several."""
+    scenario = guessed(people, arrows)
+    doubt(scenario, draws=8)
+    waits = [waited(scenario, looks) for looks in (1, 14, 40, 100)]
+    benchmark.extra_info["longest wait"] = round(max(waits), 3)
+    benchmark.pedantic(doubt, (scenario,), {"draws": 8}, rounds=1)
+    assert max(waits) < STOPS_WITHIN
+
+
+def waited(scenario: Scenario, looks: int) -> float:
+    """Processor time from the look before the one that says stop, which is the longest a person can wait."""
+    asked = []
+
+    def stopped() -> bool:
+        asked.append(time.process_time())
+        return len(asked) > looks
+
+    doubt(scenario, draws=DRAWS, stopped=stopped)
+    return time.process_time() - asked[min(looks, len(asked)) - 1]
+
+
+def seconds(work, *given) -> float:
+    start = time.process_time()
+    work(*given)
+    return time.process_time() - start
+
+
+def test_a_hearing_range(benchmark):
+    """No bound of the issue's; stepping to rest is the slowest that 40 people can have."""
+    scenario = guessed(40, 300)
+    (question,) = scenario.questions
+    scenario = replace(scenario, questions=(replace(question, hearing_range=20.0),))
+    benchmark.pedantic(doubt, (scenario,), {"draws": DRAWS, "stopped": never}, rounds=3)
+    assert benchmark.stats.stats.median < 10
