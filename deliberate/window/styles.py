@@ -71,9 +71,9 @@ def style_sheet(theme: Theme) -> str:
     QTabBar::tab:hover {{ color: {theme.accent}; }}
     QTabBar:focus::tab:selected {{ border-color: {theme.accent}; }}
     QTabBar QToolButton {{ padding: 2px; }}
-    QTabBar[words="true"] {{ margin-left: 6px; }}
+    QTabBar[words="true"] {{ margin-left: 5px; }}
     QTabBar[words="true"]::tab {{
-        border: none; border-bottom: 2px solid transparent; border-radius: 0; padding: 5px 2px 4px 2px; margin: 0 5px;
+        border: none; border-bottom: 2px solid transparent; border-radius: 0; padding: 5px 2px 4px 2px; margin: 0 3px;
     }}
     QTabBar[words="true"]::tab:selected {{
         background: transparent; color: {theme.ink}; border-bottom-color: {theme.accent}; font-weight: 400;

@@ -29,7 +29,7 @@ class PeoplePage(QWidget):
         self.points = PointsTable(session, look, below)
         self.hint = plain_label(below, muted=True, text=NOBODY_CHOSEN)
         column = QVBoxLayout(below)
-        column.setContentsMargins(12, 8, 12, 8)
+        column.setContentsMargins(12, 8, 10, 8)
         column.setSpacing(10)
         column.addWidget(self.start)
         column.addWidget(self.points, 1)

@@ -43,7 +43,7 @@ class PointsTable(QWidget):
         self.delegate = PointsDelegate(session, look, self)
         self.table.setItemDelegate(self.delegate)
         self.table.fit_columns()
-        self.make_room = QCheckBox("the others make room", self)
+        self.make_room = QCheckBox("others make room", self)
         explain(
             self.make_room,
             "When one number changes, all others shrink or grow in proportion; otherwise only the own view does",

@@ -81,8 +81,9 @@ class QuestionPage(Page):
             grid.addWidget(label, row, 2)
         grid.addWidget(label_for(self.unit, "Un&it", body), 2, 0)
         grid.addWidget(self.unit, 2, 1, 1, 2)
-        grid.setColumnStretch(1, 1)
-        grid.setColumnStretch(2, 1)
+        grid.setHorizontalSpacing(6)
+        grid.setColumnStretch(1, 4)
+        grid.setColumnStretch(2, 3)
         self.along = QCheckBox("Numbe&rs move along", body)
         explain(
             self.along,

@@ -13,6 +13,9 @@ from deliberate.window.sidebar.question_page import QuestionPage
 from deliberate.window.theme import Look
 
 
+LEAST_WIDTH = 230
+
+
 class Sidebar(QWidget):
     """Edits everything that is not drawn."""
 
@@ -44,4 +47,4 @@ class Sidebar(QWidget):
         return QSize(290, 600)
 
     def minimumSizeHint(self) -> QSize:
-        return QSize(240, 200)
+        return QSize(LEAST_WIDTH, 200)

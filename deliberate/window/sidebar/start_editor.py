@@ -36,7 +36,7 @@ class StartEditor(QWidget):
         self.slider.setPageStep(STEPS // 10)
         self.slider.setSingleStep(STEPS // 100)
         self.slider.setAccessibleName("Starting belief")
-        self.slider.setMinimumHeight(24)
+        self.slider.setMinimumSize(40, 24)
         self.field = LineField("Starting belief as a number", self, meaning=HEADINGS[Column.START].meaning)
         self.field.setAlignment(Qt.AlignmentFlag.AlignRight)
         self.known = QCheckBox("known", self)
@@ -66,7 +66,7 @@ class StartEditor(QWidget):
 
     def _lay_out_details(self) -> QHBoxLayout:
         row = QHBoxLayout()
-        row.setSpacing(5)
+        row.setSpacing(4)
         self.details: dict[Column, LineField] = {}
         for column in DETAILS:
             heading = HEADINGS[column]
@@ -74,6 +74,7 @@ class StartEditor(QWidget):
             label.setProperty("muted", True)
             field = LineField(heading.meaning, self, meaning=heading.meaning)
             field.setAlignment(Qt.AlignmentFlag.AlignRight)
+            field.setStyleSheet("padding: 3px 3px;")  # three in a narrow row
             field.given.connect(lambda text, column=column: self._give(column, text))
             row.addWidget(label)
             row.addWidget(field, 1)

@@ -89,7 +89,7 @@ def test_the_model_is_sound_while_the_meeting_changes(qtbot: QtBot, open_sidebar
 
 
 def test_names_have_room_and_numbers_are_whole(qtbot: QtBot, open_sidebar: Open) -> None:
-    for width in (250, 290, 420):
+    for width in (236, 290, 420):
         sidebar, _ = open_sidebar(width=width)
         table = sidebar.people.table
         letter = table.fontMetrics().horizontalAdvance("n")
@@ -104,7 +104,7 @@ def test_names_have_room_and_numbers_are_whole(qtbot: QtBot, open_sidebar: Open)
 
 
 def test_a_wider_bar_shows_more_columns(qtbot: QtBot, open_sidebar: Open) -> None:
-    sidebar, _ = open_sidebar(width=250)
+    sidebar, _ = open_sidebar(width=236)
     table = sidebar.people.table
     assert table.isColumnHidden(Column.BALLOTS)
     sidebar.resize(600, 700)
@@ -113,7 +113,7 @@ def test_a_wider_bar_shows_more_columns(qtbot: QtBot, open_sidebar: Open) -> Non
 
 
 def test_a_column_she_chooses_stays_on_screen(qtbot: QtBot, open_sidebar: Open) -> None:
-    sidebar, _ = open_sidebar(width=250)
+    sidebar, _ = open_sidebar(width=236)
     table = sidebar.people.table
     menu = table._menu()
     table.columns.add_to(menu)

@@ -242,7 +242,7 @@ def test_the_basis_is_chosen_in_its_cell(open_sidebar: Open) -> None:
 
 
 def test_a_narrow_bar_keeps_names_and_bars(open_sidebar: Open) -> None:
-    sidebar, session = open_sidebar(width=250)
+    sidebar, session = open_sidebar(width=236)
     session.select(people=["amina"])
     QApplication.processEvents()
     table = sidebar.people.points.table

@@ -31,10 +31,10 @@ CONTROLS = (QAbstractButton, QComboBox, QLineEdit, QPlainTextEdit, QAbstractItem
 
 
 def test_four_pages_one_at_a_time(qtbot: QtBot, open_sidebar: Open) -> None:
-    sidebar, _ = open_sidebar(width=250)
+    sidebar, _ = open_sidebar(width=232)
     pages = (sidebar.people, sidebar.question, sidebar.ballot, sidebar.meeting)
     assert sidebar.tabs.count() == 4
-    assert sidebar.tabs.sizeHint().width() <= 250
+    assert sidebar.tabs.sizeHint().width() <= 232
     sidebar.tabs.setFocus()
     for place, page in enumerate(pages):
         assert [one.isVisible() for one in pages] == [one is page for one in pages]
@@ -210,7 +210,7 @@ def test_typing_goes_to_whom_it_was_typed_for(open_sidebar: Open) -> None:
     assert session.variant.people[1].beliefs["label"] == 80.0
 
 
-@pytest.mark.parametrize("width", [240, 250, 290])
+@pytest.mark.parametrize("width", [232, 236, 290])
 def test_nothing_is_cut_off_at_the_right(open_sidebar: Open, width: int) -> None:
     rule = next(rule for rule in READY_RULES if rule.name == "Two-thirds with at most a quarter against")
     tests = (
