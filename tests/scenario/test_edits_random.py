@@ -112,6 +112,14 @@ GIVEN: dict[Callable[..., Scenario], Callable[[Hand], tuple[tuple, dict]]] = {
     edits.add_go_between: lambda h: ((h.some(), h(st.one_of(Points, st.just(5)))), {"name": h(Names)}),
     edits.begin_with: lambda h: ((h(stages(h.ids)),), {}),
     edits.end_with: lambda h: ((h(stages(h.ids)),), {}),
+    edits.add_table_stages: lambda h: (
+        ([[h.ids[:2], h.ids[2:]], [h.some()]],),
+        {
+            "rounds": h(st.integers(0, 3)),
+            "place": h(st.sampled_from(("before", "after", "instead"))),
+            "name": h(Names),
+        },
+    ),
     edits.reorder_stages: lambda h: ((h(st.permutations(range(len(h.variant.plan.stages)))),), {}),
     edits.add_person: lambda h: ((h(Names),), {"place": h(st.sampled_from((None, (3, 4.5)))), "role": h(Names)}),
     edits.bring_people: lambda h: ((h.some(),), {"source": h.name, "variant": h.other()}),

@@ -75,6 +75,7 @@ from deliberate.scenario.edits.stages import (
     set_speakers,
     set_tables,
 )
+from deliberate.scenario.edits.table_stages import add_table_stages, around_tables
 from deliberate.scenario.edits.variants import (
     add_variant,
     fresh_variant_name,
@@ -95,7 +96,9 @@ __all__ = [
     "add_person",
     "add_question",
     "add_stage",
+    "add_table_stages",
     "add_variant",
+    "around_tables",
     "begin_with",
     "bring_people",
     "change_ballot",
