@@ -40,11 +40,11 @@ def apply(scenario: Scenario, variant_name: str, suggestion: Suggestion) -> Scen
     name = edits.fresh_variant_name(scenario, wanted)
     scenario = edits.add_variant(scenario, copy_of=variant_name, name=name)
     scenario = edits.set_variant_notes(scenario, name, f"{words(suggestion, before)}.")
-    return _changed(scenario, name, suggestion)
+    return change_in_place(scenario, name, suggestion)
 
 
-def _changed(scenario: Scenario, name: str, suggestion: Suggestion) -> Scenario:
-    """The scenario with the change made in the variant called `name`."""
+def change_in_place(scenario: Scenario, name: str, suggestion: Suggestion) -> Scenario:
+    """The scenario with the change made in the variant called `name` itself."""
     match suggestion:
         case Introduce(listener, source, points):
             return edits.set_points(scenario, listener, source, points, variant=name)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 import re
 
-from hypothesis import given
+from hypothesis import given, settings
 from meetings import meetings
 from strategies import scenarios
 
@@ -67,6 +67,7 @@ def reads_well(finding: Finding) -> None:
     assert not POINTS_BACK.match(finding.says), finding.says
 
 
+@settings(max_examples=60)
 @given(scenarios())
 def test_findings_of_any_meeting_are_sound(scenario: Scenario) -> None:
     for rehearsal, finding in found_in(scenario):

@@ -5,11 +5,13 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable
 
 import numpy as np
+from msgspec.structs import replace
 
 from deliberate.rehearsal.findings.sketch import Indices, Sketch, sketch_of
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView, Suggestion
-from deliberate.rehearsal.suggestions import apply
+from deliberate.rehearsal.suggestions import change_in_place
+from deliberate.scenario.values import Ballot
 
 INTRODUCED_POINTS = 10.0
 KEPT_POINTS = 20.0
@@ -54,9 +56,10 @@ def joint_round(sketch: Sketch, better: Callable[[Sketch], bool]) -> JointRound 
 
 def tried(sketch: Sketch, suggestion: Suggestion) -> Sketch:
     """The sketch after the change, which costs a rehearsal."""
-    scenario = apply(sketch.scenario, sketch.variant.name, suggestion)
-    changed = scenario.variants[sketch.scenario.variants.index(sketch.variant) + 1]
-    return sketch_of(scenario, rehearse(scenario, changed.name, sketch.question.id))
+    # By itself, because every edit checks the whole scenario.
+    alone = replace(sketch.scenario, variants=(sketch.variant,), ballot=Ballot(), polls=())
+    changed = change_in_place(alone, sketch.variant.name, suggestion)
+    return sketch_of(changed, rehearse(changed, sketch.variant.name, sketch.question.id))
 
 
 def _by_weight(sketch: Sketch, people: Indices) -> Indices:
