@@ -5,12 +5,25 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QEvent, QSize, Qt, QTimer, Signal
-from PySide6.QtGui import QFocusEvent, QKeyEvent, QWheelEvent
+from PySide6.QtGui import QFocusEvent, QKeyEvent, QKeySequence, QWheelEvent
 from PySide6.QtWidgets import QComboBox, QLineEdit, QPlainTextEdit, QSizePolicy, QWidget
 
 from deliberate.window.text import explain
 
 REST_MS = 500  # a pause in typing after which longer texts are handed over
+
+
+MODIFIERS = (Qt.Key.Key_Control, Qt.Key.Key_Shift, Qt.Key.Key_Alt, Qt.Key.Key_AltGr, Qt.Key.Key_Meta)
+ELSEWHERE = (Qt.FocusReason.ActiveWindowFocusReason, Qt.FocusReason.PopupFocusReason)  # comes back to go on typing
+
+
+def is_undo(event: QEvent) -> bool:
+    """Whether a key is about to undo or redo: the window's business while nothing is being typed."""
+    return (
+        event.type() == QEvent.Type.ShortcutOverride
+        and isinstance(event, QKeyEvent)
+        and (event.matches(QKeySequence.StandardKey.Undo) or event.matches(QKeySequence.StandardKey.Redo))
+    )
 
 
 def is_command(event: QEvent) -> bool:
@@ -20,6 +33,7 @@ def is_command(event: QEvent) -> bool:
         and isinstance(event, QKeyEvent)
         and not event.isAccepted()
         and bool(event.modifiers() & Qt.KeyboardModifier.ControlModifier)
+        and event.key() not in MODIFIERS
     )
 
 
@@ -63,14 +77,13 @@ class LineField(QLineEdit):
         return QSize(self.fontMetrics().horizontalAdvance("n") * 5, super().minimumSizeHint().height())
 
     def event(self, event: QEvent) -> bool:
+        if is_undo(event) and not self.isModified():
+            event.ignore()
+            return False
         done = super().event(event)
         if is_command(event):
             self.hand_over()
         return done
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        super().focusOutEvent(event)
-        self.hand_over()  # also when a menu opens, where Qt does not call the editing finished
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape and self.isModified():
@@ -136,6 +149,10 @@ class TextField(QPlainTextEdit):
         return self.sizeHint()
 
     def event(self, event: QEvent) -> bool:
+        own = self.document().isUndoAvailable() if self._notes else self.document().isModified()
+        if is_undo(event) and not own:
+            event.ignore()
+            return False
         done = super().event(event)
         if is_command(event):
             self.hand_over()
@@ -143,8 +160,9 @@ class TextField(QPlainTextEdit):
 
     def focusOutEvent(self, event: QFocusEvent) -> None:
         super().focusOutEvent(event)
-        self.hand_over()
-        self.left.emit()
+        if event.reason() not in ELSEWHERE:
+            self.hand_over()
+            self.left.emit()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape and self.document().isModified():

@@ -15,7 +15,7 @@ from PySide6.QtCore import (
     QTimer,
 )
 from PySide6.QtGui import QColor, QGuiApplication, QKeyEvent, QKeySequence, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QAbstractItemView, QMenu, QTableView, QWidget
+from PySide6.QtWidgets import QAbstractItemDelegate, QAbstractItemView, QMenu, QTableView, QWidget
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.words import count
@@ -31,6 +31,7 @@ from deliberate.window.theme import Look
 NOW_EVERY_MS = 100
 EMPTY_HINT = "Nobody yet: double-click on the picture, or paste names here"
 Keys = QKeySequence.StandardKey
+Hint = QAbstractItemDelegate.EndEditHint
 
 
 class PeopleTable(QTableView):
@@ -154,6 +155,40 @@ class PeopleTable(QTableView):
     def _show_round(self) -> None:
         if self.isVisible():
             self.people.refresh_now()
+
+    # Typing
+
+    def closeEditor(self, editor: QWidget, hint: QAbstractItemDelegate.EndEditHint) -> None:
+        """Return goes on to the next person, Tab to the next cell that can be typed into."""
+        super().closeEditor(editor, Hint.NoHint)
+        current = self.currentIndex()
+        if hint == Hint.SubmitModelCache and len(self._session.selection.people) <= 1:
+            self._go_to(current.siblingAtRow(current.row() + 1))
+        elif hint in (Hint.EditNextItem, Hint.EditPreviousItem):
+            cell = self._typed_next(current, 1 if hint == Hint.EditNextItem else -1)
+            self._go_to(cell)
+            if cell.isValid():
+                self.edit(cell)
+
+    def _go_to(self, cell: QModelIndex) -> None:
+        if cell.isValid():
+            stays = cell.row() == self.currentIndex().row()  # then all selected people stay selected
+            flags = QItemSelectionModel.SelectionFlag
+            self.selectionModel().setCurrentIndex(
+                cell, flags.NoUpdate if stays else flags.ClearAndSelect | flags.Rows
+            )
+            self.scrollTo(cell)
+
+    def _typed_next(self, cell: QModelIndex, step: int) -> QModelIndex:
+        """The next cell on screen that text can be typed into, row by row; none after the last."""
+        columns = self.model().columnCount()
+        place = cell.row() * columns + cell.column() + step
+        while 0 <= place < self.model().rowCount() * columns:
+            other = self.model().index(*divmod(place, columns))
+            if not self.isColumnHidden(other.column()) and other.flags() & Qt.ItemFlag.ItemIsEditable:
+                return other
+            place += step
+        return QModelIndex()
 
     # Clipboard
 

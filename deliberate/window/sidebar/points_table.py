@@ -5,6 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import QPoint, QStringListModel, Qt, QTimer, Signal
 from PySide6.QtGui import QKeyEvent, QMouseEvent, QResizeEvent
 from PySide6.QtWidgets import (
+    QAbstractItemDelegate,
     QAbstractItemView,
     QCheckBox,
     QCompleter,
@@ -27,6 +28,7 @@ from deliberate.window.theme import Look
 COLOURS_EVERY_MS = 100
 NAME_LETTERS = 10
 SHORT_BAR = 44
+Hint = QAbstractItemDelegate.EndEditHint
 
 
 class PointsTable(QWidget):
@@ -207,6 +209,17 @@ class _Rows(QTableView):
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:
         super().mouseReleaseEvent(event)
         self.let_go.emit()
+
+    def closeEditor(self, editor: QWidget, hint: QAbstractItemDelegate.EndEditHint) -> None:
+        """Return and Tab go on to the next number."""
+        steps = {Hint.SubmitModelCache: 1, Hint.EditNextItem: 1, Hint.EditPreviousItem: -1}
+        super().closeEditor(editor, Hint.NoHint)
+        current = self.currentIndex()
+        after = current.siblingAtRow(current.row() + steps.get(hint, 0))
+        if hint in steps and after.isValid():
+            self.setCurrentIndex(after)
+            if hint != Hint.SubmitModelCache:
+                self.edit(after)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         editing = self.state() == QAbstractItemView.State.EditingState

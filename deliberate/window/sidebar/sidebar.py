@@ -12,7 +12,6 @@ from deliberate.window.sidebar.people_page import PeoplePage
 from deliberate.window.sidebar.question_page import QuestionPage
 from deliberate.window.theme import Look
 
-
 LEAST_WIDTH = 230
 
 

@@ -8,7 +8,7 @@ from msgspec.structs import replace
 from PySide6.QtCore import QItemSelectionModel, QPoint, Qt
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtTest import QAbstractItemModelTester
-from PySide6.QtWidgets import QApplication, QLineEdit, QWidget
+from PySide6.QtWidgets import QAbstractItemView, QApplication, QLineEdit, QWidget
 from pytestqt.qtbot import QtBot
 
 from deliberate.scenario import edits
@@ -155,6 +155,36 @@ def test_tab_goes_on_to_the_next_cell_while_typing(qtbot: QtBot, open_sidebar: O
     qtbot.keyClicks(editor, "44")
     end_typing(qtbot, editor)
     assert (people(session)[0].name, people(session)[0].beliefs["label"]) == ("Ama", 44.0)
+
+
+def test_tab_passes_over_what_cannot_be_typed(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar(width=236)  # name, start, now, present
+    table = sidebar.people.table
+    go_to(table, 0, Column.START)
+    type_into(qtbot, table, "44", end=Key.Key_Tab)
+    editor = QApplication.focusWidget()
+    assert isinstance(editor, QLineEdit)
+    assert (table.currentIndex().row(), table.currentIndex().column()) == (1, Column.NAME)
+    end_typing(qtbot, editor, Key.Key_Backtab)
+    assert (table.currentIndex().row(), table.currentIndex().column()) == (0, Column.START)
+    end_typing(qtbot, QApplication.focusWidget())
+    go_to(table, 5, Column.START)
+    type_into(qtbot, table, "9", end=Key.Key_Tab)  # the last cell
+    assert table.state() == QAbstractItemView.State.NoState
+    assert [people(session)[row].beliefs["label"] for row in (0, 5)] == [44.0, 9.0]
+
+
+def test_return_goes_on_to_the_next_person(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    table = sidebar.people.table
+    go_to(table, 0, Column.START)
+    for start in range(6):
+        qtbot.keyClicks(table, "5")
+        editor = QApplication.focusWidget()
+        qtbot.keyClicks(editor, str(start))
+        end_typing(qtbot, editor)
+    assert [one.beliefs["label"] for one in people(session)] == [50.0, 51.0, 52.0, 53.0, 54.0, 55.0]
+    assert session.selection.people == {"farah"}
 
 
 def test_tab_leaves_the_table_when_nothing_is_typed(qtbot: QtBot, open_sidebar: Open) -> None:

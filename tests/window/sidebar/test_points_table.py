@@ -292,3 +292,14 @@ def test_clicking_elsewhere_in_the_bar_keeps_what_is_typed(points: tuple[PointsT
     replace_text(QApplication.focusWidget(), "10")
     click(table.add)
     assert amina(session)["chiara"] == 10.0
+
+
+def test_return_goes_on_to_the_next_number(points: tuple[PointsTable, Session]) -> None:
+    table, session = points
+    tick(table.make_room)
+    type_points(table, 1, "25")
+    assert table.table.currentIndex().row() == 2
+    press(table.table, Key.Key_F2)
+    replace_text(QApplication.focusWidget(), "15")
+    press(QApplication.focusWidget(), Key.Key_Return)
+    assert amina(session) == {"amina": 60.0, "bilal": 25.0, "chiara": 15.0}

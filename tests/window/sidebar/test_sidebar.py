@@ -6,12 +6,15 @@ import pytest
 from circles import AS_IT_STANDS, CIRCLES, LABEL
 from msgspec.structs import replace
 from PySide6.QtCore import QPoint
+from PySide6.QtGui import QAction, QKeySequence
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
     QAbstractButton,
     QAbstractItemView,
     QApplication,
     QComboBox,
     QLineEdit,
+    QMenu,
     QPlainTextEdit,
     QSlider,
     QWidget,
@@ -233,3 +236,63 @@ def test_nothing_is_cut_off_at_the_right(open_sidebar: Open, width: int) -> None
                 right = widget.mapTo(sidebar, QPoint(widget.width(), 0)).x()
                 assert right <= width, widget
                 assert widget.width() >= min(widget.minimumSizeHint().width(), 60), widget
+
+
+# Keys of the window while a field has the focus
+
+
+def with_undo(sidebar: Sidebar, session: Session) -> None:
+    undo = QAction("Undo", sidebar)
+    undo.setShortcut(QKeySequence(QKeySequence.StandardKey.Undo))
+    undo.triggered.connect(session.undo)
+    sidebar.addAction(undo)
+
+
+def test_undo_takes_back_typing_first_and_then_the_step(open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    with_undo(sidebar, session)
+    session.select(people=["amina"])
+    field = sidebar.people.start.field
+    type_over(field, "12")
+    QTest.keyClicks(field, "3")
+    assert field.text() == "123"
+    press(field, Key.Key_Z, Keys.ControlModifier)
+    assert session.variant.people[0].beliefs["label"] == 12.0
+    press(field, Key.Key_Escape)
+    press(field, Key.Key_Z, Keys.ControlModifier)
+    assert session.scenario is CIRCLES
+    assert field.text() == "90"
+
+
+def test_undo_in_notes_is_that_of_the_text(open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    with_undo(sidebar, session)
+    session.edit("x", lambda s: edits.rename_person(s, "amina", "Ama"))
+    sidebar.tabs.setCurrentIndex(3)
+    notes = sidebar.meeting.notes
+    notes.setFocus()
+    QTest.keyClicks(notes, "word")
+    press(notes, Key.Key_Z, Keys.ControlModifier)
+    assert notes.toPlainText() == ""
+    assert session.variant.people[0].name == "Ama"
+    sidebar.meeting.title.setFocus()
+    press(sidebar.meeting.title, Key.Key_Z, Keys.ControlModifier)
+    assert session.scenario is CIRCLES
+
+
+def test_a_menu_over_a_field_does_not_end_typing(open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    session.select(people=["amina"])
+    field = sidebar.people.start.field
+    replace_text(field, "1")
+    menu = QMenu(field)
+    menu.addAction("Paste")
+    menu.popup(field.mapToGlobal(QPoint(0, 0)))
+    QApplication.processEvents()
+    menu.close()
+    QApplication.processEvents()
+    assert session.scenario is CIRCLES
+    assert field.text() == "1"
+    QTest.keyClicks(field, "2")
+    press(field, Key.Key_Return)
+    assert session.variant.people[0].beliefs["label"] == 12.0
