@@ -1,8 +1,9 @@
 """Deliberate: rehearse a contested meeting before it happens.
 
-From Python: `read` a scenario file, `rehearse` one of its variants, `write` it back; `leverage` says what the result
-hangs on, `remedies` which change of process helps; `to_networkx` and `from_networkx` exchange a variant with other
-programs. What a person gave wrongly raises `DeliberateError`.
+From Python: `read` a scenario file, `rehearse` one of its variants, `write` it back; `doubt` says how sure that is
+when every number is a guess, `leverage` what the result hangs on, `remedies` which change of process helps;
+`to_networkx` and `from_networkx` exchange a variant with other programs. What a person gave wrongly raises
+`DeliberateError`.
 """
 
 from __future__ import annotations
@@ -14,12 +15,23 @@ from deliberate.errors import DeliberateError
 
 if TYPE_CHECKING:
     from deliberate.files import read, write
+    from deliberate.rehearsal.doubt import doubt
     from deliberate.rehearsal.interchange import from_networkx, to_networkx
     from deliberate.rehearsal.leverage import leverage
     from deliberate.rehearsal.rehearse import rehearse
     from deliberate.rehearsal.remedies import remedies
 
-__all__ = ["DeliberateError", "from_networkx", "leverage", "read", "rehearse", "remedies", "to_networkx", "write"]
+__all__ = [
+    "DeliberateError",
+    "doubt",
+    "from_networkx",
+    "leverage",
+    "read",
+    "rehearse",
+    "remedies",
+    "to_networkx",
+    "write",
+]
 
 
 def __getattr__(name: str) -> Any:
@@ -29,6 +41,8 @@ def __getattr__(name: str) -> Any:
             module = "deliberate.files"
         case "rehearse":
             module = "deliberate.rehearsal.rehearse"
+        case "doubt":
+            module = "deliberate.rehearsal.doubt"
         case "leverage":
             module = "deliberate.rehearsal.leverage"
         case "remedies":
