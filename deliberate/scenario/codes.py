@@ -68,8 +68,8 @@ def coded(scenario: Scenario, known: Mapping[str, str] = NO_CODES) -> Coding:
 def decoded(coding: Coding, changed: Scenario) -> Scenario:
     """`changed`, which is an edited `coding.shown`, with names, roles and notes as they are in `coding.real`.
 
-    What the edit left alone is the same object as before. Raises DeliberateError where the edit would put a text
-    in place of one that codes hide.
+    What the edit left alone is the same object as before; codes in new texts become names. Raises DeliberateError
+    where the edit would put a text in place of one that codes hide.
     """
     return coding.real if changed is coding.shown else _Decoder(coding).scenario(changed)
 
@@ -172,6 +172,7 @@ class _Decoder:
         self._same: dict[int, Any] = {}  # by identity: what stands behind a value that the edit left alone
         self._texts: dict[str, str] = {}  # what stands behind a text with codes in it
         self._people: dict[str, Person] = {}
+        self._names: dict[str, str] = {}
         self._note(real.title, shown.title)
         self._note(real.ballot.name, shown.ballot.name)
         self._same[id(shown.ballot)] = real.ballot
@@ -186,10 +187,12 @@ class _Decoder:
                 self._same[id(coded_stage)] = stage
                 self._note(stage.name, coded_stage.name)
             self._people |= {person.id: person for person in variant.people if person.id not in self._people}
+        self._names = {coding.codes[one]: person.shown_name for one, person in self._people.items()}
 
     def scenario(self, changed: Scenario) -> Scenario:
         """All of it."""
         real = self._coding.real
+        variants = changed.variants
         ballot = self._same.get(id(changed.ballot)) or replace(changed.ballot, name=self._text(changed.ballot.name))
         return replace(
             changed,
@@ -197,7 +200,9 @@ class _Decoder:
             notes=_hidden(real.notes, changed.notes),
             questions=tuple(self._question(question) for question in changed.questions),
             ballot=ballot,
-            variants=tuple(self._variant(variant) for variant in changed.variants),
+            variants=tuple(
+                self._variant(variant, left) for variant, left in zip(variants, (None, *variants), strict=False)
+            ),
         )
 
     def _note(self, real: str, shown: str) -> None:
@@ -205,7 +210,12 @@ class _Decoder:
             self._texts.setdefault(shown, real)
 
     def _text(self, text: str) -> str:
-        return self._texts.get(text, text)
+        """What stands behind a text; in a new one, codes stand for people."""
+        named = self._texts.get(text) or self._named(text)
+        return named if len(named) <= _MOST_LETTERS else text
+
+    def _named(self, text: str) -> str:
+        return re.sub(r"(?<!\w)P[0-9]+(?!\w)", lambda found: self._names.get(found.group(), found.group()), text)
 
     def _question(self, question: Question) -> Question:
         same: Question | None = self._same.get(id(question))
@@ -218,24 +228,29 @@ class _Decoder:
             high_label=self._text(question.high_label),
         )
 
-    def _variant(self, variant: Variant) -> Variant:
+    def _variant(self, variant: Variant, left: Variant | None) -> Variant:
         same: Variant | None = self._same.get(id(variant))
         if same is not None:
             return same
-        before, shown = self._counterpart(variant)
+        before, shown = self._counterpart(variant, left)
         people = before.people if variant.people is shown.people else self._everybody(variant, before, shown)
         plan = before.plan if variant.plan is shown.plan else self._plan(variant.plan)
-        notes = _hidden(before.notes, variant.notes)
+        known = shown.name == variant.name
+        notes = _hidden(before.notes, variant.notes) if known or not variant.notes else self._named(variant.notes)
         return replace(variant, name=self._text(variant.name), notes=notes, people=people, plan=plan)
 
-    def _counterpart(self, variant: Variant) -> tuple[Variant, Variant]:
-        """The variant that this one was, or was copied from: with names and with codes."""
+    def _counterpart(self, variant: Variant, left: Variant | None) -> tuple[Variant, Variant]:
+        """The variant that this one was, or is a copy of, with names and with codes. A renamed one still has its
+        parts; a copy stands right of its original (`left`)."""
         pairs = list(zip(self._coding.real.variants, self._coding.shown.variants, strict=True))
         for before, shown in pairs:
             if shown.name == variant.name:
                 return before, shown
         for before, shown in pairs:
             if shown.people is variant.people or shown.plan is variant.plan:
+                return before, shown
+        for before, shown in pairs:
+            if left is not None and shown.name == left.name:
                 return before, shown
         empty = Variant(name=variant.name, people=())
         return empty, empty
@@ -248,7 +263,7 @@ class _Decoder:
     def _person(self, person: Person, here: Mapping[str, Person]) -> Person:
         known = here.get(person.id) or self._people.get(person.id)
         if known is None:
-            return person  # somebody new, with the name that was typed
+            return replace(person, name=self._text(person.shown_name))  # somebody new, with the name that was typed
         if person.name != self._coding.codes[person.id]:
             raise DeliberateError("names are hidden while codes are shown: show names to change one")
         return replace(person, name=known.name, role=_hidden(known.role, person.role))

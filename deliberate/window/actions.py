@@ -90,9 +90,11 @@ class Actions(QObject):
     def _refresh_file(self) -> None:
         """What only the disk and the settings know is read when the menu opens."""
         files = self._window.files
-        self.bring_back.setEnabled(self._window.recovery.any_copies())
+        coded = self._window.session.codes_shown  # names of files and of other meetings may name people
+        self.bring_back.setEnabled(not coded and self._window.recovery.any_copies())
         self.recent.clear()
-        paths = files.recent.paths
+        self.recent.setEnabled(not coded)
+        paths = [] if coded else files.recent.paths
         for number, path in enumerate(paths, start=1):
             entry = self.recent.addAction(f"&{number} {with_ampersands(label(path, paths))}")
             entry.triggered.connect(lambda _checked=False, path=path: files.open_recent(path))
@@ -178,6 +180,8 @@ class Actions(QObject):
         )
         self.flow.setCheckable(True)
         menu.addSeparator()
+        self._fill_before_others(menu)
+        menu.addSeparator()
         themes = menu.addMenu("&Appearance")
         group = QActionGroup(self)
         for choice, text in (("system", "As the system"), ("light", "Light"), ("dark", "Dark")):
@@ -189,6 +193,19 @@ class Actions(QObject):
         self.still.setCheckable(True)
         self.still.setChecked(look.still)
 
+    def _fill_before_others(self, menu: QMenu) -> None:
+        """What is of use while others see the screen."""
+        session, blank = self._window.session, self._window.blank
+        self.codes = self._add(
+            menu, "&Codes instead of names", lambda: session.show_codes(self.codes.isChecked()), "F7"
+        )
+        self.codes.setCheckable(True)
+        self.codes.setToolTip("In everything that is shown, copied or exported; roles and notes are left out")
+        self.blank = self._add(menu, "Blan&k the screen", blank.begin, "F8")
+        self.blank.setShortcutContext(Qt.ShortcutContext.ApplicationShortcut)
+        session.codes_changed.connect(self._refresh_file)
+        session.codes_changed.connect(lambda: self.codes.setChecked(session.codes_shown))
+
     def _fill_help(self, menu: QMenu) -> None:
         window = self._window
         self._add(menu, "&First steps", lambda: help_texts.show(window, "First steps", help_texts.FIRST_STEPS), "F1")
@@ -196,7 +213,7 @@ class Actions(QObject):
         self._add(
             menu,
             "&What the sketch is and is not",
-            lambda: help_texts.show(window, "What the sketch is and is not", help_texts.CARE),
+            lambda: help_texts.show_care(window),
         )
 
     def refresh(self) -> None:

@@ -72,6 +72,7 @@ def run(path: str | None = None) -> int:
     window = MainWindow(Session(beginning.scenario, held and held.path), look, settings, private)
     window.files.begin(held)
     sys.excepthook = _Loud(window)
+    window.begin_with_care()
     window.show()
     if beginning.word:
         window.session.said.emit(beginning.word)

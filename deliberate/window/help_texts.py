@@ -40,7 +40,13 @@ The talk (picture, chart and round bar)
   Page Down, Page Up    one step on, one step back
   Home, End             to the start, to the end
 
+In front of others
+  F5                    projector view; there Page Down or a click steps on, Escape leaves
+  F7                    codes instead of names, and back
+  F8                    blank the screen; any key brings it back
+
 The meeting
+  F6                    compare variants
   Ctrl+Z, Ctrl+Shift+Z  undo, redo
   Ctrl+T                add a variant
   Ctrl+Tab              next variant
@@ -65,6 +71,11 @@ project is read by the people in it.
 
 Holding on to a view may be right. Use what you see to help people hear each other, whatever they then decide.
 """
+
+
+def show_care(parent: QWidget) -> None:
+    """What the sketch is and is not, in full."""
+    show(parent, "What the sketch is and is not", CARE)
 
 
 def show(parent: QWidget, title: str, text: str) -> None:

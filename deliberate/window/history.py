@@ -5,7 +5,7 @@ A scenario is a value, so a history is a list of values; unchanged people and ar
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from deliberate.scenario.values import Scenario
 
@@ -14,12 +14,14 @@ MOST_STEPS = 1_000
 
 @dataclass(frozen=True)
 class Moment:
-    """The meeting after `step`, and which variant was on screen."""
+    """The meeting after `step`, and which variant was on screen. A `coded` step was taken while codes stood for
+    names: its words hold none."""
 
     step: str
     scenario: Scenario
     variant: str
     merge: str = ""
+    coded: bool = False
 
 
 class History:
@@ -41,20 +43,30 @@ class History:
         return self.now.scenario is not self._saved and self.now.scenario != self._saved
 
     @property
+    def undo_moment(self) -> Moment | None:
+        """The moment whose step undo would take back, or None."""
+        return self.now if self._at > 0 else None
+
+    @property
+    def redo_moment(self) -> Moment | None:
+        """The moment whose step redo would do again, or None."""
+        return self._moments[self._at + 1] if self._at + 1 < len(self._moments) else None
+
+    @property
     def undo_step(self) -> str | None:
         """The name of the step that undo would take back, or None."""
-        return self.now.step if self._at > 0 else None
+        return self.undo_moment.step if self.undo_moment is not None else None
 
     @property
     def redo_step(self) -> str | None:
         """The name of the step that redo would do again, or None."""
-        return self._moments[self._at + 1].step if self._at + 1 < len(self._moments) else None
+        return self.redo_moment.step if self.redo_moment is not None else None
 
-    def push(self, step: str, scenario: Scenario, variant: str, merge: str = "") -> None:
+    def push(self, step: str, scenario: Scenario, variant: str, merge: str = "", *, coded: bool = False) -> None:
         """Add a moment after the present one. A non-empty `merge` equal to the present one's replaces it, so
         that turning a wheel or holding a key is one step."""
         del self._moments[self._at + 1 :]
-        moment = Moment(step, scenario, variant, merge)
+        moment = Moment(step, scenario, variant, merge, coded)
         if merge and self._at > 0 and self.now.merge == merge:
             self._moments[self._at] = moment
             return
@@ -67,12 +79,16 @@ class History:
     def seal(self) -> None:
         """Let the next step stand on its own even if its merge key is the same."""
         moment = self.now
-        self._moments[self._at] = Moment(moment.step, moment.scenario, moment.variant)
+        self._moments[self._at] = replace(moment, merge="")
 
     def show(self, variant: str) -> None:
         """Remember that `variant` is on screen at the present moment; not a step."""
         moment = self.now
-        self._moments[self._at] = Moment(moment.step, moment.scenario, variant)
+        self._moments[self._at] = replace(moment, variant=variant, merge="")
+
+    def call(self, step: str) -> None:
+        """Give the present moment's step other words."""
+        self._moments[self._at] = replace(self.now, step=step)
 
     def undo(self) -> bool:
         """Go one moment back; False at the beginning."""

@@ -14,14 +14,18 @@ from PySide6.QtWidgets import (
     QMainWindow,
     QSizePolicy,
     QSplitter,
+    QToolTip,
     QVBoxLayout,
     QWidget,
 )
 
 from deliberate.window.actions import Actions
 from deliberate.window.asking import tell
+from deliberate.window.blank import Blank
 from deliberate.window.canvas import Canvas
+from deliberate.window.care import CareNote, is_noted, note
 from deliberate.window.chart import ChartPanel
+from deliberate.window.columns import Columns
 from deliberate.window.findings_panel import FindingsPanel
 from deliberate.window.held_file import Locks
 from deliberate.window.meeting_files import MeetingFiles, dropped_file
@@ -31,7 +35,7 @@ from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.styles import style_sheet
-from deliberate.window.text import elided, plain_label, strong, tooltip
+from deliberate.window.text import elided, explain, plain_label, strong
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
 
@@ -77,7 +81,7 @@ class TopBar(QWidget):
         """Read title and questions again."""
         scenario = self._session.scenario
         self.title.setText(scenario.title + (" · edited" if self._session.modified else ""))
-        self.title.setToolTip(tooltip(scenario.title))
+        explain(self.title, scenario.title)
         self.question.clear()
         for question in scenario.questions:
             self.question.addItem(question.text, question.id)
@@ -97,7 +101,7 @@ class TopBar(QWidget):
         text = self._session.question.text
         self.only_question.setText(elided(text, self.only_question.font(), self.width() * 0.27))
         self.only_question.setAccessibleName(f"Question: {text}")
-        self.only_question.setToolTip(tooltip(text))
+        explain(self.only_question, text)
 
     def _choose(self, place: int) -> None:
         self._session.show_question(self.question.itemData(place))
@@ -123,6 +127,10 @@ class MainWindow(QMainWindow):
         self.chart = ChartPanel(session, look, self)
         self.findings = FindingsPanel(session, look, self)
         self.round_bar = RoundBar(session, look, self)
+        self.care_note = CareNote(self)
+        self.care_note.hide()
+        self.care_note.put_away.connect(self._put_note_away)
+        self.blank = Blank(self)
         self._lay_out()
         self._fill_status()
         self.actions_of_window = Actions(self)
@@ -133,6 +141,7 @@ class MainWindow(QMainWindow):
         session.rehearsal_changed.connect(self._refresh_vote)
         session.scenario_changed.connect(self._refresh_vote)
         session.player.moved.connect(self._refresh_vote)
+        session.codes_changed.connect(self._forget_words)
         session.said.connect(self._say)
         session.refused.connect(self._refuse)
         self.recovery.failed.connect(lambda why: self._refuse(f"Unsaved work is not kept for a crash: {why}"))
@@ -150,21 +159,15 @@ class MainWindow(QMainWindow):
         self.right.addWidget(self.findings)
         self.right.setChildrenCollapsible(False)
         self.right.setSizes([380, 320])
-        self.across = QSplitter(Qt.Orientation.Horizontal, self)
-        for part in (self.sidebar, self.canvas, self.right):
-            self.across.addWidget(part)
-        for place, stretch in enumerate((0, 1, 0)):
-            self.across.setStretchFactor(place, stretch)
-        self.across.setSizes([290, 620, 370])
-        self.across.setChildrenCollapsible(False)
-        for splitter in (self.right, self.across):
-            splitter.setHandleWidth(1)
+        self.right.setHandleWidth(1)
+        self.across = Columns(self, self.sidebar, self.canvas, self.right)
         centre = QWidget(self)
         column = QVBoxLayout(centre)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
         column.addWidget(self.top_bar)
         column.addWidget(_hairline(centre))
+        column.addWidget(self.care_note)
         column.addWidget(self.across, 1)
         column.addWidget(_hairline(centre))
         column.addWidget(self.round_bar)
@@ -184,7 +187,8 @@ class MainWindow(QMainWindow):
 
     def _refresh_title(self) -> None:
         session = self.session
-        name = session.path.name if session.path else session.scenario.title
+        # A file's name may hold people's names, and codes cannot be put into it.
+        name = session.path.name if session.path and not session.codes_shown else session.scenario.title
         # Qt reads "[*]" in a title as the place of the modified mark; a name must not.
         self.setWindowTitle(f"{name.replace('[*]', '[ * ]')}[*] – Deliberate")
         self.setWindowModified(session.modified)
@@ -202,6 +206,12 @@ class MainWindow(QMainWindow):
         if text != self.vote.text():
             self.vote.setText(text)
 
+    def _forget_words(self) -> None:
+        """What was said before codes stood for names, or names for codes, is not left standing."""
+        self.canvas.cancel_typing()
+        self.statusBar().clearMessage()
+        QToolTip.hideText()
+
     def _say(self, sentence: str) -> None:
         self.statusBar().showMessage(sentence, 6000)
 
@@ -218,6 +228,15 @@ class MainWindow(QMainWindow):
         names = [variant.name for variant in self.session.scenario.variants]
         self.session.show_variant(names[(names.index(self.session.variant.name) + by) % len(names)])
 
+    def begin_with_care(self) -> None:
+        """Show the note on what the sketch is and is not, until it has been put away once."""
+        self.care_note.setVisible(not is_noted(self._settings))
+
+    def _put_note_away(self) -> None:
+        note(self._settings)
+        self.care_note.hide()
+        self.canvas.setFocus()
+
     # Its life
 
     def _restore(self) -> None:
@@ -225,10 +244,10 @@ class MainWindow(QMainWindow):
         geometry = self._settings.value("window/geometry")
         if isinstance(geometry, QByteArray):
             self.restoreGeometry(geometry)
-        for splitter, key in ((self.across, "window/across"), (self.right, "window/right")):
+        for restore, key in ((self.across.keep, "window/across"), (self.right.restoreState, "window/right")):
             state = self._settings.value(key)
             if isinstance(state, QByteArray):
-                splitter.restoreState(state)
+                restore(state)
 
     def paintEvent(self, event: QPaintEvent) -> None:
         super().paintEvent(event)
@@ -264,7 +283,7 @@ class MainWindow(QMainWindow):
             event.ignore()
             return
         self._settings.setValue("window/geometry", self.saveGeometry())
-        self._settings.setValue("window/across", self.across.saveState())
+        self._settings.setValue("window/across", self.across.kept())
         self._settings.setValue("window/right", self.right.saveState())
         self.session.close()
         self.files.close()

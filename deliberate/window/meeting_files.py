@@ -160,7 +160,7 @@ class MeetingFiles(QObject):
     def ask_save_as(self) -> bool:
         """Ask for a file and save there. True when it is on disk."""
         self._finish_typing()
-        proposed = self._session.path or self._folder() / (_file_name(self._session.scenario.title) + SUFFIX)
+        proposed = self._session.path or self._folder() / (_file_name(self._session.meeting.title) + SUFFIX)
         chosen, _ = QFileDialog.getSaveFileName(self._window, "Save the meeting as", str(proposed), FILTER)
         return bool(chosen) and self.save_as(Path(chosen))
 
@@ -320,12 +320,12 @@ class MeetingFiles(QObject):
             self._tell_unread(held.path, error)
             return
         self._hold(replace(held, known=known))
-        self._session.edit(step, lambda _: scenario)
+        self._session.replace(step, scenario)
         self._session.mark_saved(held.path)
 
     def _write(self, path: Path, lock: QLockFile | None) -> bool:
         try:
-            known = on_disk.write_noting(self._session.scenario, path)
+            known = on_disk.write_noting(self._session.meeting, path)
         except DeliberateError as error:
             still = "The meeting is still in this window, and what was on disk before is unchanged."
             tell(self._window, f"“{path.name}” was not saved", f"{path.name}: {error}.\n\n{still}")
@@ -333,7 +333,7 @@ class MeetingFiles(QObject):
         self._hold(HeldFile(path, known, lock))
         self._session.mark_saved(path)
         self.recent.add(path)
-        self._session.said.emit(f"Saved as {path.name}")
+        self._session.said.emit("Saved" if self._session.codes_shown else f"Saved as {path.name}")
         return True
 
     def _may_replace(self, path: Path) -> bool:

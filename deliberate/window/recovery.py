@@ -158,13 +158,13 @@ class Recovery(QObject):
     def _copy(self) -> Copy:
         session = self._session
         head = Head(
-            title=session.scenario.title,
-            variant=session.variant.name,
+            title=session.meeting.title,
+            variant=session.meeting.variants[session.place].name,
             kept=datetime.now(UTC),
             path=None if session.path is None else str(session.path.absolute()),
             digest=self.digest,
         )
-        return Copy(head, session.scenario)
+        return Copy(head, session.meeting)
 
     def _place(self) -> Path:
         """Where this window's copy goes. Its lock, which ends with the process, tells others that it is alive."""

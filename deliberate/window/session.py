@@ -6,7 +6,7 @@ each says which part of the picture to read again.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -16,12 +16,14 @@ from PySide6.QtCore import QObject, Signal
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.results import Finding, Rehearsal
+from deliberate.scenario.codes import NO_CODES, Coding, coded, decoded
 from deliberate.scenario.values import Question, Scenario, Variant
 from deliberate.window.engine import Ask, Engine
-from deliberate.window.history import History
+from deliberate.window.history import History, Moment
 from deliberate.window.player import Player
 
 Pair = tuple[str, str]  # (listener, source)
+WITH_NAMES = "a step taken with names"  # what a step is called whose words may hold names while codes are shown
 
 
 @dataclass(frozen=True)
@@ -35,6 +37,15 @@ class Selection:
         return bool(self.people or self.arrows)
 
 
+@dataclass(frozen=True)
+class Light:
+    """People and (listener, source) arrows to light up where there is no finding that has them."""
+
+    people: tuple[str, ...] = ()
+    arrows: tuple[Pair, ...] = ()
+    groups: tuple[tuple[str, ...], ...] = ()
+
+
 class Session(QObject):
     """The open meeting as the window sees it."""
 
@@ -44,6 +55,7 @@ class Session(QObject):
     selection_changed = Signal()
     lit_changed = Signal()
     file_changed = Signal()  # path, modified mark, undo and redo names
+    codes_changed = Signal()  # codes stand for names from now on, or no longer
     said = Signal(str)  # a sentence for the status line
     refused = Signal(str)  # why an edit could not be done
 
@@ -55,8 +67,12 @@ class Session(QObject):
         self.engine.found.connect(self._take_findings)
         self.engine.failed.connect(self._take_failure)
         self.path = path
+        self.opened = 0  # how many meetings have been opened in the place of the first one
         self.selection = Selection()
-        self.lit: Finding | None = None
+        self.lit: Finding | Light | None = None
+        self._codes_shown = False
+        self._codes: Mapping[str, str] = NO_CODES  # by person id; kept as long as the meeting is open
+        self._coding: Coding | None = None  # of the meeting as it is now
         self._history = History(scenario, scenario.variants[0].name)
         self._question = scenario.questions[0].id
         self._asked: Ask | None = None
@@ -67,15 +83,30 @@ class Session(QObject):
     # What is shown
 
     @property
-    def scenario(self) -> Scenario:
-        """The meeting on screen."""
+    def meeting(self) -> Scenario:
+        """The meeting as it is saved, with names whatever is shown. Only for files: what is shown is `scenario`."""
         return self._history.now.scenario
+
+    @property
+    def scenario(self) -> Scenario:
+        """The meeting on screen, with codes in place of names while codes are shown."""
+        return self._present_coding().shown if self._codes_shown else self.meeting
 
     @property
     def variant(self) -> Variant:
         """The variant on screen."""
+        return self.scenario.variants[self.place]
+
+    @property
+    def place(self) -> int:
+        """Which of the meeting's variants is on screen, from 0."""
         name = self._history.now.variant
-        return next((v for v in self.scenario.variants if v.name == name), self.scenario.variants[0])
+        return next((place for place, one in enumerate(self.meeting.variants) if one.name == name), 0)
+
+    @property
+    def codes_shown(self) -> bool:
+        """Whether codes stand for names."""
+        return self._codes_shown
 
     @property
     def question(self) -> Question:
@@ -90,12 +121,12 @@ class Session(QObject):
     @property
     def undo_step(self) -> str | None:
         """What undo would take back."""
-        return self._history.undo_step
+        return self._named(self._history.undo_moment)
 
     @property
     def redo_step(self) -> str | None:
         """What redo would do again."""
-        return self._history.redo_step
+        return self._named(self._history.redo_moment)
 
     def starts(self) -> NDArray[np.float64]:
         """Starting beliefs of the shown variant on the shown question, shape (people,)."""
@@ -131,15 +162,22 @@ class Session(QObject):
         """
         try:
             changed = change(self.scenario)
+            meeting = decoded(self._present_coding(), changed) if self._codes_shown else changed
         except DeliberateError as error:
-            self.refused.emit(str(error))
+            self.refused.emit(self._present_coding().message(str(error)) if self._codes_shown else str(error))
             return False
         variant = show or self._still_there(changed)
-        if changed is self.scenario and variant == self.variant.name:
+        if meeting is self.meeting and variant == self.variant.name:
             return True
-        self._history.push(step, changed, variant, merge)
-        self._show_again()
+        place = next(place for place, one in enumerate(changed.variants) if one.name == variant)
+        self._push(step, meeting, meeting.variants[place].name, merge)
         return True
+
+    def replace(self, step: str, meeting: Scenario) -> None:
+        """Put another state of the same meeting, with names, in place of this one, as an undoable step."""
+        names = [variant.name for variant in meeting.variants]
+        shown = self._history.now.variant
+        self._push(step, meeting, shown if shown in names else names[0])
 
     def undo(self) -> None:
         """Take the last step back."""
@@ -169,15 +207,17 @@ class Session(QObject):
             self._history.mark_saved(None)
         self._question = scenario.questions[0].id
         self.path = path
+        self.opened += 1
         self.selection = Selection()
         self.lit = None
+        self._codes, self._coding = NO_CODES, None
         self._show_again()
         self.player.seek(0)
 
     def mark_saved(self, path: Path) -> None:
         """The meeting on screen is what `path` holds now."""
         self.path = path
-        self._history.mark_saved(self.scenario)
+        self._history.mark_saved(self.meeting)
         self.file_changed.emit()
 
     def mark_unsaved(self) -> None:
@@ -188,7 +228,8 @@ class Session(QObject):
     def show_variant(self, name: str) -> None:
         """Show another variant of the meeting; not an edit."""
         if name != self.variant.name:
-            self._history.show(name)
+            place = next(place for place, variant in enumerate(self.scenario.variants) if variant.name == name)
+            self._history.show(self.meeting.variants[place].name)
             self._show_again()
 
     def show_question(self, question: str) -> None:
@@ -196,6 +237,16 @@ class Session(QObject):
         if question != self.question.id:
             self._question = question
             self._show_again()
+
+    def show_codes(self, shown: bool) -> None:
+        """Let codes stand for names in everything that is shown, copied or exported, or names again; not an edit."""
+        if shown == self._codes_shown:
+            return
+        self._codes_shown = shown
+        self.rehearsal, self.findings = None, ()  # a crowd's would stay until the next ones are there
+        self.codes_changed.emit()
+        self.findings_changed.emit()
+        self._show_again()
 
     def select(self, people: Iterable[str] = (), arrows: Iterable[Pair] = ()) -> None:
         """Select these people and arrows, and nothing else."""
@@ -205,7 +256,7 @@ class Session(QObject):
             self._history.seal()
             self.selection_changed.emit()
 
-    def light(self, finding: Finding | None) -> None:
+    def light(self, finding: Finding | Light | None) -> None:
         """Light up the people and arrows of a finding on the canvas and the chart, or nothing."""
         if finding is not self.lit:
             self.lit = finding
@@ -221,6 +272,29 @@ class Session(QObject):
         self.player.seek(0)
         self.player.pause()
         self.engine.stop()
+
+    def _push(self, step: str, meeting: Scenario, variant: str, merge: str = "") -> None:
+        known = len(self._codes)
+        if self._codes_shown:
+            step = self._present_coding().text(step)
+        self._history.push(step, meeting, variant, merge, coded=self._codes_shown)
+        if self._codes_shown:
+            # Whoever is new was typed with a name, and the step is told with it.
+            self._history.call(self._present_coding().text(step))
+        self._show_again()
+        if self._codes_shown and len(self._codes) > known:
+            self.said.emit("The name is kept with the meeting and not shown while codes are")
+
+    def _present_coding(self) -> Coding:
+        if self._coding is None or self._coding.real is not self.meeting:
+            self._coding = coded(self.meeting, self._codes)
+            self._codes = self._coding.codes
+        return self._coding
+
+    def _named(self, moment: Moment | None) -> str | None:
+        if moment is None:
+            return None
+        return moment.step if moment.coded or not self._codes_shown else WITH_NAMES
 
     def _still_there(self, scenario: Scenario) -> str:
         """The shown variant's name in `scenario`; by its place when it was renamed or removed."""

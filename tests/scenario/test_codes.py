@@ -82,7 +82,8 @@ def test_a_coded_meeting_is_valid_and_holds_no_name(scenario: Scenario) -> None:
         name = person.shown_name
         if name in codes or not re.fullmatch(r"\w(.*\w)?", name):
             continue
-        for text in (shown.title, shown.ballot.name, *(stage.name for v in shown.variants for stage in v.plan.stages)):
+        stage_names = [stage.name for variant in shown.variants for stage in variant.plan.stages]
+        for text in (shown.title, shown.ballot.name, *stage_names):
             assert not re.search(rf"(?<!\w){re.escape(name)}(?!\w)", text), (name, text)
 
 
@@ -145,6 +146,17 @@ def test_somebody_new_keeps_the_name_that_was_typed() -> None:
     coding = coded(meeting("Ngozi"))
     after = decoded(coding, edits.add_person(coding.shown, "Zofia", variant="As it stands"))
     assert [person.name for person in after.variants[0].people] == ["Ngozi", "Zofia"]
+
+
+def test_codes_in_new_texts_become_names() -> None:
+    coding = coded(meeting("Ngozi", "Tomas"))
+    copied = edits.add_variant(coding.shown, copy_of="As it stands", name="P2 hears P1")
+    copied = edits.set_variant_notes(copied, "P2 hears P1", "Let P2 hear P1; not P10.")
+    after = decoded(coding, copied).variants[1]
+    assert (after.name, after.notes) == ("Tomas hears Ngozi", "Let Tomas hear Ngozi; not P10.")
+    clip = edits.extract(coding.shown.variants[0], ["id-0"])
+    doubled = decoded(coding, edits.paste(coding.shown, clip, variant="As it stands"))
+    assert [person.name for person in doubled.variants[0].people] == ["Ngozi", "Tomas", "Ngozi"]
 
 
 def test_texts_with_codes_become_texts_with_names_again() -> None:

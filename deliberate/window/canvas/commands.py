@@ -161,12 +161,13 @@ class Commands:
         """The selected people with the places they have on screen, also those that the program gave."""
         scene = self._canvas.picture.scene
         clip = clips.extract(self._session.variant, people)
+        places = {person.id: scene.places[scene.index[person.id]] for person in clip.people}
         placed = tuple(
-            replace(person, x=float(x), y=float(y))
-            for person in clip.people
-            for x, y in (scene.places[scene.index[person.id]],)
+            replace(person, x=float(places[person.id][0]), y=float(places[person.id][1])) for person in clip.people
         )
-        return replace(clip, people=placed)
+        clip = replace(clip, people=placed)
+        # Ids are made from names, and what is on the clipboard can be pasted anywhere.
+        return clips.with_ids(clip, {one.id: one.shown_name for one in placed}) if self._session.codes_shown else clip
 
     def _insert(self, clip: clips.Clip, step: str) -> None:
         session, before = self._session, self._canvas.picture.scene

@@ -22,7 +22,7 @@ class Follower(QObject):
         super().__init__(canvas)
         self._canvas, self._session = canvas, session
         self._remembered: dict[str, tuple[float, float]] = {}
-        self._shown = session.scenario
+        self._opened = session.opened
         self.first_scene = scene_of(session.variant, session.question, self._remembered, None)
 
     def begin(self) -> None:
@@ -53,11 +53,10 @@ class Follower(QObject):
         """The meeting, the variant or the question is another value."""
         canvas, session, picture = self._canvas, self._session, self._canvas.picture
         before = picture.scene
-        # Only a meeting that was just opened has no history in either direction.
-        opened = session.undo_step is None and session.redo_step is None and session.scenario is not self._shown
+        opened = session.opened != self._opened
         if opened:
             self._remembered.clear()
-        self._shown = session.scenario
+        self._opened = session.opened
         radius = None if opened else before.radius
         scene = scene_of(session.variant, session.question, self._remembered, radius, None if opened else before)
         canvas.stop_moving()

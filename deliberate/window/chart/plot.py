@@ -145,6 +145,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         ):
             signal.connect(self.refresh)
         session.player.moved.connect(self._follow)
+        session.codes_changed.connect(self._hide_hint)
         look.changed.connect(self._dress)
         self._dress()
 
@@ -344,6 +345,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
     def _hide_hint(self) -> None:
         if self.hinted:
             self.hinted = ""
+            self.hint.setText("")
             self.hint.hide()
 
     def leaveEvent(self, event: QEvent) -> None:
