@@ -48,14 +48,16 @@ class LineField(QLineEdit):
         self._subject: object = None
         self.setAccessibleName(name)
         self.setPlaceholderText(hint)
-        if meaning:
-            explain(self, meaning)
+        self._meaning = meaning
+        _tell_whole(self, meaning)
         self.editingFinished.connect(self.hand_over)
 
     def show_text(self, text: str, subject: object = None) -> None:
         """The text that holds now for `subject`. What is being typed for the same one is left alone."""
         typing = self.hasFocus() and self.isModified() and subject == self._subject
         self._kept, self._subject = text, subject
+        if not self._meaning:
+            _tell_whole(self, text)
         if not typing and text != self.text():
             self.setText(text)
             self.setCursorPosition(0)
@@ -202,7 +204,16 @@ class Choice(QComboBox):
         """The value that holds now."""
         place = next((i for i in range(self.count()) if self.itemData(i) == value), -1)
         self.setCurrentIndex(place)
-        explain(self, self.currentText())  # all of it, where the field is too narrow
+        _tell_whole(self, self.currentText())
 
     def wheelEvent(self, event: QWheelEvent) -> None:
         event.ignore()
+
+
+def _tell_whole(field: QWidget, text: str) -> None:
+    """Say all of the text, where the field may be too narrow for it; an empty tooltip would be a box of its own."""
+    if text:
+        explain(field, text)
+    else:
+        field.setToolTip("")
+        field.setAccessibleDescription("")

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 
-from PySide6.QtWidgets import QCheckBox, QGridLayout, QWidget
+from PySide6.QtWidgets import QCheckBox, QGridLayout, QHBoxLayout, QLabel, QWidget
 
 from deliberate.rehearsal.words import number
 from deliberate.scenario import edits
@@ -71,19 +71,21 @@ class QuestionPage(Page):
         grid, body = self.add_grid(), self.body
         self.low = LineField("Low end of the scale", body)
         self.high = LineField("High end of the scale", body)
-        self.low_label = LineField("What the low end means", body, hint="means")
-        self.high_label = LineField("What the high end means", body, hint="means")
+        self.low_label = LineField("What the low end means", body, hint="what it means")
+        self.high_label = LineField("What the high end means", body, hint="what it means")
         self.unit = LineField("Unit", body, hint="none")
-        rows = (("Lo&w end", self.low, self.low_label), ("High e&nd", self.high, self.high_label))
-        for row, (text, end, label) in enumerate(rows):
-            grid.addWidget(label_for(end, text, body), row, 0)
-            grid.addWidget(end, row, 1)
-            grid.addWidget(label, row, 2)
-        grid.addWidget(label_for(self.unit, "Un&it", body), 2, 0)
-        grid.addWidget(self.unit, 2, 1, 1, 2)
-        grid.setHorizontalSpacing(6)
-        grid.setColumnStretch(1, 4)
-        grid.setColumnStretch(2, 3)
+        ends = QHBoxLayout()
+        ends.setSpacing(4)
+        ends.addWidget(label_for(self.low, "Fr&om", body))
+        ends.addWidget(self.low, 1)
+        ends.addWidget(QLabel("to", body))
+        ends.addWidget(self.high, 1)
+        grid.addLayout(ends, 0, 0, 1, 2)
+        texts = (("Lo&w end", self.low_label), ("High e&nd", self.high_label), ("Un&it", self.unit))
+        for row, (text, field) in enumerate(texts, start=1):
+            grid.addWidget(label_for(field, text, body), row, 0)
+            grid.addWidget(field, row, 1)
+        grid.setColumnStretch(1, 1)
         self.along = QCheckBox("Numbe&rs move along", body)
         explain(
             self.along,
