@@ -158,6 +158,11 @@ def test_views_draw_together_slowly() -> None:
     assert "slow" not in kinds(meeting([[95, 5], [5, 95]], [0, 100], plan=talk(7)))
 
 
+def test_a_short_plan_does_not_make_views_slow() -> None:
+    # The gap halves in every round (second modulus 1/2), as long as the plan is.
+    assert "slow" not in kinds(meeting([[3, 1], [1, 3]], [0, 100], plan=talk(1)))
+
+
 def test_who_keeps_most_is_never_rounded_up() -> None:
     # 888 of 1000 is 88.8, so "89 or more" would be untrue.
     finding = told(meeting([[888, 56, 56], [28, 944, 28], [500, 500, 0]], [0, 50, 100], plan=talk(2)), "slow")

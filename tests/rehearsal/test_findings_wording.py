@@ -19,7 +19,7 @@ NEVER_SAID = re.compile(
     r"stubborn|\bblock|\bweak|\bstrong|forecast|predict|\bwill\b|\bshould\b|\bwins?\b|\bloses?\b|resist|refus|dominat",
     re.IGNORECASE,
 )
-NO_FIGURE = re.compile(r"\bnan\b|\binf\b|\bNone\b|\bTrue\b|\bFalse\b|\de[+-]\d")
+NO_FIGURE = re.compile(r"\bnan\b|\binf\b|\bNone\b(?! of \d)|\bTrue\b|\bFalse\b|\de[+-]\d")
 ONE_OF_MANY = re.compile(
     r"(?<![\d.,])1 (rounds|people|arrows|votes|views|groups|others|starts|parts|sides|ratings)\b"
 )

@@ -12,6 +12,7 @@ from deliberate.rehearsal.findings.suggesting import introduction, joint_round
 from deliberate.rehearsal.results import Finding, JointRound
 from deliberate.rehearsal.words import count, percent
 
+FEWEST_ROUNDS = 3.0  # a gap that halves sooner is not slow, however short the plan is
 MUCH_OWN_VIEW = 0.75
 ALIKE = 1e-9  # a difference of influence that is rounding
 MUCH_INFLUENCE = 2.0  # times an equal share; beyond it `carries` tells more
@@ -192,7 +193,7 @@ def _still_moving(sketch: Sketch) -> Iterator[Finding]:
 def slow(sketch: Sketch) -> Iterator[Finding]:
     """In the whole plan what is left of the way to a common view does not even halve."""
     halving, view = sketch.rehearsal.rounds_to_halve, sketch.common_view
-    if halving is None or view is None or halving < sketch.plan_rounds:
+    if halving is None or view is None or halving < max(sketch.plan_rounds, FEWEST_ROUNDS):
         return
     if sketch.spread(sketch.ends) <= sketch.rehearsal.tolerance:
         return
