@@ -13,7 +13,7 @@ from deliberate.dynamics.network import Floats
 from deliberate.dynamics.process import Course, Leg, Process
 from deliberate.dynamics.rounds import Hearing, mover
 from deliberate.dynamics.shares import Shares
-from deliberate.dynamics.turns import followed_by, round_turn
+from deliberate.dynamics.turns import Turn, followed_by, round_turn
 
 # Beliefs that move less than this in a turn, on the scale's width, have come to rest.
 REST = 1e-13
@@ -22,6 +22,8 @@ RECURS = 1e-12
 PATIENCE = 50
 SQUARING_PEOPLE = 1000
 DOUBLINGS = 50
+# So often it is looked for closely; after that only at the ends of stretches.
+LOOKS = 20_000
 PLAYED_AT_MOST = 20_000
 PLAYED_WORK = 3_000_000_000
 LONGEST_RECURRENCE = 1_000
@@ -66,6 +68,7 @@ class _Follower:
         self._at = 0
         self._legs: list[Leg] | None = []
         self._entries = 0
+        self._looks = 0
         blocks = process.blocks
         self._rounds_in_turn = sum(block.rounds for block in blocks) if process.repeat else 1
         self._first_turn = 0 if process.repeat else sum(block.rounds for block in blocks[:-1])
@@ -94,6 +97,8 @@ class _Follower:
             resting = same and self._moved(held) <= REST
             if not resting and unchanged < PATIENCE:
                 continue
+            if self._hearing.shares_at(self._at, self._beliefs) is not turn[0]:
+                continue  # it changes right now
             if people > SQUARING_PEOPLE or self._rounds_in_turn > 1:
                 if resting:
                     return self._done(turn)
@@ -132,30 +137,47 @@ class _Follower:
             self._legs = None
 
     def _leap(self, shares: Shares) -> tuple[int, Floats] | None:
-        """For how many more rounds nobody comes into or out of range, and the beliefs then; None: for ever."""
-        frozen = self._hearing.heard_at(self._at, self._beliefs)
+        """After how many more rounds somebody comes into or out of range, and the beliefs then; None: never."""
         powers = [round_turn(shares, self._process.firmness)]
-        beliefs = self._beliefs
-
-        def changed(held: Floats) -> bool:
-            return not np.array_equal(self._hearing.heard_at(self._at, held), frozen)
-
-        for _ in range(DOUBLINGS):
-            later = powers[-1].apply(self._beliefs, self._start)
-            if changed(later):
-                break
+        rounds, beliefs = 0, self._beliefs
+        for exponent in range(DOUBLINGS):
+            first = self._first_change(powers, beliefs, exponent)
+            if first is not None:
+                for at, power in enumerate(powers):
+                    if first >> at & 1:
+                        beliefs = power.apply(beliefs, self._start)
+                return rounds + first, beliefs
+            later = powers[exponent].apply(beliefs, self._start)
             if np.abs(later - beliefs).max(initial=0.0) <= REST / 100 * self._scale:
                 return None
-            beliefs = later
+            rounds, beliefs = rounds + 2**exponent, later
             powers.append(followed_by(powers[-1], powers[-1]))
-        else:
+        return None
+
+    def _first_change(self, powers: list[Turn], beliefs: Floats, exponent: int) -> int | None:
+        """After how many of the next 2 ** exponent rounds somebody first comes into or out of range; None: never.
+
+        Steps never get longer, so in so many rounds no gap changes by more than twice as many steps of now. Where
+        that does not settle it, the earlier half is looked at first.
+        """
+        self._looks += 1
+        step = np.abs(powers[0].apply(beliefs, self._start) - beliefs).max(initial=0.0)
+        if 2 * 2**exponent * step < self._hearing.margin_at(self._at, beliefs):
             return None
-        rounds, beliefs = 0, self._beliefs
-        for exponent in reversed(range(len(powers) - 1)):
+        if exponent == 0 or self._looks > LOOKS:
             later = powers[exponent].apply(beliefs, self._start)
-            if not changed(later):
-                rounds, beliefs = rounds + 2**exponent, later
-        return rounds, beliefs
+            return 2**exponent if self._changes(later) else None
+        first = self._first_change(powers, beliefs, exponent - 1)
+        if first is not None:
+            return first
+        half = 2 ** (exponent - 1)
+        second = self._first_change(powers, powers[exponent - 1].apply(beliefs, self._start), exponent - 1)
+        return None if second is None else half + second
+
+    def _changes(self, beliefs: Floats) -> bool:
+        """Another network is heard with `beliefs` than with those of now."""
+        held = self._hearing.heard_at(self._at, self._beliefs)
+        return not np.array_equal(self._hearing.heard_at(self._at, beliefs), held)
 
     def _recurrence(self) -> Floats | None:
         """The belief lists from now on when they come again exactly, ordered so that round 0 falls on the first."""

@@ -93,10 +93,19 @@ class Hearing:
 
     def heard_at(self, at: int, beliefs: Floats) -> Mask:
         """(m,) the arrows that count in round at + 1, when `beliefs` (n,) are held before it."""
-        network = self._process.network
-        near = np.abs(beliefs[network.source] - beliefs[network.listener]) <= self._reach
+        near = self._gaps(beliefs) <= self._reach
         heard = self._process.blocks[block_at(self._process, at)].heard
         return near if heard is None else near & heard
+
+    def margin_at(self, at: int, beliefs: Floats) -> float:
+        """How far the gap of any arrow of round at + 1 is at least from coming into or going out of range."""
+        heard = self._process.blocks[block_at(self._process, at)].heard
+        off = np.abs(self._gaps(beliefs) - self._reach)
+        return float(np.min(off, initial=np.inf, where=True if heard is None else heard))
+
+    def _gaps(self, beliefs: Floats) -> Floats:
+        network = self._process.network
+        return np.abs(beliefs[network.source] - beliefs[network.listener])
 
     def shares_at(self, at: int, beliefs: Floats) -> Shares:
         """The shares of round at + 1, when `beliefs` (n,) are held before it; the same object while they last."""

@@ -162,6 +162,33 @@ def test_slow_talk_that_comes_into_range_late_is_followed():
     assert found.course.rounds_before > np.log(5) / 1e-5 - 2
 
 
+@pytest.mark.parametrize("late", range(40, 66))
+def test_a_change_at_any_round_is_followed(late):
+    """The third hears the first from round `late` on, also where patience ends just then."""
+    process = plenary([[0.99, 0.01, 0], [0, 1, 0], [0.5, 0, 0.5]])
+    starts = np.array([0.0, 0.5, 1.0])
+    first = 0.5 * (1 - 0.99**late)
+    reach = 1 - first + 1e-4
+    played = play(process, starts, 3_000, hearing_range=reach)
+    assert played[late, 2] == 1 > played[late + 1, 2]
+    assert long_run(process, starts, hearing_range=reach).limit == pytest.approx(played[-1], abs=1e-9)
+
+
+def test_somebody_who_is_in_range_for_a_moment_is_not_missed():
+    """A crest that goes round a large ring passes a listener for a few rounds, long after all has looked settled."""
+    people = 150
+    points = np.zeros((people + 1, people + 1))
+    points[np.arange(people), np.arange(people)] = 0.02
+    points[np.arange(people), (np.arange(people) + 1) % people] = 0.98
+    points[people, [people, 0]] = 100, 1
+    crest = 0.5 + 0.25 * np.cos(2 * np.pi * (np.arange(people) - 127) / people)
+    starts = np.append(crest, 0.95)
+    played = play(plenary(points), starts, 200, hearing_range=0.202)
+    assert played[120, people] == 0.95 > played[170, people]
+    found = long_run(plenary(points), starts, hearing_range=0.202)
+    assert found.limit[people] == pytest.approx(0.5, abs=1e-6)
+
+
 def test_beliefs_that_come_round_for_ever_are_the_cycle():
     """A firm person swings out of and into range of what she hears."""
     points = np.zeros((3, 3))
