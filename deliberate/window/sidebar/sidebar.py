@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QSize
-from PySide6.QtWidgets import QStackedWidget, QTabBar, QVBoxLayout, QWidget
+from PySide6.QtCore import QEvent, QSize, Qt
+from PySide6.QtWidgets import QApplication, QStackedWidget, QTabBar, QVBoxLayout, QWidget
 
 from deliberate.window.session import Session
 from deliberate.window.sidebar.ballot_page import BallotPage
@@ -21,7 +21,7 @@ class Sidebar(QWidget):
     def __init__(self, session: Session, look: Look, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.pages = QStackedWidget(self)
-        self.tabs = QTabBar(self)
+        self.tabs = _Words(self)
         self.tabs.setProperty("words", True)
         self.tabs.setDrawBase(False)
         self.tabs.setExpanding(False)
@@ -35,15 +35,30 @@ class Sidebar(QWidget):
         for title, page in (*pages, ("&Meeting", self.meeting)):
             self.tabs.addTab(title)
             self.pages.addWidget(page)
-        self.tabs.currentChanged.connect(self.pages.setCurrentIndex)
+        self.tabs.currentChanged.connect(self._turn_to)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 4, 0, 0)
         column.setSpacing(2)
         column.addWidget(self.tabs)
         column.addWidget(self.pages, 1)
 
+    def _turn_to(self, place: int) -> None:
+        if self.pages.isAncestorOf(QApplication.focusWidget()):
+            self.tabs.setFocus()  # before its page hides, which would hand the focus on to the picture
+        self.pages.setCurrentIndex(place)
+
     def sizeHint(self) -> QSize:
         return QSize(290, 600)
 
     def minimumSizeHint(self) -> QSize:
         return QSize(LEAST_WIDTH, 200)
+
+
+class _Words(QTabBar):
+    """The names of the pages; Alt and a letter goes there, so that Tab leads on into the page."""
+
+    def event(self, event: QEvent) -> bool:
+        done = super().event(event)
+        if event.type() == QEvent.Type.Shortcut:
+            self.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        return done

@@ -5,7 +5,7 @@ from collections.abc import Callable
 import pytest
 from circles import AS_IT_STANDS, CIRCLES, LABEL
 from msgspec.structs import replace
-from PySide6.QtCore import QPoint
+from PySide6.QtCore import QPoint, Qt
 from PySide6.QtGui import QAction, QKeySequence
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import (
@@ -50,6 +50,17 @@ def test_alt_and_a_letter_turn_to_a_page(open_sidebar: Open) -> None:
     for key, place in ((Key.Key_B, 2), (Key.Key_M, 3), (Key.Key_L, 0), (Key.Key_U, 1)):
         press(sidebar, key, Keys.AltModifier)
         assert sidebar.tabs.currentIndex() == place
+        assert sidebar.tabs.hasFocus()  # and Tab leads into the page
+    press(sidebar.tabs, Key.Key_Tab)
+    assert sidebar.question.isAncestorOf(QApplication.focusWidget())
+
+
+def test_the_focus_of_a_page_that_hides_stays_in_the_bar(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, _ = open_sidebar()
+    sidebar.people.table.setFocus()
+    qtbot.mouseClick(sidebar.tabs, Qt.MouseButton.LeftButton, pos=sidebar.tabs.tabRect(2).center())
+    assert sidebar.ballot.isVisible()
+    assert sidebar.tabs.hasFocus()
 
 
 @pytest.mark.parametrize("page", range(4))
