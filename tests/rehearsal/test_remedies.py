@@ -299,6 +299,7 @@ def test_own_meetings_come_before_the_plenary():
     assert order.suggestion == ReorderStages((1, 0))
     assert order.effort == Effort(0, 0, 0)
     assert order.asks == "Only the order changes."
+    assert order.does.endswith("from any start; at the plan's end views would still be 15.1 apart.")
     assert order.says == "Take the stages in another order: Own meetings and Plenary"
 
 

@@ -62,6 +62,8 @@ def _served(aim: Aim, sketch: Sketch, before: Figures, after: Figures) -> str:
 
 def _spread(sketch: Sketch, before: Figures, after: Figures) -> str:
     apart, now = (_distance(sketch, one.spread_at_end) for one in (after, before))
+    if apart == now:
+        return f"at the plan's end views would still be {now} apart"
     return f"at the plan's end views would be {apart} apart instead of {now}"
 
 
