@@ -35,6 +35,16 @@ On the picture
   Ctrl+X, C, V, D       cut, copy, paste, duplicate
   + and -, Ctrl+0       zoom, fit everybody in
 
+In the left bar
+  Alt+L, U, B, M        people, question, ballot, meeting
+  Typing, F2            fill in a cell; with several people selected, for all of them
+  Return, Tab           next person, next cell
+  Space                 present or not, in the column “here”
+  Ctrl+C, Ctrl+V        copy rows, paste cells as sheets do; names below the last row are new people
+  Delete                remove the selected people; in the table of points: stop listening
+  Menu key              choose columns, and more
+  Alt+Up, Alt+Down      move a question in their list
+
 The talk (picture, chart and round bar)
   Space, F9 anywhere    play or pause
   Page Down, Page Up    one step on, one step back
