@@ -27,6 +27,8 @@ from deliberate.dynamics.structure import full_structure
 from deliberate.dynamics.turns import Turn, advance, turn_of
 
 FULL_PEOPLE = 1_000
+# Beyond this an inverse has lost about half of its digits: groups hardly hear each other.
+NEARLY_APART = 1e7
 
 
 @dataclass(frozen=True, eq=False)
@@ -100,6 +102,14 @@ def results_in_long_run(process: Process, starts: Floats, voice: Floats, changes
         firm = float(changes.firmness[at])
         results[at] = lasting.result(person, (1 - firm) * rows[at], firm, before[:, at], starts)
     return results
+
+
+def long_run_is_accurate(process: Process) -> bool:
+    """Whether the closed forms keep half of their digits or more: not where groups hardly hear each other."""
+    track = course(process)
+    lasting = _Lasting.of(turn_of(track.lasting, track.firmness), track.firmness, np.zeros(len(track.firmness)))
+    inverses = (lasting.inverse, *lasting.fundamental)
+    return all(np.abs(inverse).max(initial=0.0) < NEARLY_APART for inverse in inverses)
 
 
 def _played(process: Process, starts: Floats, rounds: int, changes: RowChanges) -> Floats:

@@ -17,6 +17,7 @@ import numpy as np
 from deliberate.dynamics.leverage import (
     FULL_PEOPLE,
     RowChanges,
+    long_run_is_accurate,
     pull_at_end,
     pull_in_long_run,
     results_at_end,
@@ -128,20 +129,22 @@ class _Levers:
         self.weights = weight_shares(sketch.process.network)
         known = shown_names(variant)
         self.names = [known[person] for person in sketch.people]
-        self.replayed = question.hearing_range is not None or sketch.process.repeat
+        self.linear = question.hearing_range is None and not sketch.process.repeat
+        small = len(sketch.people) <= MOST_REPLAYED
+        self.replayed = not self.linear or (small and not long_run_is_accurate(sketch.process))
 
     def found(self) -> Leverage:
         at_end, in_long_run = self._results(self.process, self.starts)
         pull_end, counts_end = pull_at_end(self.process, self.starts, self.rounds, self.voice)
         guesses = list(self._guesses(pull_end))
         levers = list(self._of_rows(guesses, at_end, in_long_run))
-        if self.replayed:
-            levers += self._of_starts_replayed(at_end, in_long_run)
-            arrows_end = arrows_long = None
-        else:
+        if self.linear:
             pull_long, counts_long = pull_in_long_run(self.process, self.starts, self.voice)
             levers += self._of_starts(counts_end, counts_long)
             arrows_end, arrows_long = self._of_arrows(pull_end), self._of_arrows(pull_long)
+        else:
+            levers += self._of_starts_replayed(at_end, in_long_run)
+            arrows_end = arrows_long = None
         slack = ROUNDING * self.question.width
         order = sorted(
             levers, key=lambda one: (-round(abs(one.at_end) / slack), -round(abs(one.in_long_run) / slack))

@@ -96,6 +96,20 @@ def test_with_a_hearing_range_changes_are_played():
     assert leverage(near).arrows_at_end is None
 
 
+@pytest.mark.parametrize("across", [1e-3, 1e-7, 1e-12])
+def test_circles_that_hardly_hear_each_other(across):
+    """Levers are right also where the closed forms lose their digits."""
+    circles = meeting(
+        [[40, 60 - across, across, 0], [60, 40, 0, 0], [0, 2 * across, 40, 60 - 2 * across], [0, 0, 60, 40]],
+        [80, 80, 20, 10],
+    )
+    before = results(circles)
+    for lever in leverage(circles).levers:
+        after = results(with_change(circles, lever))
+        assert lever.at_end == pytest.approx(after[0] - before[0], abs=1e-7)
+        assert lever.in_long_run == pytest.approx(after[1] - before[1], abs=1e-7)
+
+
 def test_equal_people_have_equal_leverage():
     alike = meeting([[40, 20, 20, 20], [20, 40, 20, 20], [20, 20, 40, 20], [20, 20, 20, 40]], [30, 30, 70, 70])
     by_kind: dict[str, list[float]] = {}
