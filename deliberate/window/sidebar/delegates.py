@@ -8,11 +8,12 @@ from PySide6.QtWidgets import QLineEdit, QStyle, QStyledItemDelegate, QStyleOpti
 
 from deliberate.window.session import Session
 from deliberate.window.sidebar.people_columns import Column
-from deliberate.window.sidebar.people_model import BELIEF_ROLE
+from deliberate.window.sidebar.people_model import ABSENT_ROLE, BELIEF_ROLE
 from deliberate.window.theme import Look, belief_color
 
 Index = QModelIndex | QPersistentModelIndex
 SWATCH = 9.0
+MARGIN = 3
 EDITOR_ROOM = 28  # beyond the text as it is, for a few letters more
 
 
@@ -41,18 +42,30 @@ class CellDelegate(QStyledItemDelegate):
         editor.setGeometry(left, cell.top(), max(min(needed, most), cell.width()), cell.height())
 
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: Index) -> None:
-        option.state &= ~QStyle.StateFlag.State_HasFocus  # the view paints the focus itself, in the accent
-        super().paint(painter, option, index)
-        belief = index.data(BELIEF_ROLE)
-        if belief is not None and self._room(option, index):
-            painter.save()
-            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-            painter.setPen(QColor(self._look.theme.mark))
-            painter.setBrush(belief_color(belief, self._session.question, self._look.theme))
-            centre = QPointF(option.rect.left() + SWATCH / 2 + 4, QRectF(option.rect).center().y())
-            painter.drawEllipse(centre, SWATCH / 2, SWATCH / 2)
-            painter.restore()
+        """The cell's text, muted for those who are not there. Qt itself would ask each for ten roles."""
+        theme, cell = self._look.theme, option.rect
+        if index.column() == Column.PRESENT:
+            option.state &= ~QStyle.StateFlag.State_HasFocus  # the view paints the focus itself, in the accent
+            super().paint(painter, option, index)
+            return
+        if option.state & QStyle.StateFlag.State_Selected:
+            painter.fillRect(cell, QColor(theme.tint))
+        text = str(index.data())
+        room = cell.adjusted(MARGIN, 0, -MARGIN, 0)
+        needed = option.fontMetrics.horizontalAdvance(text)
+        if needed > room.width():
+            text = option.fontMetrics.elidedText(text, Qt.TextElideMode.ElideRight, room.width())
+        painter.setPen(QColor(theme.muted if index.data(ABSENT_ROLE) else theme.ink))
+        side = Qt.AlignmentFlag(index.data(Qt.ItemDataRole.TextAlignmentRole))
+        painter.drawText(room, side | Qt.TextFlag.TextSingleLine, text)
+        if index.column() == Column.NOW and needed + SWATCH + 3 * MARGIN < cell.width():
+            self._paint_swatch(painter, QRectF(cell), float(index.data(BELIEF_ROLE)))
 
-    def _room(self, option: QStyleOptionViewItem, index: Index) -> bool:
-        text = str(index.data() or "")
-        return option.rect.width() - option.fontMetrics.horizontalAdvance(text) > SWATCH + 16
+    def _paint_swatch(self, painter: QPainter, cell: QRectF, belief: float) -> None:
+        theme = self._look.theme
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(QColor(theme.mark))
+        painter.setBrush(belief_color(belief, self._session.question, theme))
+        painter.drawEllipse(QPointF(cell.left() + SWATCH / 2 + MARGIN, cell.center().y()), SWATCH / 2, SWATCH / 2)
+        painter.restore()

@@ -27,6 +27,7 @@ from deliberate.window.text import tooltip
 Index = QModelIndex | QPersistentModelIndex
 SORT_ROLE = Qt.ItemDataRole.UserRole
 BELIEF_ROLE = Qt.ItemDataRole.UserRole + 1  # belief to colour the cell's swatch with
+ABSENT_ROLE = Qt.ItemDataRole.UserRole + 3  # whether the person is not there
 
 COLUMNS = len(Column)
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
@@ -44,6 +45,7 @@ _TOLD = {
     Qt.ItemDataRole.AccessibleTextRole,
     SORT_ROLE,
     BELIEF_ROLE,
+    ABSENT_ROLE,
 }
 
 
@@ -141,6 +143,8 @@ class PeopleModel(QAbstractTableModel):
             return sort_key(column, row, self._question)
         if role == Qt.ItemDataRole.CheckStateRole and column == Column.PRESENT:
             return Qt.CheckState.Checked if row.person.present else Qt.CheckState.Unchecked
+        if role == ABSENT_ROLE:
+            return not row.person.present
         if role == BELIEF_ROLE and column == Column.NOW:
             return row.now
         if role == Qt.ItemDataRole.ToolTipRole and column == Column.NAME:

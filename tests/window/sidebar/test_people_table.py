@@ -452,3 +452,14 @@ def test_hundreds_of_people_and_another_variant(qtbot: QtBot, open_sidebar: Open
     assert table.model().rowCount() == 3
     assert len(table.selectionModel().selectedRows()) == 3
     qtbot.waitUntil(session.engine.idle, timeout=20_000)
+
+
+def test_who_is_not_there_is_muted(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    table = sidebar.people.table
+    rect = table.visualRect(table.model().index(1, Column.NAME))
+    there = table.viewport().grab(rect).toImage()
+    session.edit("x", lambda s: edits.set_presence(s, "bilal", False, variant=AS_IT_STANDS))
+    assert table.viewport().grab(rect).toImage() != there
+    session.undo()
+    assert table.viewport().grab(rect).toImage() == there
