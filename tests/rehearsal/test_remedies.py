@@ -15,7 +15,6 @@ from deliberate.errors import DeliberateError
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.remedies import AIMS, aims_here, best_for_each_aim, remedies
 from deliberate.rehearsal.remedies.aims import ALL_OR_NOTHING
-from deliberate.rehearsal.remedies.candidates import joining
 from deliberate.rehearsal.remedies.figures import Effort, effort, figures, price, sketch_for
 from deliberate.rehearsal.remedies.grounds import Grounds
 from deliberate.rehearsal.remedies.report import NOTHING_ASKED, remedies_summary, remedies_to_json
@@ -23,7 +22,6 @@ from deliberate.rehearsal.results import (
     GoBetween,
     GoRounds,
     Introduce,
-    Introductions,
     KeepOwnView,
     MixedTables,
     MovePoints,
@@ -32,7 +30,7 @@ from deliberate.rehearsal.results import (
 )
 from deliberate.rehearsal.suggestions import apply
 from deliberate.scenario import edits
-from deliberate.scenario.values import Person, Plan, Scenario, Stage, Variant
+from deliberate.scenario.values import Person, Plan, Stage, Variant
 
 NOW = "As it stands"
 CIRCLES = meeting(
@@ -48,96 +46,6 @@ HUB = meeting(
 )
 
 
-# Minimal repairs
-
-
-def reach(arrows: np.ndarray) -> np.ndarray:
-    """(n, n) who hears whom, directly or through others, the own view included."""
-    together = arrows | np.eye(len(arrows), dtype=bool)
-    for _ in range(len(arrows)):
-        together = together | (together.astype(int) @ together.astype(int) > 0)
-    return together
-
-
-def closed_groups(arrows: np.ndarray) -> set[frozenset[int]]:
-    """Sets of people who hear only each other, by the definition: whom a member hears also hears her."""
-    hears = reach(arrows)
-    people = range(len(arrows))
-    return {
-        frozenset(other for other in people if hears[one, other])
-        for one in people
-        if all(hears[other, one] for other in people if hears[one, other])
-    }
-
-
-@st.composite
-def split_networks(draw: st.DrawFn) -> tuple[np.ndarray, Scenario]:
-    """Up to five people who fall into several closed groups; everybody hears herself and hears or is heard."""
-    size = draw(st.integers(3, 5))
-    picked = draw(st.lists(st.booleans(), min_size=size * size, max_size=size * size))
-    thinned = draw(st.lists(st.booleans(), min_size=size * size, max_size=size * size))
-    arrows = np.array(picked).reshape(size, size) & np.array(thinned).reshape(size, size)
-    np.fill_diagonal(arrows, False)
-    for one in np.flatnonzero(~(arrows.any(axis=0) | arrows.any(axis=1))):
-        arrows[one, one - 1] = True
-    points = np.where(arrows, 10, 0) + 40 * np.eye(size)
-    return arrows, meeting(points.tolist(), list(range(0, 100, 20))[:size])
-
-
-def with_arrows(arrows: np.ndarray, more: tuple[tuple[int, int], ...]) -> np.ndarray:
-    after = arrows.copy()
-    for listener, source in more:
-        after[listener, source] = True
-    return after
-
-
-def added(suggestion: Introduce | Introductions) -> tuple[tuple[int, int], ...]:
-    pairs = (
-        suggestion.arrows if isinstance(suggestion, Introductions) else ((suggestion.listener, suggestion.source),)
-    )
-    return tuple((IDS.index(listener), IDS.index(source)) for listener, source in pairs)
-
-
-@settings(max_examples=60)
-@given(split_networks())
-def test_minimal_repairs_are_minimal(network):
-    """k closed groups take k - 1 arrows to one, and k where every group's start shall count; fewer never do."""
-    arrows, scenario = network
-    groups = closed_groups(arrows)
-    found = list(joining(Grounds(sketch_for(scenario, NOW, "q"))))
-    if len(groups) == 1:
-        assert found == []
-        return
-    star, ring = found
-    assert len(added(star)) == len(groups) - 1
-    assert len(added(ring)) == len(groups)
-    assert len(closed_groups(with_arrows(arrows, added(star)))) == 1
-    everybody = frozenset().union(*groups)
-    assert next(iter(closed_groups(with_arrows(arrows, added(ring))))) >= everybody
-    free = [(a, b) for a in range(len(arrows)) for b in range(len(arrows)) if a != b and not arrows[a, b]]
-    for fewer in range(len(groups) - 1):
-        for more in combinations(free, fewer):
-            assert len(closed_groups(with_arrows(arrows, more))) > 1
-    for fewer in range(len(groups)):
-        for more in combinations(free, fewer):
-            after = closed_groups(with_arrows(arrows, more))
-            assert len(after) > 1 or not next(iter(after)) >= everybody
-
-
-@settings(max_examples=30)
-@given(split_networks())
-def test_a_minimal_repair_brings_a_common_view(network):
-    _, scenario = network
-    if "common-view" not in aims_here(scenario):
-        return
-    kinds = {}
-    for remedy in remedies(scenario, None, None, "common-view"):
-        kinds.setdefault(type(remedy.suggestion), remedy)
-        tried = apply(scenario, NOW, remedy.suggestion)
-        assert rehearse(tried, tried.variants[1].name).consensus_from_any_start
-    assert Introduce in kinds or Introductions in kinds
-
-
 def test_any_own_view_ends_a_swing():
     found = remedies(SWING, None, None, "end-swing")
     assert found[0].suggestion == KeepOwnView(("a", "b", "c", "d"), 20.0)
@@ -146,6 +54,14 @@ def test_any_own_view_ends_a_swing():
         tried = apply(SWING, NOW, remedy.suggestion)
         assert rehearse(tried, tried.variants[1].name).settles_from_any_start
     assert not rehearse(SWING).settles_from_any_start
+
+
+@settings(max_examples=40)
+@given(meetings(6))
+def test_sides_are_all_who_take_part(scenario):
+    grounds = Grounds(sketch_for(scenario, NOW, "q"))
+    if len(grounds.sketch.here):
+        assert sorted(np.concatenate(grounds.sides).tolist()) == grounds.sketch.here.tolist()
 
 
 def test_two_swings_are_both_ended():

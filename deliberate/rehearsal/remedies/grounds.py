@@ -14,7 +14,7 @@ from deliberate.dynamics.process import course
 from deliberate.rehearsal.assemble import heard
 from deliberate.rehearsal.findings.cuts import parting
 from deliberate.rehearsal.findings.sketch import Indices, Mask, Sketch
-from deliberate.rehearsal.results import Floats, Introduce, MovePoints
+from deliberate.rehearsal.results import ClosedGroup, Floats, Introduce, MovePoints
 
 POINTS = 10.0  # what an introduction gets, and what is moved within a row
 PICKED = 3  # listeners looked at for each kind of change within a row
@@ -72,17 +72,21 @@ class Grounds:
         """The parts that stand apart and should be mixed: closed groups, the parts of a swing, the sides of a
         bridge, or else those below and above the middle of the present starts."""
         sketch = self.sketch
-        if len(sketch.closed) > 1:
-            outside = np.setdiff1d(sketch.here, np.concatenate(sketch.closed))
-            return [*sketch.closed, *([outside] if len(outside) else [])]
         swinging = [group for group in sketch.rehearsal.closed_groups if group.period > 1]
-        if len(swinging) == 1:
-            place, group = sketch.assembly.place, swinging[0]
-            phases = [[] for _ in range(group.period)]
-            for person, phase in zip(group.people, group.phases, strict=True):
-                phases[phase].append(place[person])
-            return [np.array(part) for part in phases]
-        return self._sides_of_bridge() or self._low_and_high()
+        if len(sketch.closed) > 1:
+            parts = list(sketch.closed)
+        elif len(swinging) == 1:
+            parts = self._parts_of_swing(swinging[0])
+        else:
+            return self._sides_of_bridge() or self._low_and_high()
+        outside = np.setdiff1d(sketch.here, np.concatenate(parts))
+        return [*parts, outside] if len(outside) else parts
+
+    def _parts_of_swing(self, group: ClosedGroup) -> list[Indices]:
+        phases = [[] for _ in range(group.period)]
+        for person, phase in zip(group.people, group.phases, strict=True):
+            phases[phase].append(self.sketch.assembly.place[person])
+        return [np.array(part) for part in phases]
 
     def _sides_of_bridge(self) -> list[Indices] | None:
         sketch = self.sketch
