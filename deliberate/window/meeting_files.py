@@ -208,12 +208,11 @@ class MeetingFiles(QObject):
         elif now.digest == GONE:
             self._told = GONE
             self._session.mark_unsaved()
-            tell(
-                self._window,
-                f"“{held.path.name}” is not there any more",
-                f"Another program moved, renamed or deleted {held.path}. The meeting is still in this window; saving "
-                "puts it there again, Save as puts it elsewhere.",
+            what = (
+                f"Another program moved, renamed or deleted {self._called(held.path)}. The meeting is still "
+                "in this window; saving puts it there again, Save as puts it elsewhere."
             )
+            tell(self._window, "The file is not there any more", what)
         else:
             self._ask_about_change(held, now, before_saving=False)
 
@@ -222,12 +221,12 @@ class MeetingFiles(QObject):
         self._told = now.digest
         mine = "your unsaved changes" if self._session.modified else "what you see here"
         what = (
-            f"Another program changed {held.path.name} on disk after it was opened here. Keep {mine}, or load the "
-            "other version? Loading can be undone."
+            f"Another program changed {self._called(held.path)} on disk after it was opened here. Keep {mine}, or "
+            "load the other version? Loading can be undone."
         )
         keep = REPLACE if before_saving else KEEP_MINE
         choices = [LOAD_THEIRS, keep, OTHER_NAME] if not self._session.modified else [OTHER_NAME, keep, LOAD_THEIRS]
-        answer = ask(self._window, f"“{held.path.name}” was changed on disk", what, choices)
+        answer = ask(self._window, "The file was changed on disk", what, choices)
         if answer == OTHER_NAME:
             return self.ask_save_as()
         if answer == LOAD_THEIRS:
@@ -328,7 +327,7 @@ class MeetingFiles(QObject):
             known = on_disk.write_noting(self._session.meeting, path)
         except DeliberateError as error:
             still = "The meeting is still in this window, and what was on disk before is unchanged."
-            tell(self._window, f"“{path.name}” was not saved", f"{path.name}: {error}.\n\n{still}")
+            tell(self._window, "The meeting was not saved", f"{self._called(path)}: {error}.\n\n{still}")
             return False
         self._hold(HeldFile(path, known, lock))
         self._session.mark_saved(path)
@@ -339,6 +338,10 @@ class MeetingFiles(QObject):
     def _may_replace(self, path: Path) -> bool:
         what = f"There is already a file {path.name} in {path.parent}."
         return ask(self._window, f"Replace “{path.name}”?", what, [REPLACE]) == REPLACE
+
+    def _called(self, path: Path) -> str:
+        """A file in what may come up before others' eyes: its name may hold a person's, for which no code stands."""
+        return "the meeting's file" if self._session.codes_shown else path.name
 
     def _tell_unread(self, path: Path, error: DeliberateError) -> None:
         tell(self._window, f"“{path.name}” was not opened", f"{path.name}: {error}")

@@ -263,7 +263,8 @@ def test_a_change_by_another_program_is_told_and_loaded(qtbot: QtBot, open_file:
     files.write(THEIRS, path)
     with answering("Load theirs") as said:
         come_back(qtbot, window)
-    assert said[0] == "“label.deliberate.json” was changed on disk"
+    assert said[0] == "The file was changed on disk"
+    assert "changed label.deliberate.json on disk" in said[1]
     assert window.session.scenario == THEIRS
     assert not window.isWindowModified()
     window.session.undo()
@@ -350,7 +351,8 @@ def test_a_file_that_vanished_is_told_once_and_saved_anew(qtbot: QtBot, open_fil
     path.unlink()
     with answering("OK") as said:
         come_back(qtbot, window)
-    assert said[0] == "“label.deliberate.json” is not there any more"
+    assert said[0] == "The file is not there any more"
+    assert "label.deliberate.json" in said[1]
     assert window.session.scenario == CIRCLES
     assert window.isWindowModified(), "closing asks now"
     come_back(qtbot, window)
@@ -368,6 +370,29 @@ def test_a_folder_that_vanished_keeps_the_work_in_the_window(open_file: Open, pa
         assert not window.files.save()
     assert f"there is no folder {path.parent}" in said[1]
     assert window.isWindowModified()
+
+
+@pytest.mark.parametrize("happens", ["changed", "gone", "not saved"])
+def test_what_comes_up_unasked_names_no_file_while_codes_stand_for_names(
+    qtbot: QtBot, open_file: Open, path: Path, happens: str
+) -> None:
+    named = path.with_name("Amina against Davor.deliberate.json")
+    files.write(CIRCLES, named)
+    window = open_file(named)
+    window.session.show_codes(True)
+    with answering("OK" if happens != "changed" else "Cancel") as said:
+        if happens == "changed":
+            files.write(THEIRS, named)
+            come_back(qtbot, window)
+        elif happens == "gone":
+            named.unlink()
+            come_back(qtbot, window)
+        else:
+            named.unlink()
+            named.mkdir()
+            window.files.save_as(named)
+    assert "Amina" not in " ".join(said)
+    assert "meeting's file" in said[1]
 
 
 # Full and read-only disks
@@ -400,7 +425,8 @@ def test_on_a_full_disk_the_old_file_and_the_work_stay(open_file: Open, disk: Pa
     fill(disk)
     with answering("OK") as said:
         assert not window.files.save()
-    assert said[0] == "“label.deliberate.json” was not saved"
+    assert said[0] == "The meeting was not saved"
+    assert said[1].startswith("label.deliberate.json: cannot be saved")
     assert "the disk is full" in said[1]
     assert "still in this window" in said[1]
     assert files.read(path) == CIRCLES
