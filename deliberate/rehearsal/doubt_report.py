@@ -11,7 +11,7 @@ import numpy as np
 
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Doubt, FindingOdds, Odds
-from deliberate.rehearsal.doubt_words import in_draws
+from deliberate.rehearsal.doubt_words import holds, in_draws
 from deliberate.rehearsal.page import CAUTION, aligned, heading, labelled, shown_rounds, wrap, wrapped
 from deliberate.rehearsal.results import Floats
 from deliberate.rehearsal.words import amount, listing, numbers, shown_names, with_unit
@@ -127,19 +127,8 @@ def _standing_out(found: Doubt) -> str:
     lines = ["What stands out, and in how many draws it does, if with other figures"] if found.findings else []
     for place, odds in enumerate(found.findings, 1):
         lines.append(wrap(odds.finding.says, f"{place:3}. "))
-        lines.append(wrap(_holds(odds, found.draws), " " * 5))
+        lines.append(wrap(holds(odds, found.draws), " " * 5))
     return "\n".join(lines)
-
-
-def _holds(odds: FindingOdds, draws: int) -> str:
-    if odds.by_structure:
-        return "In all: it follows from who is there and which arrows there are."
-    if odds.odds is None:
-        return "Not looked at in the draws."
-    if odds.finding.kind == "knife-edge":
-        return f"The same change turns the vote in {in_draws(odds.odds, draws)}."
-    same = "The same outcome in" if odds.finding.kind == "vote" else "In"
-    return f"{same} {in_draws(odds.odds, draws)}."
 
 
 def _asking(found: Doubt) -> str:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from deliberate.rehearsal.doubt_results import Odds, call_of
+from deliberate.rehearsal.doubt_results import FindingOdds, Odds, call_of
 from deliberate.rehearsal.findings.sketch import Sketch
 from deliberate.rehearsal.results import Floats
 from deliberate.rehearsal.words import amount
@@ -23,6 +23,18 @@ def in_draws(odds: Odds, draws: int) -> str:
     if hundredths == 0:
         return "fewer than 1 of 100 draws"
     return "more than 99 of 100 draws" if hundredths == 100 else f"{hundredths} of 100 draws"
+
+
+def holds(odds: FindingOdds, draws: int) -> str:
+    """In how many draws a finding of the sketch holds, if with other figures; one sentence."""
+    if odds.by_structure:
+        return "In all draws: it follows from who is there and which arrows there are."
+    if odds.odds is None:
+        return "Not looked at in the draws."
+    if odds.finding.kind == "knife-edge":
+        return f"The same change turns the vote in {in_draws(odds.odds, draws)}."
+    same = "The same outcome in" if odds.finding.kind == "vote" else "In"
+    return f"{same} {in_draws(odds.odds, draws)}."
 
 
 def says_vote(passes: Odds, draws: int, quorum_met: bool) -> str:

@@ -18,6 +18,7 @@ from deliberate.window.session import Session
 from deliberate.window.text import plain_label, strong
 from deliberate.window.theme import Look
 
+
 @dataclass(frozen=True)
 class Before:
     """What the shown variant gave before a change was tried."""

@@ -26,11 +26,11 @@ from deliberate.window.canvas import Canvas
 from deliberate.window.care import CareNote, is_noted, note
 from deliberate.window.chart import ChartPanel
 from deliberate.window.columns import Columns
-from deliberate.window.findings_panel import FindingsPanel
 from deliberate.window.held_file import Locks
 from deliberate.window.meeting_files import MeetingFiles, dropped_file
 from deliberate.window.recent import RecentFiles
 from deliberate.window.recovery import Recovery
+from deliberate.window.right_pages import RightPages
 from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
@@ -125,7 +125,8 @@ class MainWindow(QMainWindow):
         self.sidebar = Sidebar(session, look, self)
         self.canvas = Canvas(session, look, self)
         self.chart = ChartPanel(session, look, self)
-        self.findings = FindingsPanel(session, look, self)
+        self.right_pages = RightPages(session, look, self)
+        self.findings = self.right_pages.findings
         self.round_bar = RoundBar(session, look, self)
         self.care_note = CareNote(self)
         self.care_note.hide()
@@ -156,7 +157,7 @@ class MainWindow(QMainWindow):
     def _lay_out(self) -> None:
         self.right = QSplitter(Qt.Orientation.Vertical, self)
         self.right.addWidget(self.chart)
-        self.right.addWidget(self.findings)
+        self.right.addWidget(self.right_pages)
         self.right.setChildrenCollapsible(False)
         self.right.setSizes([380, 320])
         self.right.setHandleWidth(1)
@@ -286,6 +287,7 @@ class MainWindow(QMainWindow):
         self._settings.setValue("window/across", self.across.kept())
         self._settings.setValue("window/right", self.right.saveState())
         self.session.close()
+        self.right_pages.close_down()
         self.files.close()
         event.accept()
 

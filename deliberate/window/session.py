@@ -18,6 +18,7 @@ from deliberate.errors import DeliberateError
 from deliberate.rehearsal.results import Finding, Rehearsal
 from deliberate.scenario.codes import NO_CODES, Coding, coded, decoded
 from deliberate.scenario.values import Question, Scenario, Variant
+from deliberate.window.doubting import Doubting
 from deliberate.window.engine import Ask, Engine
 from deliberate.window.history import History, Moment
 from deliberate.window.player import Player
@@ -44,6 +45,7 @@ class Light:
     people: tuple[str, ...] = ()
     arrows: tuple[Pair, ...] = ()
     groups: tuple[tuple[str, ...], ...] = ()
+    kind: str = ""  # a finding's says what is written on its groups
 
 
 class Session(QObject):
@@ -79,6 +81,7 @@ class Session(QObject):
         self.rehearsal: Rehearsal | None = None
         self.findings: tuple[Finding, ...] = ()
         self.player.set_last(self.variant.plan.rounds)
+        self.doubting = Doubting(self)
 
     # What is shown
 
@@ -272,6 +275,7 @@ class Session(QObject):
         self.player.seek(0)
         self.player.pause()
         self.engine.stop()
+        self.doubting.close()
 
     def _push(self, step: str, meeting: Scenario, variant: str, merge: str = "") -> None:
         known = len(self._codes)

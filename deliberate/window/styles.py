@@ -41,6 +41,7 @@ def style_sheet(theme: Theme) -> str:
     }}
     QPushButton[quiet="true"]:hover, QToolButton[quiet="true"]:hover {{ background: {theme.tint}; }}
     QPushButton[quiet="true"]:focus, QToolButton[quiet="true"]:focus {{ border-color: {theme.accent}; }}
+    QToolButton[quiet="true"]:checked {{ background: {theme.tint}; border-color: {theme.accent}; }}
     QLineEdit, QPlainTextEdit {{
         background: {theme.panel}; border: 1px solid {theme.line}; border-radius: 5px; padding: 3px 6px;
         color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};

@@ -34,7 +34,7 @@ def shown(qtbot: QtBot, look: Look, session: Session) -> FindingsPanel:
 
 def test_the_first_finding_stands_first_with_its_reason(panel: FindingsPanel) -> None:
     first = panel.cards[0]
-    assert first.finding.kind == "closed-groups"
+    assert first.told.lights.kind == "closed-groups"
     assert first.says.text() == panel._session.findings[0].says
     assert first.why.isVisible()
     assert not panel.cards[1].why.isVisible()
@@ -46,15 +46,15 @@ def test_pointing_lights_up_and_leaving_puts_out(qtbot: QtBot, panel: FindingsPa
     first, second = panel.cards[:2]
     for card in (first, second):
         qtbot.mouseMove(card, QPoint(20, 10))
-        qtbot.waitUntil(lambda card=card: session.lit is card.finding)
-    qtbot.mouseMove(panel, QPoint(5, 2))
+        qtbot.waitUntil(lambda card=card: session.lit is card.told.lights)
+    qtbot.mouseMove(panel, QPoint(5, panel.height() - 3))
     qtbot.waitUntil(lambda: session.lit is None)
 
 
 def test_the_focus_lights_up_too(qtbot: QtBot, panel: FindingsPanel) -> None:
     panel.activateWindow()
     panel.cards[1].setFocus()
-    qtbot.waitUntil(lambda: panel._session.lit is panel.cards[1].finding)
+    qtbot.waitUntil(lambda: panel._session.lit is panel.cards[1].told.lights)
     qtbot.keyClick(panel.cards[1], Qt.Key.Key_Return)
     assert panel.cards[1].why.isVisible()
     assert not panel.cards[0].why.isVisible()
@@ -90,7 +90,7 @@ def test_trying_a_change_makes_a_variant_and_tells_what_it_does(qtbot: QtBot, pa
 def test_a_swing_can_be_ended_from_the_panel(qtbot: QtBot, look: Look, open_session: Callable[..., Session]) -> None:
     session = open_session(SWAP)
     panel = shown(qtbot, look, session)
-    assert panel.cards[0].finding.kind == "swing"
+    assert panel.cards[0].told.lights.kind == "swing"
     qtbot.mouseClick(panel.cards[0].button, LEFT)
     assert session.rehearsal.settles
     assert "keeps swinging" in panel.effect.lines.text()
@@ -102,10 +102,10 @@ def test_findings_follow_every_edit(panel: FindingsPanel) -> None:
         session.edit(
             "Draw an arrow", partial(edits.add_arrow, listener=listener, source=source, variant=AS_IT_STANDS)
         )
-    assert "closed-groups" not in [card.finding.kind for card in panel.cards]
+    assert "closed-groups" not in [card.told.lights.kind for card in panel.cards]
     session.undo()
     session.undo()
-    assert panel.cards[0].finding.kind == "closed-groups"
+    assert panel.cards[0].told.lights.kind == "closed-groups"
 
 
 def test_names_like_markup_stay_text(qtbot: QtBot, look: Look, open_session: Callable[..., Session]) -> None:

@@ -6,13 +6,15 @@ from collections.abc import Callable, Iterator
 import pytest
 from circles import AS_IT_STANDS, CIRCLES
 from msgspec.structs import replace
-from PySide6.QtCore import QSettings, Qt, QTimer
+from PySide6.QtCore import QPoint, QSettings, Qt, QTimer
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication, QLabel, QMenu, QMenuBar
 from pytestqt.qtbot import QtBot
 from shiboken6 import isValid
 
 from deliberate.scenario import edits
 from deliberate.window.main_window import CAUTION, MainWindow
+from deliberate.window.seating import SeatingDialog
 from deliberate.window.session import Session
 from deliberate.window.theme import DARK, Look
 
@@ -194,8 +196,23 @@ def test_resting_it_runs_no_timer(qtbot: QtBot, open_window: Callable[..., MainW
 
 def test_where_parts_lie_is_remembered(qtbot: QtBot, open_window: Callable[..., MainWindow]) -> None:
     window = open_window()
-    window.across.setSizes([400, 500, 380])
+    handle = window.across.handle(1)
+    grip = handle.rect().center()
+    QTest.mousePress(handle, Qt.MouseButton.LeftButton, pos=grip)
+    QTest.mouseMove(handle, grip + QPoint(110, 0))
+    QTest.mouseRelease(handle, Qt.MouseButton.LeftButton, pos=grip + QPoint(110, 0))
     sizes = window.across.sizes()
+    assert sizes[0] > 380
     window.close()
     again = open_window()
     assert again.across.sizes() == pytest.approx(sizes, abs=3)
+
+
+def test_mixed_tables_open_once_beside_the_work(qtbot: QtBot, open_window: Callable[..., MainWindow]) -> None:
+    window = open_window()
+    for _ in range(2):
+        action(window, "Mixed tables").trigger()
+    (dialog,) = window.findChildren(SeatingDialog)
+    assert dialog.isVisible()
+    assert not dialog.isModal()
+    dialog.close()

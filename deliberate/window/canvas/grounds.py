@@ -6,11 +6,12 @@ from deliberate.rehearsal.results import Finding
 from deliberate.scenario.values import Stage
 from deliberate.window.canvas.hulls import Ground, tidy
 from deliberate.window.canvas.scene import Scene
+from deliberate.window.session import Light
 
 _LETTERS = "ABCDEFGHIJKLMNOPQRSTUVWXYZ"
 
 
-def of_finding(finding: Finding, scene: Scene) -> list[Ground]:
+def of_finding(finding: Finding | Light, scene: Scene) -> list[Ground]:
     """One ground for each group of a finding, with what joins them written on it."""
     groups = [tuple(scene.index[one] for one in group if one in scene.index) for group in finding.groups]
     groups = [group for group in groups if group]
@@ -27,7 +28,7 @@ def of_stage(stage: Stage, scene: Scene) -> list[Ground]:
     return [Ground(group, f"Table {number}", lit=False) for number, group in enumerate(groups, start=1) if group]
 
 
-def lit_arrows(finding: Finding, scene: Scene) -> set[int] | None:
+def lit_arrows(finding: Finding | Light, scene: Scene) -> set[int] | None:
     """The arrows to light up: those that the finding names, else those inside its groups; None where it is about
     people only, and all arrows stay as they are."""
     if finding.arrows:

@@ -13,7 +13,7 @@ from deliberate.errors import DeliberateError
 from deliberate.window.chart.endings import ballot_in_words
 from deliberate.window.chart.figures import as_csv, as_tabs
 from deliberate.window.session import Session
-from deliberate.window.text import plain_label, strong
+from deliberate.window.text import explain, plain_label, strong
 from deliberate.window.theme import Look
 
 
@@ -43,11 +43,18 @@ class ChartPanel(QWidget):
         menu.addAction("Save the picture …", self.ask_save_picture)
         menu.addAction("Save the figures as CSV …", self.ask_save_figures)
         self.menu_button.setMenu(menu)
+        self.doubt = QToolButton(self)
+        self.doubt.setText("Doubt")
+        self.doubt.setCheckable(True)
+        self.doubt.setProperty("quiet", True)
+        explain(self.doubt, "Draw the guessed numbers again and again, and show how far views may differ")
+        self.doubt.toggled.connect(session.doubting.want)
         self.ballot = plain_label(self)
         self.ballot.setContentsMargins(0, 0, 8, 0)
         row = QHBoxLayout()
         row.addWidget(heading, 1)
         row.addWidget(self.whole)
+        row.addWidget(self.doubt)
         row.addWidget(self.menu_button)
         self._column = QVBoxLayout(self)
         self._column.setContentsMargins(14, 8, 6, 6)
@@ -57,6 +64,8 @@ class ChartPanel(QWidget):
         self._column.addWidget(self.ballot)
         session.rehearsal_changed.connect(self.refresh)
         session.scenario_changed.connect(self.refresh)
+        session.doubting.changed.connect(self.refresh)
+        session.doubting.progressed.connect(self._tell_progress)
 
     def sizeHint(self) -> QSize:
         return QSize(360, 400)
@@ -75,9 +84,19 @@ class ChartPanel(QWidget):
         self.setFocusProxy(chart)
 
     def refresh(self) -> None:
-        """Say again what the ballots come to."""
-        rehearsal = self._session.rehearsal
-        text = ballot_in_words(rehearsal) if rehearsal is not None else ""
+        """Say again what the ballots come to, in the draws where these are wanted."""
+        rehearsal, doubting = self._session.rehearsal, self._session.doubting
+        self.doubt.setChecked(doubting.wanted)
+        if doubting.wanted:
+            self._say(doubting.doubt.says if doubting.doubt is not None else doubting.refusal or "Drawing …")
+        else:
+            self._say(ballot_in_words(rehearsal) if rehearsal is not None else "")
+
+    def _tell_progress(self, part: float) -> None:
+        if self._session.doubting.drawing:
+            self._say(f"Drawing … {part:.0%}; another press on Doubt stops it")
+
+    def _say(self, text: str) -> None:
         self.ballot.setText(text)
         self.ballot.setVisible(bool(text))
 

@@ -9,9 +9,12 @@ from numpy.typing import NDArray
 from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPen, QPolygonF
 
+from deliberate.rehearsal.doubt_results import Doubt
 from deliberate.rehearsal.results import Rehearsal
 from deliberate.scenario.values import Question
+from deliberate.window.chart import doubt_bands
 from deliberate.window.chart.endings import Endings
+from deliberate.window.chart.frame import Frame
 from deliberate.window.text import elided
 from deliberate.window.theme import Theme, mix, shade_indices, shades
 
@@ -32,25 +35,7 @@ class Content:
     endings: Endings
     selected: frozenset[int]
     lit: frozenset[int]
-
-
-@dataclass(frozen=True)
-class Frame:
-    """Where rounds and beliefs lie in pixels."""
-
-    rect: QRectF
-    left: float
-    right: float
-    low: float
-    high: float
-
-    def x(self, rounds: NDArray[np.float64] | float) -> NDArray[np.float64] | float:
-        """Pixels from rounds."""
-        return self.rect.left() + (rounds - self.left) / (self.right - self.left) * self.rect.width()
-
-    def y(self, beliefs: NDArray[np.float64] | float) -> NDArray[np.float64] | float:
-        """Pixels from beliefs."""
-        return self.rect.bottom() - (beliefs - self.low) / (self.high - self.low) * self.rect.height()
+    doubt: Doubt | None = None
 
 
 def paint_chart(painter: QPainter, frame: Frame, content: Content, theme: Theme, font: QFont) -> None:
@@ -62,11 +47,16 @@ def paint_chart(painter: QPainter, frame: Frame, content: Content, theme: Theme,
     at = np.arange(len(rounds))
     if len(at) > MOST_POINTS:
         at = np.unique(np.linspace(0, len(at) - 1, MOST_POINTS).astype(int))
-    _paint_band(painter, frame, content, theme, at)
+    if content.doubt is None:
+        _paint_band(painter, frame, content, theme, at)
+    else:
+        _paint_doubt(painter, frame, content, content.doubt, theme, at)
     _paint_stages(painter, frame, content, theme)
     _paint_marks(painter, frame, content, theme)
     _paint_curves(painter, frame, content, theme, at)
     taken = _paint_endings(painter, frame, content, theme)
+    if content.doubt is not None and content.selected:
+        doubt_bands.paint_endings(painter, frame, content.doubt, sorted(content.selected), theme)
     painter.setFont(font)
     _paint_mark_words(painter, frame, content, theme, taken)
 
@@ -82,6 +72,21 @@ def _paint_band(painter: QPainter, frame: Frame, content: Content, theme: Theme,
     painter.setPen(Qt.PenStyle.NoPen)
     painter.setBrush(mix(theme.panel, theme.mark, 0.16))
     painter.drawPolygon(QPolygonF(outline))
+
+
+def _paint_doubt(
+    painter: QPainter, frame: Frame, content: Content, doubt: Doubt, theme: Theme, at: NDArray[np.intp]
+) -> None:
+    """Bands of those selected or lit; of everybody present when nobody is."""
+    chosen = content.selected | content.lit
+    people = sorted(chosen) if chosen else np.flatnonzero(content.present).tolist()
+    palette, starts = shades(theme), shade_indices(content.rehearsal.rounds[0], content.question)
+    if len(people) > COLOURED_ALONE:
+        colors = [QColor(theme.mark)] * len(people)
+    else:
+        # The middle of the scale is nearly the colour of the paper: a haze needs some ink.
+        colors = [mix(theme.mark, palette[starts[one]].name(), 0.6) for one in people]
+    doubt_bands.paint_bands(painter, frame, doubt, people, colors, at, chosen=bool(chosen))
 
 
 def _paint_stages(painter: QPainter, frame: Frame, content: Content, theme: Theme) -> None:

@@ -10,9 +10,12 @@ from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import QColor, QImage, QKeyEvent, QMouseEvent, QPainter, QPixmap, QTransform
 from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
+from deliberate.rehearsal.doubt_results import Doubt
 from deliberate.rehearsal.words import number, shown_names
+from deliberate.window.chart import doubt_bands
 from deliberate.window.chart.endings import endings
-from deliberate.window.chart.picture import Content, Frame, paint_chart
+from deliberate.window.chart.frame import Frame
+from deliberate.window.chart.picture import Content, paint_chart
 from deliberate.window.chart.strips import paint_ballot, paint_spread
 from deliberate.window.rounds_ruler import tick_step
 from deliberate.window.session import Session
@@ -142,6 +145,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             session.scenario_changed,
             session.selection_changed,
             session.lit_changed,
+            session.doubting.changed,
         ):
             signal.connect(self.refresh)
         session.player.moved.connect(self._follow)
@@ -222,6 +226,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
                 endings=endings(rehearsal, question, present),
                 selected=frozenset(place[one] for one in session.selection.people if one in place),
                 lit=frozenset(place[one] for one in lit if one in place),
+                doubt=self._doubt(),
             )
             self._keep_range(len(rehearsal.rounds) - 1, question.low, question.high)
             self.setAccessibleDescription(self._spoken())
@@ -229,6 +234,13 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         for item in (self._curves, self._spread, self._ballot):
             item.forget()
         self._follow(session.player.position)
+
+    def _doubt(self) -> Doubt | None:
+        """What was drawn of the rehearsal on the chart."""
+        doubt, rehearsal = self._session.doubting.doubt, self._session.rehearsal
+        if doubt is None or rehearsal is None or doubt.beliefs.shape[1:] != rehearsal.rounds.shape:
+            return None
+        return doubt
 
     def _show_ballot(self, shown: bool) -> None:
         """Give the ballot its row, or leave the room to the curves."""
@@ -281,11 +293,21 @@ class BeliefChart(pg.GraphicsLayoutWidget):
 
     def _paint_spread(self, painter: QPainter, frame: Frame, theme: Theme) -> None:
         if self._content is not None:
-            spread = self._content.rehearsal.spread
-            paint_spread(painter, frame, spread, float(spread.max(initial=0.0)), theme)
+            spread, doubt = self._content.rehearsal.spread, self._content.doubt
+            widest = float(spread.max(initial=0.0))
+            if doubt is not None:
+                widest = max(widest, float(doubt.spread.max(initial=0.0)))
+            paint_spread(painter, frame, spread, widest, theme)
+            if doubt is not None:
+                doubt_bands.paint_spread_whiskers(painter, frame, doubt, widest, theme)
 
     def _paint_ballot(self, painter: QPainter, frame: Frame, theme: Theme) -> None:
-        if self._content is not None and self._content.rehearsal.ballot is not None:
+        if self._content is None or self._content.rehearsal.ballot is None:
+            return
+        doubt = self._content.doubt
+        if doubt is not None and doubt.vote is not None:
+            doubt_bands.paint_odds(painter, frame, doubt.vote.passes, theme)
+        else:
             paint_ballot(painter, frame, self._content.rehearsal.ballot, theme)
 
     # The round

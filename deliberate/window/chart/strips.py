@@ -8,7 +8,7 @@ from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPolygonF
 
 from deliberate.rehearsal.results import Tally
-from deliberate.window.chart.picture import Frame
+from deliberate.window.chart.frame import Frame
 from deliberate.window.theme import Theme, mix
 
 WIDEST_CELL = 26.0
@@ -28,7 +28,7 @@ def paint_spread(painter: QPainter, frame: Frame, spread: NDArray[np.float64], w
     painter.setClipRect(frame.rect)
     painter.setPen(Qt.PenStyle.NoPen)
     painter.setBrush(mix(theme.panel, theme.mark, 0.75))
-    for at in _shown(frame, len(spread)):
+    for at in shown_rounds(frame, len(spread)):
         left, right = cell_edges(frame, len(spread), at)
         height = max(frame.rect.height() * float(spread[at]) / widest, 1.0) if widest > 0 else 1.0
         painter.drawRect(QRectF(left, frame.rect.bottom() - height, right - left, height))
@@ -40,7 +40,7 @@ def paint_ballot(painter: QPainter, frame: Frame, ballot: tuple[Tally, ...], the
     Colours are those of the belief scale; the place in the bar and the tick say the same without them.
     """
     painter.setClipRect(frame.rect)
-    for at in _shown(frame, len(ballot)):
+    for at in shown_rounds(frame, len(ballot)):
         tally = ballot[at]
         total = tally.in_favour + tally.abstain + tally.against
         left, right = cell_edges(frame, len(ballot), at)
@@ -63,7 +63,7 @@ def paint_ballot(painter: QPainter, frame: Frame, ballot: tuple[Tally, ...], the
             painter.drawPolygon(QPolygonF(mark))
 
 
-def _shown(frame: Frame, rounds: int) -> range:
+def shown_rounds(frame: Frame, rounds: int) -> range:
     """The rounds inside the frame, thinned to one a pixel."""
     first = max(int(np.floor(frame.left)), 0)
     last = min(int(np.ceil(frame.right)), rounds - 1)
