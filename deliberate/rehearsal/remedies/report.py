@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
 import msgspec
@@ -28,18 +28,37 @@ def remedies_summary(scenario: Scenario, variant: str | None, question: str | No
     """The remedies of one aim or several, for people; the best first. Made for 80 columns."""
     parts = [heading(scenario, pick_variant(scenario, variant), pick_question(scenario, question))]
     asked = aims_here(scenario, variant, question) if not all(found.values()) else tuple(found)
-    parts += [_told(aim, told, NOTHING_FOUND if aim in asked else NOT_ASKED) for aim, told in found.items()]
+    parts += [_told(aims, found) for aims in _alike(found)]
+    parts += [_nothing(aim, aim in asked) for aim, told in found.items() if not told]
     if not found:
         parts.append(NOTHING_ASKED)
     return "\n\n".join([*parts, CAUTION]) + "\n"
 
 
-def _told(aim: Aim, remedies: Sequence[Remedy], otherwise: str) -> str:
-    lines = [f"Aim: {IN_WORDS[aim]}"]
-    for place, remedy in enumerate(remedies, 1):
-        lines.append(wrap(f"{remedy.says}.", f"{place:3}. "))
-        lines += [wrap(line, " " * 5) for line in (remedy.does, remedy.outcome, remedy.asks)]
-    return "\n".join(lines if remedies else [*lines, f"     {otherwise}"])
+def _alike(found: Found) -> Iterable[Sequence[Aim]]:
+    """The aims that have remedies, those together for which the same changes are told."""
+    groups: dict[tuple[Suggestion, ...], list[Aim]] = {}
+    for aim, told in found.items():
+        if told:
+            groups.setdefault(tuple(remedy.suggestion for remedy in told), []).append(aim)
+    return groups.values()
+
+
+def _told(aims: Sequence[Aim], found: Found) -> str:
+    lines = [f"Aim: {IN_WORDS[aim]}" for aim in aims]
+    for place, same in enumerate(zip(*(found[aim] for aim in aims), strict=True), 1):
+        lines.append(wrap(f"{same[0].says}.", f"{place:3}. "))
+        does = [one.does for one in same if not _said(one.does, same[0].does)]
+        lines += [wrap(line, " " * 5) for line in (same[0].does, *does, same[0].outcome, same[0].asks)]
+    return "\n".join(lines)
+
+
+def _said(sentence: str, before: str) -> bool:
+    return sentence.rstrip(".").lower() in before.lower()
+
+
+def _nothing(aim: Aim, asked: bool) -> str:
+    return f"Aim: {IN_WORDS[aim]}\n     {NOTHING_FOUND if asked else NOT_ASKED}"
 
 
 def remedies_to_json(scenario: Scenario, variant: str | None, question: str | None, found: Found) -> dict[str, Any]:
