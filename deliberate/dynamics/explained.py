@@ -15,7 +15,7 @@ from scipy.special import fdtrc
 
 from deliberate.dynamics.network import Floats
 
-SAME = 1e-9  # directions with less than this part of the variance are rounding: the shares of a row sum to 1
+SAME = 1e-9  # less than this part of a number, or of its variance, is rounding
 
 
 @dataclass(frozen=True)
@@ -33,7 +33,8 @@ NOTHING = Explained(0.0, 0.0, 1.0)
 
 
 class Association:
-    """Sums over draws from which the variance of q outcomes that k numbers explain can be told.
+    """Sums over draws from which the variance of q outcomes that k numbers explain can be told. Of numbers with a
+    fixed sum one is left out.
 
     centre: (k,) and (q,) values near the means, so that nothing is lost in the sums.
     """
@@ -69,10 +70,10 @@ class Association:
             return NOTHING
         joint = self._products[varies, outcome] / draws - mean[varies] * outcome_mean
         correlation = joint / (scale[varies] * np.sqrt(variance))
-        values, directions = np.linalg.eigh(spread[np.ix_(varies, varies)] / np.outer(scale[varies], scale[varies]))
-        kept = values > SAME * values[-1]
-        explained = min(float((((correlation @ directions)[kept]) ** 2 / values[kept]).sum()), 1.0)
-        return _adjusted(explained, int(kept.sum()), draws)
+        together = spread[np.ix_(varies, varies)] / np.outer(scale[varies], scale[varies])
+        together[np.diag_indices_from(together)] += SAME  # numbers that say the same keep a solution
+        explained = min(float(correlation @ np.linalg.solve(together, correlation)), 1.0)
+        return _adjusted(explained, len(correlation), draws)
 
 
 def _adjusted(explained: float, numbers: int, draws: int) -> Explained:

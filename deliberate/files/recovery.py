@@ -52,7 +52,7 @@ def make_private(folder: Path) -> Path:
         if os.name != "nt" and stat.S_IMODE(folder.stat().st_mode) != 0o700:
             folder.chmod(0o700)
     except OSError as error:
-        raise DeliberateError(f"{folder} cannot be used: {error.strerror}") from None
+        raise DeliberateError(f"cannot be saved: {folder} cannot be used ({error.strerror})") from None
     return folder
 
 

@@ -145,7 +145,7 @@ class MainWindow(QMainWindow):
         session.codes_changed.connect(self._forget_words)
         session.said.connect(self._say)
         session.refused.connect(self._refuse)
-        self.recovery.failed.connect(lambda why: self._refuse(f"Unsaved work is not kept for a crash: {why}"))
+        self.recovery.failed.connect(lambda why: self._refuse(f"The copy of unsaved work {why}"))
         look.changed.connect(self._dress)
         self._painted_once = False
         self._dress()

@@ -274,7 +274,7 @@ def test_where_no_copy_can_be_made_it_is_said_once(qtbot: QtBot, open_file: Open
         start(window, value)
         window.recovery.keep_soon()
     assert len(said) == 1
-    assert "Unsaved work is not kept for a crash" in window.statusBar().currentMessage()
+    assert "The copy of unsaved work cannot be saved: " in window.statusBar().currentMessage()
     (private / "recovery").unlink()
     window.recovery.keep_soon()
     qtbot.waitUntil(lambda: len(kept(private)) == 1)
