@@ -12,7 +12,7 @@ from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 from deliberate.dynamics.shares import heard_in_silence
 
-FAR = 4_000  # rounds that are played one by one
+FAR = 2_500  # rounds that are played one by one
 ROUND_ABOUT = 200  # whatever swings or repeats does so within as many
 TOLERANCES = (0.5, 0.2, 0.1, 0.01, 1e-4, 1e-7)
 

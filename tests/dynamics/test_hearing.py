@@ -95,7 +95,7 @@ def test_the_end_is_what_plain_stepping_comes_to(talk, reach):
     found = long_run(process, starts, hearing_range=reach)
     turn = sum(block.rounds for block in process.blocks) if process.repeat else 1
     lists = found.limit[None, :] if found.cycle is None else found.cycle
-    rounds = len(lists) * (1_500 // len(lists) + 1)
+    rounds = len(lists) * (800 // len(lists) + 1)
     played = play(process, starts, (rounds + len(lists)) * turn, hearing_range=reach)[::turn]
     for at, expected in enumerate(lists):
         assert played[rounds + at] == pytest.approx(expected, abs=1e-9)

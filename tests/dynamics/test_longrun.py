@@ -247,7 +247,7 @@ def test_the_limit_or_the_cycle_is_what_many_rounds_come_to(talk):
     turn = sum(block.rounds for block in process.blocks) if process.repeat else 1
     lists = found.limit[None, :] if found.cycle is None else found.cycle
     assume(found.rate is None or found.rate < 0.99)
-    many = len(lists) * (3_000 // len(lists) + 1)
+    many = len(lists) * (1_500 // len(lists) + 1)
     played = play(process, starts, (many + len(lists)) * turn)[::turn]
     for at, expected in enumerate(lists):
         assert played[many + at] == pytest.approx(expected, abs=1e-9)
