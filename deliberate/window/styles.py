@@ -60,6 +60,9 @@ def style_sheet(theme: Theme) -> str:
         background: {theme.panel}; color: {theme.muted}; border: none; border-bottom: 1px solid {theme.line};
         padding: 4px 4px;
     }}
+    QHeaderView::up-arrow, QHeaderView::down-arrow {{
+        subcontrol-origin: border; subcontrol-position: top center; width: 9px; height: 6px;
+    }}
     QTableCornerButton::section {{ background: {theme.panel}; border: none; }}
     QTabBar {{ background: transparent; }}
     QTabBar::tab {{
