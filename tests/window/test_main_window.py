@@ -216,3 +216,11 @@ def test_mixed_tables_open_once_beside_the_work(qtbot: QtBot, open_window: Calla
     assert dialog.isVisible()
     assert not dialog.isModal()
     dialog.close()
+
+
+def test_it_begins_no_larger_than_its_screen(open_file: Callable[..., MainWindow]) -> None:
+    window = open_file()
+    room, least = window.screen().availableSize(), window.minimumSizeHint()
+    assert window.width() <= max(room.width(), least.width())
+    assert window.height() <= max(room.height(), least.height())
+    assert room.width() < 1280, "else this says nothing"
