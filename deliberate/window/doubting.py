@@ -10,7 +10,7 @@ from PySide6.QtCore import QObject, QTimer, Signal
 from deliberate.window.errand import Errand, Progress, Stopped
 
 if TYPE_CHECKING:
-    from deliberate.rehearsal.doubt_results import Doubt, FindingOdds, Odds
+    from deliberate.rehearsal.doubt_results import Doubt, FindingOdds
     from deliberate.window.session import Session
 
 CALM_MS = 250  # an edit is often followed by another
@@ -49,11 +49,14 @@ class Doubting(QObject):
             self.wanted = wanted
             self._begin_again()
 
-    def passes(self, round_: int) -> Odds | None:
-        """The odds that the vote after a round passes; None where they are not known."""
+    def outcome_in_words(self, round_: int, passes: bool) -> str:
+        """In how many draws the vote after a round passes, or does not; empty where that is not known."""
         if self.doubt is None or self.doubt.vote is None or round_ >= len(self.doubt.vote.passes):
-            return None
-        return self.doubt.vote.passes[round_]
+            return ""
+        odds = self.doubt.vote.passes[round_]
+        words = importlib.import_module("deliberate.rehearsal.doubt_words")
+        said: str = words.in_draws(odds if passes else odds.against, self.doubt.draws)
+        return said
 
     def in_words(self, odds: FindingOdds) -> str:
         """In how many draws a finding holds; only while there is a `doubt`."""
