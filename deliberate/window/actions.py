@@ -196,6 +196,7 @@ class Actions(QObject):
     def _fill_before_others(self, menu: QMenu) -> None:
         """What is of use while others see the screen."""
         session, blank = self._window.session, self._window.blank
+        self._add(menu, "&Projector view …", self._window.ask_projector, "F5")
         self.codes = self._add(
             menu, "&Codes instead of names", lambda: session.show_codes(self.codes.isChecked()), "F7"
         )

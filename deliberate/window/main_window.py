@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QByteArray, QEvent, QSettings, QSize, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent, QResizeEvent
+from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent, QResizeEvent, QScreen
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
@@ -28,6 +28,7 @@ from deliberate.window.chart import ChartPanel
 from deliberate.window.columns import Columns
 from deliberate.window.held_file import Locks
 from deliberate.window.meeting_files import MeetingFiles, dropped_file
+from deliberate.window.projector import ProjectorChoice, ProjectorView
 from deliberate.window.recent import RecentFiles
 from deliberate.window.recovery import Recovery
 from deliberate.window.right_pages import RightPages
@@ -38,8 +39,7 @@ from deliberate.window.styles import style_sheet
 from deliberate.window.text import elided, explain, plain_label, strong
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
-
-CAUTION = "A sketch, not a forecast of people"
+from deliberate.window.vote import CAUTION, vote_in_words
 
 
 class TopBar(QWidget):
@@ -142,6 +142,7 @@ class MainWindow(QMainWindow):
         session.rehearsal_changed.connect(self._refresh_vote)
         session.scenario_changed.connect(self._refresh_vote)
         session.player.moved.connect(self._refresh_vote)
+        session.doubting.changed.connect(self._refresh_vote)
         session.codes_changed.connect(self._forget_words)
         session.said.connect(self._say)
         session.refused.connect(self._refuse)
@@ -195,15 +196,7 @@ class MainWindow(QMainWindow):
         self.setWindowModified(session.modified)
 
     def _refresh_vote(self) -> None:
-        rehearsal, player = self.session.rehearsal, self.session.player
-        if rehearsal is None or rehearsal.ballot is None:
-            self.vote.setText("")
-            return
-        at = min(player.round, len(rehearsal.ballot) - 1)
-        tally = rehearsal.ballot[at]
-        outcome = "passes" if tally.passes else "does not pass"
-        abstain = f", {tally.abstain:g} abstaining" if tally.abstain else ""
-        text = f"Round {at}, by the sketch: {tally.in_favour:g} for, {tally.against:g} against{abstain}: {outcome}"
+        text = vote_in_words(self.session.rehearsal, self.session.player.round, self.session.doubting)
         if text != self.vote.text():
             self.vote.setText(text)
 
@@ -237,6 +230,28 @@ class MainWindow(QMainWindow):
         note(self._settings)
         self.care_note.hide()
         self.canvas.setFocus()
+
+    def ask_projector(self) -> None:
+        """Ask for codes or names, then fill a screen."""
+        if self.findChild(ProjectorView) is not None:
+            return
+        choice = ProjectorChoice(self, codes=self.session.codes_shown)
+        choice.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        choice.chosen.connect(self.project)
+        choice.open()
+
+    def project(self, codes: bool, screen: QScreen) -> None:
+        """Fill `screen` with picture, round bar and one sentence, in codes or names."""
+        self.session.show_codes(codes)
+        view = ProjectorView(self.session, self.look, self)
+        view.blank_wanted.connect(self.blank.begin)
+        view.left.connect(self._leave_projector)
+        view.fill(screen)
+
+    def _leave_projector(self) -> None:
+        self.activateWindow()
+        if self.session.codes_shown:
+            self._say("Codes are still shown: F7 shows names")
 
     # Its life
 

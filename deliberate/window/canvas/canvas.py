@@ -55,6 +55,7 @@ class Canvas(QWidget):
         accessible.install(Canvas)
         self.items: accessible.AccessibleCanvas | None = None  # once somebody asks for it
         self.follows_size = True
+        self.scale = 1.0  # pixels of the widget to one of the picture
         self._hint = ""
         self.follow = Follower(self, session)
         self.picture = Picture(self.follow.first_scene, look.theme)
@@ -240,6 +241,7 @@ class Canvas(QWidget):
         whole = abs(position - round(position)) < 1e-9
         resting = not self._rest.isActive() and picture.moving is None
         with QPainter(self) as painter:
+            painter.scale(self.scale, self.scale)
             painter.setFont(self.font())
             picture.paint(painter, self.follow.beliefs(), gliding=not whole, at_start=position < 0.5, resting=resting)
             self.choosing.paint(painter)
@@ -256,7 +258,7 @@ class Canvas(QWidget):
                 overlays.paint_scale(painter, self.width(), question, theme)
         overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme)
         if not picture.scene.ids and not self.editors.open_for_name:
-            overlays.paint_empty(painter, QRectF(self.rect()), theme)
+            overlays.paint_empty(painter, QRectF(0, 0, self.width(), self.height()), theme)
         if self.hasFocus() and self.keys.shows_focus:
             overlays.paint_edge(painter, self.rect(), theme)
 

@@ -31,6 +31,7 @@ class Names:
         self._font: QFont | None = None
         self._chosen = np.zeros(0, dtype=np.intp)
         self.sizes = np.zeros((0, 2))
+        self.all_up_to = COMMITTEE  # people whose names are all painted, also where they lie on something
         self.crowded = np.zeros(0)
         self._shown: list[QStaticText] = []
 
@@ -64,7 +65,7 @@ class Names:
         count = len(self.crowded)
         if not has_room(count, radius):
             return np.zeros(count, dtype=bool)
-        return self.clear() if count > COMMITTEE else np.ones(count, dtype=bool)
+        return self.clear() if count > self.all_up_to else np.ones(count, dtype=bool)
 
     def areas(self, points: Floats, radius: float) -> Floats:
         """Where the names are, as rows (left, top, width, height)."""

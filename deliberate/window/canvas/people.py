@@ -41,6 +41,8 @@ class PeoplePainter:
         self._rings_for: tuple[object, ...] = ()
         self._texts: dict[tuple[int, str], tuple[QStaticText, QSizeF]] = {}  # by size and text
         self._text_font = QFont()
+        self.smallest_text = 7  # pixels; numbers that would be smaller are left out
+        self.short = False  # a digit less on every number, also at rest
 
     def with_rings(self, scene: Scene, radius: float) -> bool:
         """Whether there is room for rings at a radius in pixels."""
@@ -85,7 +87,7 @@ class PeoplePainter:
         self._atlas.draw(painter, points[here], shade[here], scale)
         self._paint_absent(painter, scene, points, disc, shade, theme)
         if disc >= LEAST_NUMBER_PX:
-            texts = number_texts(beliefs, scene.question, gliding=gliding)
+            texts = number_texts(beliefs, scene.question, gliding=gliding or self.short)
             if at_start:
                 texts = [f"{text}?" if unknown else text for text, unknown in zip(texts, scene.unknown, strict=True)]
             self._paint_numbers(painter, points, disc, shade, texts, scene, theme)
@@ -145,6 +147,8 @@ class PeoplePainter:
         theme: Theme,
     ) -> None:
         self._size_texts(painter, disc, texts)
+        if self._text_font.pixelSize() < self.smallest_text:
+            return
         painter.setFont(self._text_font)
         inks = _inks(theme)
         pale = QColor(theme.ink)
@@ -163,7 +167,9 @@ class PeoplePainter:
         longest = max((len(text.rstrip("?")) for text in texts), default=1)
         font = QFont(painter.font())
         font.setBold(True)
-        font.setPixelSize(max(7, math.floor(min(disc * 0.74, 1.55 * disc / (0.62 * max(longest, 2))))))
+        font.setPixelSize(
+            max(7, math.floor(min(disc * (0.86 if self.short else 0.74), 1.55 * disc / (0.62 * max(longest, 2)))))
+        )
         if font.family() != self._text_font.family() or len(self._texts) > _TEXTS_KEPT:
             self._texts.clear()
         self._text_font = font

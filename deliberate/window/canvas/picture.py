@@ -77,6 +77,7 @@ class Picture:
         self.moving: Flags | None = None  # people that are being moved, with their arrows painted live
         self.live = scene.places
         self.font = QFont()
+        self.margins = FIT_MARGINS
         self.people, self.names = PeoplePainter(), Names()
         self._ground = GroundLayer()
         self._ground_stale = self._names_stale = True
@@ -110,7 +111,7 @@ class Picture:
 
     def fit(self) -> None:
         """Show everybody."""
-        self.look_at(fitted(self.scene.places, self.scene.radius, self.width, self.height, FIT_MARGINS))
+        self.look_at(fitted(self.scene.places, self.scene.radius, self.width, self.height, self.margins))
 
     def move(self, which: Flags | None, live: Floats | None = None) -> None:
         """People `which` are on their way, at `live`; None ends it."""

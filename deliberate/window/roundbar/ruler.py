@@ -66,6 +66,7 @@ class Ruler(QAbstractSlider):
         self._session, self._look = session, look
         self._player = session.player
         self.chosen = -1
+        self.scale = 1.0  # pixels of the widget to one of the ruler
         self._dragged_end: int | None = None  # index of the stage whose end is held
         self._proposed: int | None = None  # its rounds while it is held
         self._scrubbing = False
@@ -263,6 +264,7 @@ class Ruler(QAbstractSlider):
 
     def paintEvent(self, event: QPaintEvent) -> None:
         with QPainter(self) as painter:
+            painter.scale(self.scale, self.scale)
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             self._paint_spans(painter)
             self._paint_ticks(painter)
