@@ -18,7 +18,7 @@ from deliberate.rehearsal.results import Floats
 Mask = NDArray[np.bool_]
 
 # Numbers worked on at a time: small enough to stay near the processor, and to look up often whether to stop.
-MATRIX_NUMBERS, LARGEST_MATRIX_NUMBERS, ARROW_NUMBERS = 100_000, 1_000_000, 500_000
+MATRIX_NUMBERS, LARGEST_MATRIX_NUMBERS, ARROW_NUMBERS = 100_000, 500_000, 500_000
 SMALLEST_CHUNK, LARGEST_CHUNK = 16, 256
 
 

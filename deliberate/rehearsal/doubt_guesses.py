@@ -27,7 +27,7 @@ OUTCOMES: tuple[Outcome, ...] = ("vote", "mean")
 @dataclass(frozen=True, eq=False)
 class _Open:
     """One guess and the sums of its draws. A start goes in with its square and cube, because what it explains of a
-    vote is a step; a row with its own share and those of its `arrows`."""
+    vote is a step; a row with its own share and those of `arrows`, all but one, since shares sum to 1."""
 
     kind: Literal["start", "row"]
     person: int
@@ -51,7 +51,7 @@ class Guesses:
         ]
         listener = meeting.rows.listener
         for person in np.flatnonzero(meeting.rows.doubtful & present).tolist():
-            arrows = np.flatnonzero((listener == person) & (meeting.rows.share > 0))
+            arrows = np.flatnonzero((listener == person) & (meeting.rows.share > 0))[:-1]
             centre = np.concatenate([meeting.rows.own[[person]], meeting.rows.share[arrows]])
             self._open.append(_Open("row", person, arrows, Association(centre, self._centre)))
 
@@ -105,7 +105,9 @@ class Guesses:
         return f"Where {name} starts, between {low} and {high}"
 
     def _row(self, guess: _Open, name: str) -> str:
-        bases = {self._meeting.sketch.variant.arrows[arrow].basis for arrow in guess.arrows.tolist()}
+        arrows = self._meeting.sketch.variant.arrows
+        person = self._meeting.sketch.rehearsal.people[guess.person]
+        bases = {arrow.basis for arrow in arrows if arrow.listener == person}
         return f"Whose view counts how much for {name} ({listing(list(_in_words(sorted(bases))))})"
 
 
