@@ -13,6 +13,7 @@ from deliberate.window import help_texts
 from deliberate.window.gallery import Gallery
 from deliberate.window.player import SPEEDS
 from deliberate.window.recent import label
+from deliberate.window.seating import SeatingDialog
 from deliberate.window.text import tooltip, with_ampersands
 
 if TYPE_CHECKING:
@@ -25,6 +26,7 @@ ARRANGEMENTS = (
     ("groups", "By closed group"),
     ("hearing", "By who hears whom"),
     ("grid", "In a tidy grid"),
+    ("tables", "By table of the present stage"),
 )
 
 
@@ -156,7 +158,16 @@ class Actions(QObject):
             action.setCheckable(True)
             action.setData(speed)
             self.speeds.addAction(action)
+        menu.addSeparator()
+        self._add(menu, "&Mixed tables …", self._show_seating, "Ctrl+M")
         self._show_playback()
+
+    def _show_seating(self) -> None:
+        window = self._window
+        dialog = window.findChild(SeatingDialog) or SeatingDialog(window.session, window.look, window)
+        dialog.show()
+        dialog.raise_()
+        dialog.activateWindow()
 
     def _fill_variants(self, menu: QMenu) -> None:
         strip = self._window.variant_strip

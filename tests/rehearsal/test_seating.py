@@ -11,7 +11,8 @@ from deliberate.errors import DeliberateError
 from deliberate.files.resources import demo_scenarios
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.seating import sheet, told
-from deliberate.rehearsal.seating.seat import as_variant, figure, seat
+from deliberate.rehearsal.seating.plan import as_variant
+from deliberate.rehearsal.seating.seat import figure, seat
 from deliberate.rehearsal.seating.wish import Wish, table_sizes
 from deliberate.scenario import edits
 from deliberate.scenario.values import Plan, Question, Stage
@@ -164,7 +165,7 @@ def test_one_condition_alone_can_be_too_much():
     with pytest.raises(DeliberateError) as refused:
         seat(lonely, None, None, Wish(tables=2, linked=True))
     assert str(refused.value) == (
-        "this cannot be met with 2 tables of 4: nobody at a table where no arrow joins her to anyone"
+        "this cannot be met with 2 tables of 4: everybody hears or is heard at her table"
     )
 
 

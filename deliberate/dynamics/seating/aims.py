@@ -18,7 +18,7 @@ from deliberate.dynamics.seating.tables import TableTalk
 from deliberate.dynamics.turns import turn_of
 
 CHUNK_NUMBERS = 2_000_000  # numbers in the arrays of one batch
-LESS_THAN_ANY_SPREAD = 1e-6
+LESS_THAN_ANY_SPREAD = 1e-9  # a standard deviation weighs so little that no spread that shows is given up for it
 
 
 class Aim(Protocol):

@@ -30,7 +30,8 @@ from deliberate.dynamics.turns import give_back
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.assemble import Assembly, assemble
 from deliberate.rehearsal.choosing import pick_question, pick_variant
-from deliberate.rehearsal.seating.told import condition_words, variant_name
+from deliberate.rehearsal.seating.plan import add_to
+from deliberate.rehearsal.seating.told import condition_words
 from deliberate.rehearsal.seating.wish import Goal, Seating, Tables, Wish, seated_people, table_sizes
 from deliberate.rehearsal.words import listing
 from deliberate.scenario import edits
@@ -101,23 +102,6 @@ def seat(
         hear_nobody=tuple(_hear_nobody(found, talk, sketch)),
         apart_groups=sum(1 for _ in edits.linked_groups(setup)),
     )
-
-
-def add_to(scenario: Scenario, variant: str, wish: Wish, rotations: tuple[Tables, ...]) -> Scenario:
-    """The scenario with the table stages in the plan of `variant`."""
-    return edits.add_table_stages(
-        scenario, rotations, variant=variant, rounds=wish.rounds, place=wish.place, unheard=wish.unheard
-    )
-
-
-def as_variant(scenario: Scenario, seating: Seating) -> tuple[Scenario, str]:
-    """The scenario with one more variant, right behind the one the seating is for, and that variant's name."""
-    wanted = variant_name(seating)
-    if seating.variant != scenario.variants[0].name:
-        wanted = f"{seating.variant}, {wanted[:1].lower()}{wanted[1:]}"
-    name = edits.fresh_variant_name(scenario, wanted)
-    scenario = edits.add_variant(scenario, copy_of=seating.variant, name=name)
-    return add_to(scenario, name, seating.wish, seating.rotations), name
 
 
 def figure(goal: Goal, variant: Variant, question: Question) -> float:

@@ -36,7 +36,7 @@ def condition_words(
             return f"{names(about, variant)} never at one table"
         case "role", str():
             return f"somebody with the role “{about}” at every table"
-    return "nobody at a table where no arrow joins her to anyone"
+    return "everybody hears or is heard at her table"
 
 
 def summary(seating: Seating, question: Question) -> str:

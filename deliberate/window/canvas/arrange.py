@@ -44,14 +44,18 @@ def grid(count: int, spacing: float = SPACING) -> Floats:
     return np.stack([x, y], axis=1).astype(np.float64)
 
 
-def by_group(groups: Sequence[Sequence[int]], count: int, spacing: float = SPACING) -> Floats:
-    """Each group (indices of people) in a circle of its own, the circles in rows, the largest first.
+def by_group(
+    groups: Sequence[Sequence[int]], count: int, spacing: float = SPACING, *, largest_first: bool = True
+) -> Floats:
+    """Each group (indices of people) in a circle of its own, the circles in rows, the largest first or as given.
 
     Everybody who is in no group stands in one more circle.
     """
     known = {index for group in groups for index in group}
     rest = [index for index in range(count) if index not in known]
-    ordered = sorted((list(group) for group in groups if group), key=len, reverse=True)
+    ordered = [list(group) for group in groups if group]
+    if largest_first:
+        ordered.sort(key=len, reverse=True)
     if rest:
         ordered.append(rest)
     shapes = [circle(len(group), spacing) for group in ordered]

@@ -30,6 +30,7 @@ ARRANGED = {
     "groups": "Arrange by closed group",
     "hearing": "Arrange by who hears whom",
     "grid": "Arrange in a tidy grid",
+    "tables": "Arrange by table",
 }
 
 
@@ -197,6 +198,10 @@ class Commands:
         if total == 0:
             return False
         spacing = arrange.SPACING * scene.radius / 36.0
+        tables = self._tables()
+        if kind == "tables" and not tables:
+            self._session.refused.emit("Nobody sits at tables in this round: go to a stage at tables first")
+            return False
         match kind:
             case "circle":
                 places = arrange.circle(total, spacing)
@@ -206,6 +211,8 @@ class Commands:
                 places = arrange.by_hearing(scene.listener, scene.source, total, spacing)
             case "grid":
                 places = arrange.grid(total, spacing)
+            case "tables":
+                places = arrange.by_group(tables, total, spacing, largest_first=False)
             case _:
                 raise ValueError(kind)
         spots = {one: (round(float(x), 1), round(float(y), 1)) for one, (x, y) in zip(scene.ids, places, strict=True)}
@@ -217,6 +224,12 @@ class Commands:
         if rehearsal is None:
             return [[index[one] for one in group] for group in linked_groups(self._session.variant)]
         return [[index[one] for one in group.people] for group in rehearsal.closed_groups if not group.anchored]
+
+    def _tables(self) -> list[list[int]]:
+        """The tables of the stage that is shown, by index; none where it is not at tables."""
+        index = self._canvas.picture.scene.index
+        stage = self._session.variant.plan.stages[self._canvas.follow.stage()]
+        return [[index[one] for one in table] for table in stage.tables] if stage.setting == "tables" else []
 
     # The context menu
 
