@@ -24,12 +24,13 @@ from deliberate.files import recovery as copies
 from deliberate.scenario import edits
 from deliberate.window.app import _Loud
 from deliberate.window.main_window import MainWindow
+from deliberate.window.recovery import KEEP_AFTER_MS
 from deliberate.window.recovery_dialog import RecoveryDialog
 
 Open = Callable[..., MainWindow]
 CHECKOUT = Path(files.__file__).parents[2]
 TWO = replace(CIRCLES, variants=(CIRCLES.variants[0], replace(CIRCLES.variants[0], name="Mixed tables")))
-WITHIN = 5_000  # milliseconds after an edit
+PATIENCE = 30_000  # milliseconds, for a busy machine
 
 
 @pytest.fixture
@@ -79,19 +80,21 @@ def offered(qtbot: QtBot) -> RecoveryDialog:
     return QApplication.activeModalWidget()
 
 
-def test_a_copy_is_there_within_five_seconds_of_the_first_edit(
+def test_a_copy_comes_soon_after_the_first_edit_and_is_not_put_off_by_more(
     qtbot: QtBot, open_file: Open, path: Path, private: Path
 ) -> None:
     window = open_file(path)
     assert not (private / "recovery").exists(), "nothing to keep yet"
-    passed = []
-    start(window, 61.0)
-    # Going on editing must not put it off.
-    qtbot.waitUntil(
-        lambda: bool(passed.append(start(window, len(passed) % 7 + 1.0)) or kept(private)), timeout=WITHIN
-    )
+    assert KEEP_AFTER_MS < 5_000 / 2, "half of the five seconds that may be lost; the other half is for a slow disk"
+    values = iter(range(1, 10_000))
+
+    def there_while_she_goes_on() -> bool:
+        start(window, next(values) % 90)
+        return bool(kept(private))
+
+    qtbot.waitUntil(there_while_she_goes_on, timeout=PATIENCE)
     assert kept(private)[0].head.path == str(path)
-    qtbot.waitUntil(lambda: kept(private)[0].scenario == window.session.scenario, timeout=WITHIN)
+    qtbot.waitUntil(lambda: kept(private)[0].scenario == window.session.scenario, timeout=PATIENCE)
     assert files.read(path) == TWO, "the file itself waits to be saved"
 
 
