@@ -88,28 +88,19 @@ def results_at_end(process: Process, starts: Floats, rounds: int, voice: Floats,
     return voice @ _played(process, starts, rounds, changes)
 
 
-def results_in_long_run(process: Process, starts: Floats, voice: Floats, changes: RowChanges) -> Floats:
+def results_in_long_run(process: Process, starts: Floats, lasting: Lasting, changes: RowChanges) -> Floats:
     """(k,) the long-run result (the average where it swings) with each change.
 
-    The plan must not be repeated, and no change may take the last arrow between two people that counts for ever.
+    lasting: `Lasting.of(process, voice)`. The plan must not be repeated, and no change may take the last arrow
+    between two people that counts for ever.
     """
-    track = course(process)
-    lasting = _Lasting.of(turn_of(track.lasting, track.firmness), track.firmness, voice)
-    before = _played(process, starts, track.rounds_before, changes)
+    before = _played(process, starts, course(process).rounds_before, changes)
     rows = _stage_rows(process.blocks[-1], process.network, changes)
     results = np.empty(len(changes))
     for at, person in enumerate(changes.person.tolist()):
         firm = float(changes.firmness[at])
         results[at] = lasting.result(person, (1 - firm) * rows[at], firm, before[:, at], starts)
     return results
-
-
-def long_run_is_accurate(process: Process) -> bool:
-    """Whether the closed forms keep half of their digits or more: not where groups hardly hear each other."""
-    track = course(process)
-    lasting = _Lasting.of(turn_of(track.lasting, track.firmness), track.firmness, np.zeros(len(track.firmness)))
-    inverses = (lasting.inverse, *lasting.fundamental)
-    return all(np.abs(inverse).max(initial=0.0) < NEARLY_APART for inverse in inverses)
 
 
 def _played(process: Process, starts: Floats, rounds: int, changes: RowChanges) -> Floats:
@@ -145,15 +136,17 @@ def _stage_rows(block: Block, network: Network, changes: RowChanges) -> Floats:
 
 
 @dataclass(frozen=True, eq=False)
-class _Lasting:
+class Lasting:
     """One round that goes on for ever, with what is needed to change one of its rows.
 
-    into: (groups,) what each closed group's view counts for in the result; to_starts: (n,) what the firm starts do.
+    voice: (n,) what each long-run belief counts for in the result; into: (groups,) what each closed group's view does;
+    to_starts: (n,) what the firm starts do.
     visits: (n,) what a passing person's belief after one round counts for, in all rounds that follow.
     inverse: (u, u) (I - Q)^-1 of the passing people, whose sums over rounds `visits` are.
     fundamental: of each closed group (k, k) Z = (I - T + 1 p)^-1 (Kemeny and Snell 1960).
     """
 
+    voice: Floats
     turn: Turn
     firmness: Floats
     reached: Eliminated
@@ -164,8 +157,10 @@ class _Lasting:
     fundamental: tuple[Floats, ...]
 
     @classmethod
-    def of(cls, turn: Turn, firmness: Floats, voice: Floats) -> _Lasting:
-        """The round `turn` for ever; the result is `voice` (n,) times the long-run beliefs."""
+    def of(cls, process: Process, voice: Floats) -> Lasting:
+        """What lasts of a process that is not repeated; the result is `voice` (n,) times the long-run beliefs."""
+        track = course(process)
+        turn = turn_of(track.lasting, track.firmness)
         shape = full_structure(turn.kept, turn.brought.any(axis=1))
         reached = Eliminated(turn, shape.closed)
         into = np.array([voice[group.members].sum() for group in reached.groups])
@@ -177,7 +172,13 @@ class _Lasting:
             inverse = np.linalg.inv(np.eye(len(passing)) - turn.kept[np.ix_(passing, passing)])
             visits[passing] = voice[passing] @ inverse
         fundamental = tuple(_fundamental(turn.kept, reached.within, group.members) for group in reached.groups)
-        return cls(turn, firmness, reached, into, to_starts, visits, inverse, fundamental)
+        return cls(voice, turn, track.firmness, reached, into, to_starts, visits, inverse, fundamental)
+
+    @property
+    def accurate(self) -> bool:
+        """Whether the closed forms keep half of their digits or more: not where groups hardly hear each other."""
+        inverses = (self.inverse, *self.fundamental)
+        return all(np.abs(inverse).max(initial=0.0) < NEARLY_APART for inverse in inverses)
 
     def result(self, person: int, row: Floats, firm: float, before: Floats, starts: Floats) -> float:
         """The result with the person's kept row (n,) and firmness replaced, when `before` is held before it."""
@@ -258,14 +259,13 @@ def pull_at_end(
 
 
 def pull_in_long_run(
-    process: Process, starts: Floats, voice: Floats, audible: Sequence[Mask] | None = None
+    process: Process, starts: Floats, lasting: Lasting, audible: Sequence[Mask] | None = None
 ) -> tuple[Floats, Floats]:
-    """`pull_at_end` for the long run of a plan that is not repeated.
+    """`pull_at_end` for the long run of a plan that is not repeated; lasting: `Lasting.of(process, voice)`.
 
     NaN where an arrow from a closed group to others would merge groups, so that the long run would jump.
     """
     track = course(process)
-    lasting = _Lasting.of(turn_of(track.lasting, track.firmness), track.firmness, voice)
     reached = lasting.reached
     before = advance(track.before, track.firmness, starts, starts)
     in_the_end = lasting.beliefs(reached.group_views(before), starts)
@@ -276,7 +276,7 @@ def pull_in_long_run(
         share = lasting.into[at] * reached.within[members]
         worth[np.ix_(members, members)] = np.outer(share, lasting.fundamental[at] @ before[members])
     pull = _by_weight(process, len(process.blocks) - 1, worth, audible)
-    voice_before, to_starts = reached.give_back(voice)
+    voice_before, to_starts = reached.give_back(lasting.voice)
     earlier, counts = pull_at_end(process, starts, track.rounds_before, voice_before, audible)
     return pull + earlier, counts + to_starts
 

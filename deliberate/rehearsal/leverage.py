@@ -16,8 +16,8 @@ import numpy as np
 
 from deliberate.dynamics.leverage import (
     FULL_PEOPLE,
+    Lasting,
     RowChanges,
-    long_run_is_accurate,
     pull_at_end,
     pull_in_long_run,
     results_at_end,
@@ -129,17 +129,18 @@ class _Levers:
         self.weights = weight_shares(sketch.process.network)
         known = shown_names(variant)
         self.names = [known[person] for person in sketch.people]
-        self.linear = question.hearing_range is None and not sketch.process.repeat
+        linear = question.hearing_range is None and not sketch.process.repeat
+        self.lasting = Lasting.of(self.process, self.voice) if linear else None
         small = len(sketch.people) <= MOST_REPLAYED
-        self.replayed = not self.linear or (small and not long_run_is_accurate(sketch.process))
+        self.replayed = self.lasting is None or (small and not self.lasting.accurate)
 
     def found(self) -> Leverage:
         at_end, in_long_run = self._results(self.process, self.starts)
         pull_end, counts_end = pull_at_end(self.process, self.starts, self.rounds, self.voice)
         guesses = list(self._guesses(pull_end))
         levers = list(self._of_rows(guesses, at_end, in_long_run))
-        if self.linear:
-            pull_long, counts_long = pull_in_long_run(self.process, self.starts, self.voice)
+        if self.lasting is not None:
+            pull_long, counts_long = pull_in_long_run(self.process, self.starts, self.lasting)
             levers += self._of_starts(counts_end, counts_long)
             arrows_end, arrows_long = self._of_arrows(pull_end), self._of_arrows(pull_long)
         else:
@@ -233,7 +234,7 @@ class _Levers:
             ends, lasting = map(np.array, zip(*results, strict=True))
         else:
             ends = results_at_end(self.process, self.starts, self.rounds, self.voice, changes)
-            lasting = results_in_long_run(self.process, self.starts, self.voice, changes)
+            lasting = results_in_long_run(self.process, self.starts, self.lasting, changes)
         for guess, end, last in zip(guesses, ends.tolist(), lasting.tolist(), strict=True):
             listener = self.people[guess.person]
             others = tuple(self.people[one] for one in guess.others)

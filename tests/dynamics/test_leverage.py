@@ -10,6 +10,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from deliberate.dynamics.leverage import (
+    Lasting,
     RowChanges,
     pull_at_end,
     pull_in_long_run,
@@ -70,7 +71,7 @@ def test_finite_changes_are_what_recomputing_gives(talk, seed):
     changes = some_changes(process, seed)
     rounds = sum(block.rounds for block in process.blocks) + 1
     ends = results_at_end(process, starts, rounds, voice, changes)
-    lasting = results_in_long_run(process, starts, voice, changes)
+    lasting = results_in_long_run(process, starts, Lasting.of(process, voice), changes)
     for at, person in enumerate(changes.person):
         other = with_row(process, person, changes.weights[at], changes.firmness[at])
         assert ends[at] == pytest.approx(voice @ play(other, starts, rounds)[-1], abs=1e-9)
@@ -83,7 +84,7 @@ def test_pull_is_the_derivative_of_the_result(talk):
     rounds = sum(block.rounds for block in process.blocks)
     weights = weight_shares(process.network)
     at_end, start_end = pull_at_end(process, starts, rounds, voice)
-    in_long_run, start_long_run = pull_in_long_run(process, starts, voice)
+    in_long_run, start_long_run = pull_in_long_run(process, starts, Lasting.of(process, voice))
     size = len(starts)
     for person in range(size):
         sources = np.flatnonzero(weights[person])
@@ -114,7 +115,7 @@ def test_two_people_as_published(a, b):
     """Schweitzer 1968, Meyer 1975 (from memory): d(influence)/da = (-b, b)/(a+b)^2."""
     process = plain([[1 - a, a], [b, 1 - b]])
     for start, slope in (((1, 0), -b / (a + b) ** 2), ((0, 1), b / (a + b) ** 2)):
-        pull, _ = pull_in_long_run(process, np.array(start, dtype=float), np.full(2, 0.5))
+        pull, _ = pull_in_long_run(process, np.array(start, dtype=float), Lasting.of(process, np.full(2, 0.5)))
         assert pull[0, 1] - pull[0, 0] == pytest.approx(slope)
 
 
@@ -122,7 +123,7 @@ def test_a_finite_change_of_two_people_exactly():
     """Influence is (b, a)/(a+b); from a = 0.3 to 0.4 the second person's goes from 0.3/0.5 to 0.4/0.6."""
     process = plain([[0.7, 0.3], [0.2, 0.8]])
     changes = RowChanges(np.array([0]), np.array([[0.6, 0.4]]), np.zeros(1))
-    result = results_in_long_run(process, np.array([0.0, 1.0]), np.full(2, 0.5), changes)
+    result = results_in_long_run(process, np.array([0.0, 1.0]), Lasting.of(process, np.full(2, 0.5)), changes)
     assert result[0] == pytest.approx(2 / 3, rel=1e-12)
 
 
@@ -132,7 +133,7 @@ def test_total_effects_as_published():
     effects = [[0.280, 0.045, 0.551, 0.124], [0.047, 0.278, 0.549, 0.126], [0, 0, 1, 0], [0.030, 0.048, 0.532, 0.390]]
     process = plain(points, np.diag(points))
     for person, expected in enumerate(effects):
-        _, counts = pull_in_long_run(process, np.array([25.0, 25, 75, 85]), np.eye(4)[person])
+        _, counts = pull_in_long_run(process, np.array([25.0, 25, 75, 85]), Lasting.of(process, np.eye(4)[person]))
         assert counts == pytest.approx(expected, abs=0.0015)
 
 
@@ -142,7 +143,7 @@ def test_fundamental_matrix_as_published():
     process = plain([[1 / 2, 1 / 4, 1 / 4], [1 / 2, 0, 1 / 2], [1 / 4, 1 / 4, 1 / 2]])
     fundamental = np.array([[86, 3, -14], [6, 63, 6], [-14, 3, 86]]) / 75
     for start in np.eye(3):
-        pull, counts = pull_in_long_run(process, start, np.full(3, 1 / 3))
+        pull, counts = pull_in_long_run(process, start, Lasting.of(process, np.full(3, 1 / 3)))
         assert counts == pytest.approx([0.4, 0.2, 0.4])
         assert pull == pytest.approx(np.outer([0.4, 0.2, 0.4], fundamental @ start))
 
@@ -155,7 +156,7 @@ def test_equal_people_have_equal_leverage():
     starts = np.array([20.0, 20, 70, 70, 50])
     for pull, counts in (
         pull_at_end(process, starts, 3, np.full(5, 0.2)),
-        pull_in_long_run(process, starts, np.full(5, 0.2)),
+        pull_in_long_run(process, starts, Lasting.of(process, np.full(5, 0.2))),
     ):
         assert counts == pytest.approx(np.full(5, 0.2))
         assert pull[0, 2] == pytest.approx(pull[1, 3])
@@ -165,7 +166,7 @@ def test_equal_people_have_equal_leverage():
 def test_an_arrow_out_of_a_closed_group_has_no_derivative():
     process = plain([[0.5, 0.5, 0, 0], [0.5, 0.5, 0, 0], [0, 0, 0.5, 0.5], [0, 0, 0.5, 0.5]])
     everybody = [np.ones((4, 4), dtype=bool)]
-    pull, _ = pull_in_long_run(process, np.array([0.0, 0, 1, 1]), np.full(4, 0.25), everybody)
+    pull, _ = pull_in_long_run(process, np.array([0.0, 0, 1, 1]), Lasting.of(process, np.full(4, 0.25)), everybody)
     assert np.isnan(pull[0, 2:]).all()
     assert np.isfinite(pull[0, :2]).all()
 
@@ -173,7 +174,9 @@ def test_an_arrow_out_of_a_closed_group_has_no_derivative():
 def test_someone_who_becomes_firm_draws_the_closed_group():
     process = plain([[0.5, 0.5], [0.5, 0.5]])
     changes = RowChanges(np.array([1]), np.array([[0.5, 0.5]]), np.array([0.1]))
-    assert results_in_long_run(process, np.array([0.0, 8.0]), np.full(2, 0.5), changes)[0] == pytest.approx(8.0)
+    assert results_in_long_run(process, np.array([0.0, 8.0]), Lasting.of(process, np.full(2, 0.5)), changes)[
+        0
+    ] == pytest.approx(8.0)
 
 
 def test_weights_as_shares():

@@ -8,7 +8,7 @@ from functools import cached_property
 
 import numpy as np
 
-from deliberate.dynamics.leverage import pull_at_end, pull_in_long_run, weight_shares
+from deliberate.dynamics.leverage import Lasting, pull_at_end, pull_in_long_run, weight_shares
 from deliberate.dynamics.network import Network
 from deliberate.dynamics.process import course
 from deliberate.rehearsal.assemble import heard
@@ -128,7 +128,7 @@ class Grounds:
         voice = sketch.present / sketch.present.sum()
         if process.repeat:
             return pull_at_end(process, sketch.influence, LONG * sketch.plan_rounds, voice, self.audible)[0]
-        return pull_in_long_run(process, sketch.influence, voice, self.audible)[0]
+        return pull_in_long_run(process, sketch.influence, Lasting.of(process, voice), self.audible)[0]
 
     def pull_on_pace(self) -> Floats | None:
         """(n, n) by how much each weight slows the slowest part of the talk: the derivative of an eigenvalue is
