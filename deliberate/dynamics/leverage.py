@@ -139,7 +139,7 @@ def _stage_rows(block: Block, network: Network, changes: RowChanges) -> Floats:
 class Lasting:
     """One round that goes on for ever, with what is needed to change one of its rows.
 
-    voice: (n,) what each long-run belief counts for in the result; into: (groups,) what each closed group's view does;
+    voice: (n,) what each long-run belief counts for in the result; into: (groups,) what each group's view does;
     to_starts: (n,) what the firm starts do.
     visits: (n,) what a passing person's belief after one round counts for, in all rounds that follow.
     inverse: (u, u) (I - Q)^-1 of the passing people, whose sums over rounds `visits` are.
