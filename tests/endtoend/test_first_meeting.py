@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-import json
 from pathlib import Path
 
 from patience import until
+from saving import save_as
 
 PLACES = {"Noor": (420, 250), "Teo": (640, 250), "Ilse": (530, 450)}
 STARTS = {"Noor": 80, "Teo": 20, "Ilse": 60}
@@ -39,15 +39,7 @@ def test_draw_three_people_play_read_and_save(start, hands, reader, home: Path) 
     hands.press("F9")
     until("it plays to the end", lambda: reader.find("Round 12 of 12"))
 
-    hands.press("ctrl+s")
-    until("it asks where to", lambda: reader.find("Save the meeting as"))
-    hands.turn_to("Save the meeting as")
-    hands.press("ctrl+a")
-    hands.write(str(home / "harbour"))
-    hands.press("Return")
-    saved = home / "harbour.deliberate.json"
-    until("the file is there", saved.exists)
-    meeting = json.loads(saved.read_text(encoding="utf-8"))
+    meeting = save_as(hands, reader, home / "harbour")
     (variant,) = meeting["variants"]
     question = meeting["questions"][0]["id"]
     names = {person["id"]: person["name"] for person in variant["people"]}

@@ -7,6 +7,7 @@ from pathlib import Path
 
 import pytest
 from patience import until
+from saving import save_as
 
 STARTS = {"Noor": 80, "Teo": 20, "Ilse": 60}
 # What can be worked with must have a name.
@@ -55,15 +56,8 @@ def test_draw_play_and_save_by_keys_alone(start, hands, reader, home: Path) -> N
 
     hands.press("F9")
     until("it plays to the end", lambda: reader.find("Round 12 of 12"))
-    hands.press("ctrl+s")
-    until("it asks where to", lambda: reader.find("Save the meeting as"))
-    hands.turn_to("Save the meeting as")
-    hands.press("ctrl+a")
-    hands.write(str(home / "harbour"))
-    hands.press("Return")
-    saved = home / "harbour.deliberate.json"
-    until("the file is there", saved.exists)
-    (variant,) = json.loads(saved.read_text(encoding="utf-8"))["variants"]
+    meeting = save_as(hands, reader, home / "harbour")
+    (variant,) = meeting["variants"]
     assert sorted(belief for person in variant["people"] for belief in person["beliefs"].values()) == [20, 60, 80]
     assert len(variant["arrows"]) == 3
 
