@@ -13,6 +13,7 @@ from deliberate.window import help_texts
 from deliberate.window.gallery import Gallery
 from deliberate.window.player import SPEEDS
 from deliberate.window.recent import label
+from deliberate.window.right_pages import TITLES
 from deliberate.window.seating import SeatingDialog
 from deliberate.window.text import tooltip, with_ampersands
 
@@ -159,8 +160,20 @@ class Actions(QObject):
             action.setData(speed)
             self.speeds.addAction(action)
         menu.addSeparator()
+        self._fill_answers(menu)
+        menu.addSeparator()
         self._add(menu, "&Mixed tables …", self._show_seating, "Ctrl+M")
         self._show_playback()
+
+    def _fill_answers(self, menu: QMenu) -> None:
+        """What can be asked of the sketch."""
+        pages, doubting = self._window.right_pages, self._window.session.doubting
+        for place, title in enumerate(TITLES):
+            self._add(menu, title, lambda place=place: pages.turn_to(place), f"Ctrl+{place + 1}")
+        self.doubt = self._add(menu, "How s&ure it is", lambda: doubting.want(self.doubt.isChecked()), "Ctrl+U")
+        self.doubt.setCheckable(True)
+        self.doubt.setToolTip("Draws the guessed numbers again and again")
+        doubting.changed.connect(lambda: self.doubt.setChecked(doubting.wanted))
 
     def _show_seating(self) -> None:
         window = self._window
@@ -190,6 +203,12 @@ class Actions(QObject):
             menu, "Arrows show the way &beliefs travel", lambda: canvas.set_flow(self.flow.isChecked()), "Ctrl+B"
         )
         self.flow.setCheckable(True)
+        arrows = self._window.arrow_leverage
+        self.moves = self._add(
+            menu, "Arrows show what they &move", lambda: arrows.want(self.moves.isChecked()), "Ctrl+L"
+        )
+        self.moves.setCheckable(True)
+        self.moves.setToolTip("As thick as what ten points more would move the mean, instead of as their shares")
         menu.addSeparator()
         self._fill_before_others(menu)
         menu.addSeparator()

@@ -34,6 +34,8 @@ On the picture
   Ctrl+A, Escape        select everybody, nobody
   Ctrl+X, C, V, D       cut, copy, paste, duplicate
   + and -, Ctrl+0       zoom, fit everybody in
+  Ctrl+B                arrows show the way beliefs travel, or who listens to whom
+  Ctrl+L                arrows as thick as what they move, or as their points
 
 In the left bar
   Alt+L, U, B, M        people, question, ballot, meeting
@@ -49,6 +51,11 @@ The talk (picture, chart and round bar)
   Space, F9 anywhere    play or pause
   Page Down, Page Up    one step on, one step back
   Home, End             to the start, to the end
+
+Below the chart
+  Ctrl+1, 2, 3          what stands out, what would help, what it hangs on
+  Ctrl+U                how sure it is: the guesses drawn again and again
+  Ctrl+M                mixed tables
 
 In front of others
   F5                    projector view; there Page Down or a click steps on, Escape leaves
