@@ -57,16 +57,17 @@ class Association:
         self._products += numbers @ outcomes.T
 
     def explained(self, outcome: int) -> Explained:
-        """What the numbers explain of one outcome."""
+        """What the numbers explain of one outcome; nothing where there are hardly more draws than numbers."""
         draws = self._draws
-        if draws < 3:
+        if not draws:
             return NOTHING
         mean, outcome_mean = self._sum / draws, self._outcome_sum[outcome] / draws
         variance = self._outcome_squares[outcome] / draws - outcome_mean**2
         spread = self._squares / draws - np.outer(mean, mean)
         scale = np.sqrt(np.maximum(spread.diagonal(), 0.0))
         varies = scale > SAME * np.sqrt(self._squares.diagonal() / draws + self._centre[:, 0] ** 2)
-        if variance <= SAME**2 * (self._outcome_centre[outcome, 0] ** 2 + variance) or not varies.any():
+        still = variance <= SAME**2 * (self._outcome_centre[outcome, 0] ** 2 + variance)
+        if still or not 0 < varies.sum() < draws - 1:
             return NOTHING
         joint = self._products[varies, outcome] / draws - mean[varies] * outcome_mean
         correlation = joint / (scale[varies] * np.sqrt(variance))
@@ -78,8 +79,6 @@ class Association:
 
 def _adjusted(explained: float, numbers: int, draws: int) -> Explained:
     left = draws - numbers - 1
-    if left < 1:
-        return NOTHING
     share = 1.0 - (1.0 - explained) * (draws - 1) / left
     error = 2.0 * np.sqrt(max(share, 0.0)) * (1.0 - share) / np.sqrt(draws)
     if explained >= 1.0:

@@ -51,7 +51,7 @@ def says_mean(sketch: Sketch, bands: Floats) -> str:
     low, middle, high = bands[0], bands[len(bands) // 2], bands[-1]
     views = sketch.number(low), sketch.number(middle), sketch.view(high)
     if views[0] == sketch.number(high):
-        return f"The mean view at the plan's end is {views[2]} in nearly all draws."
+        return f"The mean view at the plan's end is {views[2]} in at least 8 of 10 draws."
     return (
         f"The mean view at the plan's end lies between {views[0]} and {views[2]} in 8 of 10 draws, half of them"
         f" below {views[1]}."
