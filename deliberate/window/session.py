@@ -205,14 +205,14 @@ class Session(QObject):
     def open(self, scenario: Scenario, path: Path | None, *, saved: bool = True) -> None:
         """Put another meeting in place of this one, with a fresh history."""
         self.player.pause()
+        self.select()
+        self.light(None)
         self._history = History(scenario, scenario.variants[0].name)
         if not saved:
             self._history.mark_saved(None)
         self._question = scenario.questions[0].id
         self.path = path
         self.opened += 1
-        self.selection = Selection()
-        self.lit = None
         self._codes, self._coding = NO_CODES, None
         self._show_again()
         self.player.seek(0)

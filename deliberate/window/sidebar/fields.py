@@ -13,6 +13,7 @@ from deliberate.window.text import explain
 REST_MS = 500  # a pause in typing after which longer texts are handed over
 
 
+PARAGRAPH = "\u2029"  # what Qt's documents keep between lines
 MODIFIERS = (Qt.Key.Key_Control, Qt.Key.Key_Shift, Qt.Key.Key_Alt, Qt.Key.Key_AltGr, Qt.Key.Key_Meta)
 ELSEWHERE = (Qt.FocusReason.ActiveWindowFocusReason, Qt.FocusReason.PopupFocusReason)  # comes back to go on typing
 
@@ -120,11 +121,15 @@ class TextField(QPlainTextEdit):
         if notes:
             self.textChanged.connect(self._typing)
 
+    def text(self) -> str:
+        """What stands in the field, letter by letter: `toPlainText` makes plain spaces of those that do not break."""
+        return self.document().toRawText().replace(PARAGRAPH, "\n")
+
     def show_text(self, text: str, subject: object = None) -> None:
         """The text that holds now for `subject`. What is being typed for the same one is left alone."""
         typing = self.hasFocus() and self.document().isModified() and subject == self._subject
         self._kept, self._subject = text, subject
-        if not typing and text != self.toPlainText():
+        if not typing and text != self.text():
             self.setPlainText(text)
 
     def hand_over(self) -> None:
@@ -133,10 +138,10 @@ class TextField(QPlainTextEdit):
         if not self.document().isModified():
             return
         self.document().setModified(False)
-        typed = self.toPlainText()
+        typed = self.text()
         if typed != self._kept:
             self.given.emit(typed)
-        if self._kept != self.toPlainText():  # refused or tidied
+        if self._kept != self.text():  # refused or tidied
             self.setPlainText(self._kept)
 
     def _typing(self) -> None:

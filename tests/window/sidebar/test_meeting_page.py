@@ -103,3 +103,11 @@ def test_control_characters_that_come_with_pasting_are_refused(qtbot: QtBot, ope
     with qtbot.waitSignal(session.refused, check_params_cb=lambda why: "notes" in why):
         page.title.setFocus()
     assert page.notes.toPlainText() == ""
+
+
+def test_spaces_that_do_not_break_survive_typing(open_sidebar: Open) -> None:
+    page, session = open_page(open_sidebar, replace(TWO, notes="10\u00a0000 oui\u202f!\nFin"))
+    page.notes.setFocus()
+    QTest.keyClicks(page.notes, "Oh ")
+    page.title.setFocus()
+    assert session.scenario.notes == "Oh 10\u00a0000 oui\u202f!\nFin"

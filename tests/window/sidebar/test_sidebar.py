@@ -144,6 +144,14 @@ def test_opening_another_meeting_shows_it_on_every_page(open_sidebar: Open) -> N
     assert sidebar.people.table.model().rowCount() == 5
 
 
+def test_opening_a_meeting_of_the_same_people_selects_nobody(open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    session.select(people=["amina"])
+    session.open(edits.set_title(CIRCLES, "Other"), None)
+    assert sidebar.people.table.selectionModel().selectedRows() == []
+    assert not sidebar.people.start.isVisible()
+
+
 # What belongs to the selected people
 
 
