@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 from meetings import meeting
 from telling import after, all_told, kinds, share_rows, sketch, talk, told
 
-from deliberate.rehearsal.results import Introduce, JointRound
+from deliberate.rehearsal.results import Introduce, Introductions, JointRound
 from deliberate.scenario.values import Plan, Question, Stage
 
 # Two blocks (DeGroot 1974, from memory): the first settles on the mean, the second with influence (1/3, 2/3).
@@ -43,11 +43,13 @@ def test_two_circles() -> None:
     assert finding.groups == TABLES
 
 
-def test_the_introduction_makes_one_group() -> None:
+def test_the_introduction_makes_one_group_in_which_every_start_counts() -> None:
     scenario = meeting(CIRCLES, STARTS)
     finding = told(scenario, "closed-groups")
-    assert finding.suggestion == Introduce("d", "a", 10)
-    assert len(after(scenario, finding).closed) == 1
+    assert finding.suggestion == Introductions((("d", "a"), ("a", "d")), 10)
+    sketch = after(scenario, finding)
+    assert len(sketch.closed) == 1
+    assert (sketch.influence > 0).all()
 
 
 def test_circles_that_meet_are_no_matter() -> None:

@@ -74,7 +74,7 @@ def test_trying_a_change_makes_a_variant_and_tells_what_it_does(qtbot: QtBot, pa
     qtbot.waitUntil(lambda: panel.effect.isVisible())
     assert session.scenario.variants[0] is CIRCLES.variants[0]
     assert session.variant is session.scenario.variants[1]
-    assert len(session.variant.arrows) == len(CIRCLES.variants[0].arrows) + 1
+    assert len(session.variant.arrows) == len(CIRCLES.variants[0].arrows) + 2
     before, after = rehearse(CIRCLES), rehearse(session.scenario, session.variant.name)
     lines = effect_lines(before, after, session.question)
     assert panel.effect.lines.text().splitlines() == [f"{name}: {was} → {now}" for name, was, now in lines]

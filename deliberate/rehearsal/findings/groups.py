@@ -7,7 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from deliberate.rehearsal.findings.sketch import Indices, Sketch, ending, is_are
-from deliberate.rehearsal.findings.suggesting import introduction, joint_round, tried
+from deliberate.rehearsal.findings.suggesting import acquaintance, introduction, joint_round, tried
 from deliberate.rehearsal.results import Finding, Floats, Suggestion
 from deliberate.rehearsal.words import in_words, listing, sentence
 
@@ -73,10 +73,10 @@ def _why_closed(sketch: Sketch, groups: list[Indices], ends: Floats) -> str:
 
 
 def _meeting(sketch: Sketch, groups: list[Indices]) -> Suggestion | None:
-    """The first introduction of those that are needed; a joint round where a stage keeps the groups apart."""
-    # The smaller group's own start fades when it alone listens, so it is the one to begin with.
+    """The first two to be introduced of those that are needed; a joint round where a stage keeps groups apart."""
+    # Both ways, so that neither group's starts fade out.
     gap = sketch.spread(sketch.long_run)
-    return introduction(sketch, groups[1], groups[0]) or joint_round(
+    return acquaintance(sketch, groups[1], groups[0]) or joint_round(
         sketch, lambda after: after.spread(after.long_run) < gap
     )
 

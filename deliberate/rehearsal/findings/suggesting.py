@@ -9,7 +9,7 @@ from msgspec.structs import replace
 
 from deliberate.rehearsal.findings.sketch import Indices, Sketch, sketch_of
 from deliberate.rehearsal.rehearse import rehearse
-from deliberate.rehearsal.results import Introduce, JointRound, KeepOwnView, Suggestion
+from deliberate.rehearsal.results import Introduce, Introductions, JointRound, KeepOwnView, Suggestion
 from deliberate.rehearsal.suggestions import change_in_place
 from deliberate.scenario.values import Ballot
 
@@ -33,6 +33,19 @@ def introduction(sketch: Sketch, listeners: Indices, sources: Indices) -> Introd
             if source not in known and source != listener and _would_count(sketch, listener, source):
                 return Introduce(*sketch.ids([listener, source]), INTRODUCED_POINTS)
     return None
+
+
+def acquaintance(sketch: Sketch, one_side: Indices, other_side: Indices) -> Introduce | Introductions | None:
+    """Somebody of either side who hear each other, so that the starts of both count; one way where only that can be,
+    None where nothing can."""
+    first = introduction(sketch, one_side, other_side)
+    if first is None:
+        return None
+    hears, heard = (np.array([sketch.assembly.place[one]]) for one in (first.listener, first.source))
+    back = introduction(sketch, heard, hears)
+    if back is None:
+        return first
+    return Introductions(((first.listener, first.source), (back.listener, back.source)), INTRODUCED_POINTS)
 
 
 def own_views(sketch: Sketch, people: Iterable[int]) -> KeepOwnView:
