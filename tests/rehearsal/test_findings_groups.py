@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 from meetings import meeting
 from telling import after, all_told, kinds, share_rows, sketch, talk, told
 
-from deliberate.rehearsal.results import Introduce, Introductions, JointRound
+from deliberate.rehearsal.results import Introductions, JointRound
 from deliberate.scenario.values import Plan, Question, Stage
 
 # Two blocks (DeGroot 1974, from memory): the first settles on the mean, the second with influence (1/3, 2/3).
