@@ -20,6 +20,8 @@ if TYPE_CHECKING:
 
 CALM_MS = 200
 MOST = 20  # levers told
+LEVERS = "How far each guess moves the mean of those present, one at a time:"
+ASKING_FIRST = "First what is worth asking about again, then how far each guess moves the mean of those present:"
 
 
 class HangsOnPage(QWidget):
@@ -93,7 +95,6 @@ class HangsOnPage(QWidget):
 
     def _take(self, leverage: Leverage) -> None:
         self._leverage = leverage
-        self.state.setText("How far each guess moves the mean of those present, one at a time:")
         self._tell()
 
     def _refuse(self, why: str) -> None:
@@ -103,6 +104,9 @@ class HangsOnPage(QWidget):
         doubting = self._session.doubting
         self.draw.setVisible(not doubting.wanted)
         told = []
+        asking = doubting.doubt is not None and bool(doubting.doubt.hangs_on)
+        if self._leverage is not None:
+            self.state.setText(ASKING_FIRST if asking else LEVERS)
         if doubting.doubt is not None:
             told = [
                 Told(
