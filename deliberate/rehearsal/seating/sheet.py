@@ -5,7 +5,7 @@ It names people and tables only: no beliefs and no figures, because it is read b
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator, Sequence
 from html import escape
 
 from deliberate.rehearsal.seating.told import stage_names, table_names
@@ -13,13 +13,12 @@ from deliberate.rehearsal.seating.wish import Seating
 from deliberate.rehearsal.words import shown_names
 from deliberate.scenario.values import Variant
 
+TABLES_ABREAST = 4
+# What a browser and Qt's rich text both understand.
 STYLE = """\
 body { font-family: sans-serif; font-size: 11pt; }
-h1 { font-size: 17pt; margin-bottom: 2pt; }
-h2 { font-size: 13pt; margin-top: 16pt; margin-bottom: 4pt; }
-td { padding: 3pt 14pt 3pt 0; vertical-align: top; }
-td.table { font-weight: bold; white-space: nowrap; }
-td.turn { text-align: center; }
+h1 { font-size: 17pt; margin-bottom: 4px; }
+h2 { font-size: 13pt; margin-top: 22px; margin-bottom: 6px; }
 """
 
 
@@ -32,35 +31,49 @@ def as_text(title: str, seating: Seating, variant: Variant) -> str:
         for table, people in zip(table_names(seating), tables, strict=True):
             lines.append(f"{table}: {', '.join(known[one] for one in people)}")
     lines += ["", "By name"]
-    for person, numbers in by_name(seating):
+    for person, numbers in by_name(seating, variant):
         lines.append(f"{known[person]}: {', then '.join(f'table {number}' for number in numbers)}")
     return "\n".join(lines) + "\n"
 
 
 def as_html(title: str, seating: Seating, variant: Variant) -> str:
-    """The same for print, with every name escaped."""
+    """The same for print, a name a line, with every name escaped."""
     known = {person: escape(name) for person, name in shown_names(variant).items()}
     parts = [f"<html><head><style>{STYLE}</style></head><body><h1>{escape(title)}</h1>"]
     for name, tables in zip(stage_names(seating), seating.rotations, strict=True):
-        parts.append(f"<h2>{escape(name)}</h2><table>")
-        for table, people in zip(table_names(seating), tables, strict=True):
-            listed = ", ".join(known[one] for one in people)
-            parts.append(f'<tr><td class="table">{table}</td><td>{listed}</td></tr>')
-        parts.append("</table>")
-    heads = "".join(f'<td class="turn"><b>{turn}</b></td>' for turn in stage_names(seating))
-    parts.append(f"<h2>By name</h2><table><tr><td></td>{heads}</tr>")
-    for person, numbers in by_name(seating):
-        cells = "".join(f'<td class="turn">{number}</td>' for number in numbers)
-        parts.append(f"<tr><td>{known[person]}</td>{cells}</tr>")
-    parts.append("</table></body></html>")
+        cells = [
+            _table_cell(table, [known[one] for one in people])
+            for table, people in zip(table_names(seating), tables, strict=True)
+        ]
+        parts.append(f"<h2>{escape(name)}</h2>{_table(_rows(cells), width='100%')}")
+    heads = ["<td></td>", *(f'<td align="center"><b>{turn}</b></td>' for turn in stage_names(seating))]
+    rows = [
+        [f"<td>{known[person]}</td>", *(f'<td align="center">{number}</td>' for number in numbers)]
+        for person, numbers in by_name(seating, variant)
+    ]
+    parts.append(f"<h2>By name</h2>{_table([heads, *rows])}</body></html>")
     return "".join(parts)
 
 
-def by_name(seating: Seating) -> Iterator[tuple[str, tuple[int, ...]]]:
-    """Everybody who is seated, in the order of the people, with the number of her table in each rotation."""
+def _table_cell(table: str, escaped: Sequence[str]) -> str:
+    return f'<td valign="top" width="{100 // TABLES_ABREAST}%"><b>{table}</b><br>{"<br>".join(escaped)}</td>'
+
+
+def _rows(cells: Sequence[str]) -> list[Sequence[str]]:
+    return [cells[at : at + TABLES_ABREAST] for at in range(0, len(cells), TABLES_ABREAST)]
+
+
+def _table(rows: Iterable[Sequence[str]], width: str = "60%") -> str:
+    lines = "".join(f"<tr>{''.join(row)}</tr>" for row in rows)
+    return f'<table cellspacing="0" cellpadding="5" width="{width}">{lines}</table>'
+
+
+def by_name(seating: Seating, variant: Variant) -> Iterator[tuple[str, tuple[int, ...]]]:
+    """Everybody who is seated, by name, with the number of her table in each rotation."""
+    known = shown_names(variant)
     table_of = [
         {person: number for number, table in enumerate(tables, start=1) for person in table}
         for tables in seating.rotations
     ]
-    for person in table_of[0]:
+    for person in sorted(table_of[0], key=lambda one: (known[one].casefold(), one)):
         yield person, tuple(there[person] for there in table_of)

@@ -8,13 +8,15 @@ from PySide6.QtCore import QPoint, QPointF, QRect, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QFont, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QLayout, QLayoutItem, QSizePolicy, QWidget
 
-from deliberate.window.text import elided, explain
+from deliberate.window.text import explain
 from deliberate.window.theme import Look, mix
 
 MARGIN = 10
 DOT = 5.0
 WIDTH = 172
 GAP = 10
+INDENT = round(2 * DOT) + 7
+SPACE = 3
 
 
 class TableCard(QWidget):
@@ -33,13 +35,24 @@ class TableCard(QWidget):
         explain(self, f"{title}: {', '.join(names)}")
 
     def sizeHint(self) -> QSize:
-        return QSize(WIDTH, 2 * MARGIN + self._line() * (len(self.names) + 1) + 2)
+        return QSize(WIDTH, 2 * MARGIN + self._line() + sum(map(self._height, self.names)) + 2)
 
     def minimumSizeHint(self) -> QSize:
         return self.sizeHint()
 
     def _line(self) -> int:
-        return self.fontMetrics().lineSpacing() + 3
+        return self.fontMetrics().lineSpacing() + SPACE
+
+    def _height(self, name: str) -> int:
+        """How high a name is, which wraps where it is too long for a line."""
+        room = QRect(0, 0, WIDTH - 2 * MARGIN - INDENT, 10_000)
+        return self.fontMetrics().boundingRect(room, self._wrapping(name), name).height() + SPACE
+
+    def _wrapping(self, name: str) -> int:
+        """Between words; anywhere only where a single word is too long."""
+        flags = Qt.TextFlag.TextWordWrap | Qt.AlignmentFlag.AlignVCenter
+        widest = max(map(self.fontMetrics().horizontalAdvance, name.replace("-", "- ").split()), default=0)
+        return flags | Qt.TextFlag.TextWrapAnywhere if widest > WIDTH - 2 * MARGIN - INDENT else flags
 
     def paintEvent(self, event: QPaintEvent) -> None:
         theme, line = self._look.theme, self._line()
@@ -53,15 +66,17 @@ class TableCard(QWidget):
             row = QRect(MARGIN, MARGIN, self.width() - 2 * MARGIN, line)
             painter.drawText(row, Qt.AlignmentFlag.AlignVCenter, self.title)
             painter.setFont(self.font())
+            top = row.bottom() + 1
             for name, color in zip(self.names, self._colors, strict=True):
-                row.translate(0, line)
                 painter.setPen(QPen(mix(theme.mark, theme.canvas, 0.2), 1))
                 painter.setBrush(color)
-                painter.drawEllipse(QPointF(row.left() + DOT, row.center().y() + 1), DOT, DOT)
+                painter.drawEllipse(QPointF(MARGIN + DOT, top + line / 2), DOT, DOT)
                 painter.setPen(QColor(theme.ink))
-                words = row.adjusted(round(2 * DOT) + 7, 0, 0, 0)
-                flags = Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
-                painter.drawText(words, flags, elided(name, self.font(), words.width()))
+                height = self._height(name)
+                painter.drawText(
+                    QRect(MARGIN + INDENT, top, row.width() - INDENT, height), self._wrapping(name), name
+                )
+                top += height
 
 
 class Flow(QLayout):

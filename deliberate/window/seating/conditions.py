@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from PySide6.QtCore import QEvent, QObject, Qt, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QCheckBox, QGridLayout, QListWidget, QListWidgetItem, QPushButton, QVBoxLayout, QWidget
 
 from deliberate.rehearsal.seating.told import condition_words
@@ -56,6 +56,7 @@ class ConditionsEditor(QWidget):
         self.list = QListWidget(self)
         self.list.setAccessibleName("Conditions")
         self.list.setWordWrap(True)
+        self.list.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.list.setTextElideMode(Qt.TextElideMode.ElideNone)
         self.list.installEventFilter(self)
         self.remove = _small("Remove", "Remove the chosen condition (Delete)", self)
@@ -164,11 +165,19 @@ class ConditionsEditor(QWidget):
             kind, about = ("role", one.role) if isinstance(one, RoleAtEvery) else (one.kind, one.people)
             self.list.addItem(QListWidgetItem(sentence(condition_words(kind, about, self._variant))))
         self.list.setCurrentRow(row)
-        line = self.fontMetrics().lineSpacing() + 8
-        self.list.setFixedHeight(line * min(max(len(self.conditions), 1), ROWS_SHOWN) + 4)
         self.list.setVisible(bool(self.conditions))
+        self._fit_list()
         self.remove.setVisible(bool(self.conditions))
         self._refresh_buttons()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit_list()
+
+    def _fit_list(self) -> None:
+        """As high as the first few conditions, which may take several lines each."""
+        rows = range(min(len(self.conditions), ROWS_SHOWN))
+        self.list.setFixedHeight(sum(self.list.sizeHintForRow(row) for row in rows) + 12)
 
     def _refresh_buttons(self) -> None:
         one, other = self.first.currentData(), self.second.currentData()
