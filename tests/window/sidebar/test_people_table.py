@@ -6,9 +6,9 @@ import pytest
 from circles import AS_IT_STANDS, CIRCLES, LABEL, meeting, person
 from msgspec.structs import replace
 from PySide6.QtCore import QItemSelectionModel, QPoint, Qt
-from PySide6.QtGui import QGuiApplication
+from PySide6.QtGui import QContextMenuEvent, QGuiApplication
 from PySide6.QtTest import QAbstractItemModelTester
-from PySide6.QtWidgets import QAbstractItemView, QApplication, QLineEdit, QWidget
+from PySide6.QtWidgets import QAbstractItemView, QApplication, QLineEdit, QMenu, QWidget
 from pytestqt.qtbot import QtBot
 
 from deliberate.scenario import edits
@@ -463,3 +463,44 @@ def test_who_is_not_there_is_muted(qtbot: QtBot, open_sidebar: Open) -> None:
     assert table.viewport().grab(rect).toImage() != there
     session.undo()
     assert table.viewport().grab(rect).toImage() == there
+
+
+def open_menu(table: PeopleTable, reason: QContextMenuEvent.Reason, at: QPoint) -> QMenu:
+    event = QContextMenuEvent(reason, at, table.viewport().mapToGlobal(at))
+    QApplication.sendEvent(table.viewport(), event)
+    QApplication.processEvents()
+    menu = QApplication.activePopupWidget()
+    assert isinstance(menu, QMenu)
+    return menu
+
+
+def test_the_menu_has_what_the_keys_do(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, session = open_sidebar()
+    table = sidebar.people.table
+    click(qtbot, table, 1, Column.START)
+    at = table.visualRect(table.model().index(1, Column.START)).center()
+    menu = open_menu(table, QContextMenuEvent.Reason.Keyboard, at)
+    entries = {action.text(): action for action in menu.actions() if action.text()}
+    assert list(entries) == ["Change", "Copy", "Paste", "Select all", "Remove", "Columns"]
+    entries["Copy"].trigger()
+    assert QGuiApplication.clipboard().text().startswith("Bilal\t80")
+    entries["Remove"].trigger()
+    assert [one.id for one in people(session)][:2] == ["amina", "chiara"]
+    menu.close()
+
+
+def test_the_menu_of_the_headings_chooses_columns(qtbot: QtBot, open_sidebar: Open) -> None:
+    sidebar, _ = open_sidebar()
+    table = sidebar.people.table
+    header = table.horizontalHeader()
+    at = QPoint(20, 8)
+    reason = QContextMenuEvent.Reason.Mouse
+    QApplication.sendEvent(header.viewport(), QContextMenuEvent(reason, at, header.mapToGlobal(at)))
+    QApplication.processEvents()
+    menu = QApplication.activePopupWidget()
+    assert isinstance(menu, QMenu)
+    role = next(action for action in menu.actions() if action.text() == "role")
+    assert not role.isChecked()
+    role.trigger()
+    menu.close()
+    assert not table.isColumnHidden(Column.ROLE)
