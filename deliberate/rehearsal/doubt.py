@@ -75,8 +75,13 @@ def doubt(
             f" {amount(MOST_NUMBERS)} beliefs; ask for fewer draws",
             "draws",
         )
+    if stopped():
+        return None
+    told = findings(scenario, rehearsal)
+    if stopped():
+        return None
     meeting = GuessedMeeting(sketch, concentration)
-    counted = _Counted(meeting, findings(scenario, rehearsal), draws)
+    counted = _Counted(meeting, told, draws)
     progress(0.0)
     for chunk in meeting.chunks(draws, seed, stopped):
         counted.add(chunk)
