@@ -21,6 +21,7 @@ from PySide6.QtWidgets import (
 
 from deliberate.window.actions import Actions
 from deliberate.window.asking import tell
+from deliberate.window.arrow_leverage import ArrowLeverage
 from deliberate.window.blank import Blank
 from deliberate.window.canvas import Canvas
 from deliberate.window.care import CareNote, is_noted, note
@@ -125,6 +126,7 @@ class MainWindow(QMainWindow):
         self.sidebar = Sidebar(session, look, self)
         self.canvas = Canvas(session, look, self)
         self.chart = ChartPanel(session, look, self)
+        self.arrow_leverage = ArrowLeverage(session, self.canvas, self)
         self.right_pages = RightPages(session, look, self)
         self.findings = self.right_pages.findings
         self.round_bar = RoundBar(session, look, self)
@@ -306,6 +308,7 @@ class MainWindow(QMainWindow):
         self.files.close()
         event.accept()
 
+        self.arrow_leverage.close()
     def tell(self, title: str, what: str) -> None:
         """A message with one button."""
         tell(self, title, what)

@@ -125,6 +125,31 @@ def open_file(qtbot: QtBot, look: Look, tmp_path: Path) -> Iterator[Callable[...
 
     yield open_one
     for window in opened:
-        window.session.open(window.session.scenario, None)  # nothing to ask about when it closes
-        window.close()
-        window.deleteLater()
+        _close(window)
+
+
+@pytest.fixture
+def open_meeting(qtbot: QtBot, look: Look, tmp_path: Path) -> Iterator[Callable[[Scenario], MainWindow]]:
+    """Opens meetings without a file in windows of 1280 x 800, rehearsed."""
+    opened: list[MainWindow] = []
+
+    def open_one(scenario: Scenario) -> MainWindow:
+        settings = QSettings(str(tmp_path / "window.ini"), QSettings.Format.IniFormat)
+        window = MainWindow(Session(scenario), look, settings, tmp_path / "private")
+        opened.append(window)
+        window.resize(1280, 800)
+        window.show()
+        window.activateWindow()
+        qtbot.waitUntil(lambda: window.chart.chart is not None, timeout=20_000)
+        qtbot.waitUntil(window.session.engine.idle, timeout=20_000)
+        return window
+
+    yield open_one
+    for window in opened:
+        _close(window)
+
+
+def _close(window: MainWindow) -> None:
+    window.session.open(window.session.scenario, None)  # nothing to ask about when it closes
+    window.close()
+    window.deleteLater()

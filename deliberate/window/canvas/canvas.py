@@ -141,6 +141,16 @@ class Canvas(QWidget):
         self.picture.touch()
         self.update()
 
+    def show_leverage(self, strengths: Floats | None, note: str = "") -> None:
+        """Draw arrows as thick as what ten points more for each would move the mean, in the order of the variant's.
+
+        With None they are as thick as their shares, and `note` says why in the legend. A change of
+        the meeting brings the shares back.
+        """
+        self.picture.weigh_arrows(strengths, note)
+        self.refresh_hint()
+        self.update()
+
     def accept_typing(self) -> None:
         """Take what is typed in the editor on the picture."""
         self.editors.accept()

@@ -27,6 +27,7 @@ Flags = NDArray[np.bool_]
 QUIET, WEAK, PALE, PLAIN, MARKED = range(5)  # how an arrow is drawn, in the order of painting
 _WIDTH_STEP = 0.4
 _OVERLAP = 0.6  # pixels
+OPEN_LINE = 1.3  # pixels: the outline of an open head
 
 
 @dataclass(frozen=True, eq=False)
@@ -56,8 +57,8 @@ def weak(scene: Scene) -> Flags:
     leave too many."""
     if len(scene.share) <= STRONG:
         return np.zeros(len(scene.share), dtype=bool)
-    least = scene.share[scene.rank == STRONG - 1]
-    fainter = scene.share < least * (1 - 1e-9)
+    least = scene.strength[scene.rank == STRONG - 1]
+    fainter = scene.strength < least * (1 - 1e-9)
     return fainter if int((~fainter).sum()) <= 2 * STRONG else scene.rank >= STRONG
 
 
@@ -76,7 +77,7 @@ def screen_curves(scene: Scene, view: Viewport, which: Flags | Indices) -> Curve
 def widths(scene: Scene, view: Viewport, which: Flags | Indices, manner: Indices) -> Floats:
     """Thickness of arrows in pixels."""
     scale = np.clip(scene.radius * view.zoom / 30, 0.45, 1.3)
-    wide = (1.2 + 4.8 * scene.share[which] ** 0.9) * scale
+    wide = (1.2 + 4.8 * scene.strength[which] ** 0.9) * scale
     wide = np.where(manner[which] == WEAK, np.minimum(wide, 1.0) * 0.9, wide)
     return np.maximum(np.rint(wide / _WIDTH_STEP), 2) * _WIDTH_STEP
 
@@ -109,15 +110,16 @@ def paint_arrows(
     long, half = (5.0 + 1.9 * wide) * scale, (2.3 + 0.95 * wide) * scale
     lines = geometry.shortened(arrows, long * 0.8)
     triangles = geometry.heads(arrows, long, half)
-    group = manner * 2000 + np.rint(wide / _WIDTH_STEP).astype(np.intp) * 2 + dashed
+    lowering = scene.lowering[which]
+    group = ((manner * 1000 + np.rint(wide / _WIDTH_STEP).astype(np.intp)) * 2 + dashed) * 2 + lowering
     inks = colors(theme)
     for key in np.unique(group).tolist():
         members = np.flatnonzero(group == key)
-        ink, width, dash = inks[key // 2000], key % 2000 // 2 * _WIDTH_STEP, bool(key % 2)
+        ink, width, dash = inks[key // 4000], key % 4000 // 4 * _WIDTH_STEP, bool(key // 2 % 2)
         pen = QPen(ink, width if fine else max(width, 1.01), Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap)
         painter.setPen(pen)
         draw_lines(painter, _strokes(lines.some(members), dash, width, fine))
-        _paint_heads(painter, triangles[members], ink, fine)
+        _paint_heads(painter, triangles[members], ink, QColor(theme.canvas) if key % 2 else ink, fine)
 
 
 def draw_lines(painter: QPainter, rows: Floats) -> None:
@@ -146,14 +148,14 @@ def _overlapping(rows: Floats) -> Floats:
     return np.concatenate([rows[:, :2] - along, rows[:, 2:] + along], axis=1)
 
 
-def _paint_heads(painter: QPainter, triangles: Floats, ink: QColor, fine: bool) -> None:
+def _paint_heads(painter: QPainter, triangles: Floats, ink: QColor, filling: QColor, fine: bool) -> None:
     if not fine:
         left = np.concatenate([triangles[:, 0], triangles[:, 1]], axis=1)
         right = np.concatenate([triangles[:, 0], triangles[:, 2]], axis=1)
         draw_lines(painter, np.concatenate([left, right]))
         return
-    painter.setPen(Qt.PenStyle.NoPen)
-    painter.setBrush(ink)
+    painter.setPen(Qt.PenStyle.NoPen if filling is ink else QPen(ink, OPEN_LINE))
+    painter.setBrush(filling)
     for tip, left, right in triangles.tolist():
         painter.drawPolygon(QPolygonF([QPointF(*tip), QPointF(*left), QPointF(*right)]))
 

@@ -18,6 +18,8 @@ from deliberate.window.theme import Theme, mix
 Floats = NDArray[np.float64]
 LISTENED = "Arrows point at the person listened to"
 TRAVEL = "Arrows show the way beliefs travel"
+MOVES = "Arrow thickness: what ten points more would move"
+UP_OR_DOWN = "Filled heads move the mean up, open heads down"
 EMPTY = "Double-click to add the first person"
 EDGE = 16  # of the picture to what is written on it
 
@@ -35,9 +37,16 @@ def circle_people(
 
 
 def paint_arrow(
-    painter: QPainter, arrows: Curves, ink: QColor, width: float, *, halo: QColor | None = None, dashed: bool = False
+    painter: QPainter,
+    arrows: Curves,
+    ink: QColor,
+    width: float,
+    *,
+    halo: QColor | None = None,
+    dashed: bool = False,
+    head: QColor | None = None,
 ) -> None:
-    """One arrow or a few over the picture, with a halo of the paper so that they stand out."""
+    """Arrows over the picture, with a halo of the paper so that they stand out; `head` fills open heads."""
     painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
     count = len(arrows)
     long, half = np.full(count, 6.0 + 2.1 * width), np.full(count, 3.0 + 1.05 * width)
@@ -54,8 +63,8 @@ def paint_arrow(
                 pen.setDashPattern([4.0 / width + 0.5, 3.0 / width + 0.5])
             painter.setPen(pen)
             painter.drawPath(path)
-    painter.setPen(Qt.PenStyle.NoPen)
-    painter.setBrush(ink)
+    painter.setPen(Qt.PenStyle.NoPen if head is None else QPen(ink, 1.3))
+    painter.setBrush(head or ink)
     for tip, left, right in geometry.heads(arrows, long, half).tolist():
         painter.drawPolygon(QPolygonF([QPointF(*tip), QPointF(*left), QPointF(*right)]))
 

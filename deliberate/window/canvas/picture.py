@@ -71,6 +71,7 @@ class Picture:
         self.width, self.height, self.ratio = 1, 1, 1.0
         self.stage = 0
         self.flow = False
+        self.moves_note = ""  # why arrows are not drawn by what they move, though that is wanted
         self.starts = np.zeros(len(scene.ids))
         self.emphasis = Emphasis()
         self.grounds: list[Ground] = []
@@ -96,6 +97,11 @@ class Picture:
         """The ground layer is out of date, and with `names` where the names go too."""
         self._ground_stale, self._look = True, None
         self._names_stale = self._names_stale or names
+
+    def weigh_arrows(self, moves: Floats | None, note: str = "") -> None:
+        """Draw arrows as thick as what ten points more would move; with None as their shares, and say why."""
+        self.scene, self.moves_note = self.scene.drawn_by(moves), note
+        self.touch()
 
     def look_at(self, view: Viewport) -> None:
         """Zoom or pan."""
@@ -207,6 +213,10 @@ class Picture:
         """What has to be said about the arrows."""
         total, look = len(self.scene.share), self.look()
         lines = [overlays.TRAVEL if self.flow else overlays.LISTENED] if total else []
+        if total and self.scene.moves is not None:
+            lines += [overlays.MOVES, overlays.UP_OR_DOWN]
+        elif total and self.moves_note:
+            lines.append(self.moves_note)
         if total <= STRONG:
             return lines
         idle, weak = int((~look.shown & look.dashed).sum()), int((~look.shown & ~look.dashed).sum())
@@ -296,7 +306,8 @@ class Picture:
         ink = QColor(self.theme.accent if manner == MARKED or arrow in self.emphasis.arrows else self.theme.ink)
         halo = QColor(self.theme.tint if manner == MARKED else self.theme.canvas)
         dashed = bool(self.look().dashed[arrow])
-        overlays.paint_arrow(painter, curve, ink, max(wide, 2.0), halo=halo, dashed=dashed)
+        head = QColor(self.theme.canvas) if self.scene.lowering[arrow] else None
+        overlays.paint_arrow(painter, curve, ink, max(wide, 2.0), halo=halo, dashed=dashed, head=head)
 
     # Names
 

@@ -6,14 +6,14 @@ Made anew when the meeting changes; what an edit did not touch is taken over fro
 from __future__ import annotations
 
 from collections.abc import MutableMapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.voices import Voices, voices
-from deliberate.rehearsal.words import amount, number, shown_names
+from deliberate.rehearsal.words import amount, decimals, number, shown_names
 from deliberate.scenario.values import Question, Variant
 from deliberate.window.canvas.geometry import bends
 from deliberate.window.canvas.places import disc_radius, places
@@ -23,6 +23,7 @@ Indices = NDArray[np.intp]
 Flags = NDArray[np.bool_]
 Pair = tuple[str, str]
 
+NOTHING = 5e-5  # of the scale's width: what moves the mean by less is said to leave it
 STRONG = 300  # so many arrows are drawn in full, the strongest
 DRAWN = 1000  # and so many in all, the weaker ones thin; the rest only where their people are selected
 
@@ -39,7 +40,28 @@ class Scene:
     source: Indices
     share: Floats  # (arrows,) of the listener's points
     bend: Floats  # (arrows,)
-    rank: Indices  # (arrows,) 0 for the strongest
+    moves: Floats | None = None  # (arrows,) where arrows are drawn by it: what ten points more would move the mean
+
+    @cached_property
+    def strength(self) -> Floats:
+        """How thick each arrow is, 0 to 1, shape (arrows,): its share, or what it moves against the largest."""
+        if self.moves is None:
+            return self.share
+        size = np.abs(self.moves)
+        most = size.max(initial=0.0)
+        return size / most if most > 0 else size
+
+    @cached_property
+    def lowering(self) -> Flags:
+        """Which arrows have an open head, because more of them moves the mean down, shape (arrows,)."""
+        return np.zeros(len(self.share), dtype=bool) if self.moves is None else self.moves < 0
+
+    @cached_property
+    def rank(self) -> Indices:
+        """Place of each arrow by strength, 0 for the strongest, shape (arrows,)."""
+        rank = np.empty(len(self.strength), dtype=np.intp)
+        rank[np.argsort(-self.strength, kind="stable")] = np.arange(len(rank))
+        return rank
 
     @cached_property
     def ids(self) -> tuple[str, ...]:
@@ -104,7 +126,8 @@ class Scene:
     def sentence(self, arrow: int) -> str:
         """The arrow written out: "Amina listens to Jun: 30 of 100 points"."""
         here, there = self.told_apart[self.listener[arrow]], self.told_apart[self.source[arrow]]
-        return f"{here} listens to {there}: {points_words(self.share[arrow])} of 100 points"
+        points = f"{here} listens to {there}: {points_words(self.share[arrow])} of 100 points"
+        return points if self.moves is None else f"{points}; {moves_words(float(self.moves[arrow]), self.question)}"
 
     def about(self, person: int, belief: float) -> str:
         """A person in one sentence: name, belief, and what is special about her."""
@@ -134,17 +157,11 @@ class Scene:
 
     def moved_to(self, new: Floats) -> Scene:
         """The same people and arrows at other places."""
-        return Scene(
-            self.variant,
-            self.question,
-            new,
-            self.radius,
-            self.listener,
-            self.source,
-            self.share,
-            self.bend,
-            self.rank,
-        )
+        return replace(self, places=new)
+
+    def drawn_by(self, moves: Floats | None) -> Scene:
+        """The same scene with arrows as thick as what ten points more would `move`, or with None as their shares."""
+        return replace(self, moves=moves)
 
 
 def points_words(share: float) -> str:
@@ -153,6 +170,17 @@ def points_words(share: float) -> str:
     if 0 < points < 0.05:
         return "under 0.1"
     return amount(round(points, 1))
+
+
+def moves_words(change: float, question: Question) -> str:
+    """What ten points more for an arrow would do to the mean."""
+    least = 10.0 ** -decimals(question)
+    if abs(change) < NOTHING * question.width:
+        return "ten points more would leave the mean at the plan's end as it is"
+    size = (
+        f"by {number(abs(change), question)}" if abs(change) >= least / 2 else f"by under {number(least, question)}"
+    )
+    return f"ten points more would move the mean {'up' if change > 0 else 'down'} {size} at the plan's end"
 
 
 def scene_of(
@@ -167,16 +195,14 @@ def scene_of(
     reach = disc_radius(placed) if radius is None else radius
     same_arrows = before is not None and _same_points(before.variant, variant)
     if before is not None and same_arrows:
-        listener, source, share, rank = before.listener, before.source, before.share, before.rank
+        listener, source, share = before.listener, before.source, before.share
     else:
         listener, source, share = _arrows(variant)
-        rank = np.empty(len(share), dtype=np.intp)
-        rank[np.argsort(-share, kind="stable")] = np.arange(len(share))
     if before is not None and same_arrows and before.radius == reach and np.array_equal(before.places, placed):
         bend = before.bend
     else:
         bend = bends(placed, listener, source, reach)
-    return Scene(variant, question, placed, reach, listener, source, share, bend, rank)
+    return Scene(variant, question, placed, reach, listener, source, share, bend)
 
 
 def _same_points(one: Variant, other: Variant) -> bool:
