@@ -64,6 +64,7 @@ In front of others
 
 The meeting
   F6                    compare variants
+  Ctrl+M                mixed tables: who sits with whom
   Ctrl+Z, Ctrl+Shift+Z  undo, redo
   Ctrl+T                add a variant
   Ctrl+Tab              next variant

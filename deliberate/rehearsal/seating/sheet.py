@@ -51,7 +51,8 @@ def as_html(title: str, seating: Seating, variant: Variant) -> str:
         [f"<td>{known[person]}</td>", *(f'<td align="center">{number}</td>' for number in numbers)]
         for person, numbers in by_name(seating, variant)
     ]
-    parts.append(f"<h2>By name</h2>{_table([heads, *rows])}</body></html>")
+    door = '<h2 style="page-break-before: always">By name</h2>'  # a sheet of its own, for the door
+    parts.append(f"{door}{_table([heads, *rows])}</body></html>")
     return "".join(parts)
 
 
