@@ -10,6 +10,7 @@ from PySide6.QtGui import QAction, QActionGroup, QKeySequence
 from PySide6.QtWidgets import QMenu, QMenuBar, QWidget
 
 from deliberate.window import help_texts
+from deliberate.window.comparison import ComparisonDialog
 from deliberate.window.gallery import Gallery
 from deliberate.window.player import SPEEDS
 from deliberate.window.recent import label
@@ -190,8 +191,17 @@ class Actions(QObject):
         self._add(menu, "Move &left", lambda: strip.move(-1))
         self._add(menu, "Move ri&ght", lambda: strip.move(1))
         menu.addSeparator()
+        self._add(menu, "&Compare …", self._show_comparison, "F6")
+        menu.addSeparator()
         self._add(menu, "&Next variant", lambda: self._window.turn_to_variant(1), "Ctrl+Tab")
         self._add(menu, "&Previous variant", lambda: self._window.turn_to_variant(-1), "Ctrl+Shift+Tab")
+
+    def _show_comparison(self) -> None:
+        window = self._window
+        dialog = window.findChild(ComparisonDialog) or ComparisonDialog(window.session, window.look, window)
+        dialog.show()
+        dialog.raise_()
+        dialog.activateWindow()
 
     def _fill_view(self, menu: QMenu) -> None:
         canvas, look = self._window.canvas, self._window.look

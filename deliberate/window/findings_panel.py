@@ -8,10 +8,10 @@ from PySide6.QtCore import QRectF, QSize
 from PySide6.QtGui import QColor, QPainter, QPaintEvent
 from PySide6.QtWidgets import QFrame, QLabel, QVBoxLayout, QWidget
 
+from deliberate.rehearsal import comparing
 from deliberate.rehearsal.doubt_results import FindingOdds
 from deliberate.rehearsal.results import Finding, Rehearsal, Suggestion
 from deliberate.rehearsal.suggestions import apply, words
-from deliberate.rehearsal.words import with_unit
 from deliberate.scenario.values import Question
 from deliberate.window.cards import Card, Cards, Told
 from deliberate.window.session import Session
@@ -30,30 +30,13 @@ class Before:
 
 def effect_lines(before: Rehearsal, after: Rehearsal, question: Question) -> list[tuple[str, str, str]]:
     """What a tried change does to the result: (figure, before, after) in words, whichever way it goes."""
-
-    def settles(rehearsal: Rehearsal) -> str:
-        if not rehearsal.settles:
-            return "keeps swinging"
-        if rehearsal.rounds_to_agree is None:
-            return "no common view"
-        return f"round {rehearsal.rounds_to_agree}"
-
-    def vote(rehearsal: Rehearsal) -> str:
-        tally = rehearsal.ballot[-1] if rehearsal.ballot else None
-        if tally is None:
-            return "no vote"
-        return f"{tally.in_favour:g} for, {tally.against:g} against"
-
-    def spread(rehearsal: Rehearsal) -> str:
-        return with_unit(float(rehearsal.spread[-1]), question)
-
     rows = [
-        ("Agree within 1 % of the scale", settles(before), settles(after)),
-        ("Spread at the plan's end", spread(before), spread(after)),
-        ("Effective voices", f"{before.effective_voices:.1f}", f"{after.effective_voices:.1f}"),
+        (comparing.AGREE, comparing.agree(before), comparing.agree(after)),
+        (comparing.SPREAD, comparing.spread(before, question), comparing.spread(after, question)),
+        (comparing.VOICES, comparing.voices(before), comparing.voices(after)),
     ]
     if before.ballot is not None and after.ballot is not None:
-        rows.append(("Vote at the plan's end", vote(before), vote(after)))
+        rows.append((comparing.VOTE, comparing.vote(before), comparing.vote(after)))
     return rows
 
 

@@ -9,6 +9,7 @@ from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent,
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
+    QDialog,
     QHBoxLayout,
     QLabel,
     QMainWindow,
@@ -21,7 +22,6 @@ from PySide6.QtWidgets import (
 
 from deliberate.window.actions import Actions
 from deliberate.window.asking import tell
-from deliberate.window.arrow_leverage import ArrowLeverage
 from deliberate.window.blank import Blank
 from deliberate.window.canvas import Canvas
 from deliberate.window.care import CareNote, is_noted, note
@@ -126,7 +126,6 @@ class MainWindow(QMainWindow):
         self.sidebar = Sidebar(session, look, self)
         self.canvas = Canvas(session, look, self)
         self.chart = ChartPanel(session, look, self)
-        self.arrow_leverage = ArrowLeverage(session, self.canvas, self)
         self.right_pages = RightPages(session, look, self)
         self.findings = self.right_pages.findings
         self.round_bar = RoundBar(session, look, self)
@@ -300,6 +299,8 @@ class MainWindow(QMainWindow):
         if not self.files.may_leave():
             event.ignore()
             return
+        for beside in self.findChildren(QDialog):
+            beside.close()
         self._settings.setValue("window/geometry", self.saveGeometry())
         self._settings.setValue("window/across", self.across.kept())
         self._settings.setValue("window/right", self.right.saveState())
@@ -308,7 +309,6 @@ class MainWindow(QMainWindow):
         self.files.close()
         event.accept()
 
-        self.arrow_leverage.close()
     def tell(self, title: str, what: str) -> None:
         """A message with one button."""
         tell(self, title, what)

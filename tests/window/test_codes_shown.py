@@ -10,7 +10,7 @@ import pytest
 from msgspec.structs import replace
 from PySide6.QtCore import QSettings, Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtWidgets import QApplication
+from PySide6.QtWidgets import QApplication, QDialog
 from pytestqt.qtbot import QtBot
 from words_on_screen import all_words
 
@@ -18,6 +18,7 @@ from deliberate import files
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.scenario import edits
 from deliberate.scenario.values import Arrow, FrozenDict, Person, Plan, Poll, Question, Scenario, Stage, Variant
+from deliberate.window.comparison import ComparisonDialog
 from deliberate.window.history import History
 from deliberate.window.main_window import MainWindow
 from deliberate.window.session import WITH_NAMES, Session
@@ -125,6 +126,26 @@ def test_no_name_is_left_anywhere(qtbot: QtBot, window: MainWindow) -> None:
         window.sidebar.pages.setCurrentIndex(page)
         assert leaks() == []
     assert session.undo_step == WITH_NAMES
+
+
+def test_no_name_is_left_in_the_windows_beside_the_work(qtbot: QtBot, window: MainWindow) -> None:
+    for key in (Qt.Key.Key_F6, Qt.Key.Key_F1):
+        qtbot.keyClick(window, key)
+    dialogs = [dialog for dialog in window.findChildren(QDialog) if dialog.isVisible()]
+    assert len(dialogs) == 2
+    assert isinstance(dialogs[0], ComparisonDialog) or isinstance(dialogs[1], ComparisonDialog)
+    window.session.show_codes(True)
+    ready(qtbot, window)
+    assert leaks() == []
+    for figure in range(3):
+        next(d for d in dialogs if isinstance(d, ComparisonDialog)).figure.setCurrentIndex(figure)
+        assert leaks() == []
+
+
+def test_the_comparison_opens_once(qtbot: QtBot, window: MainWindow) -> None:
+    for _ in range(2):
+        qtbot.keyClick(window, Qt.Key.Key_F6)
+    assert len(window.findChildren(ComparisonDialog)) == 1
 
 
 def test_names_come_back_whole(qtbot: QtBot, window: MainWindow) -> None:
