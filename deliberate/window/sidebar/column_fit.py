@@ -43,8 +43,9 @@ class ColumnFit(QObject):
         for column in MEASURED:
             texts = (shown(column, Row(person, 0.0, 0.0), question) for person in variant.people)
             longest[column] = max((longest[column], *texts), key=len)
-        thirds = (question.low, question.low + question.width / 3, question.high - question.width / 3, question.high)
-        longest[Column.NOW] = max((number(value, question) for value in thirds), key=len)
+        # Beliefs that play brings up are rarely round numbers.
+        odd = (question.low + question.width * part for part in (0.0, 0.1371, 0.4567, 0.8713, 1.0))
+        longest[Column.NOW] = max((number(value, question) for value in odd), key=len)
         if longest != self._longest:
             self._longest = longest
             self.fit()
