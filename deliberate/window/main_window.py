@@ -21,6 +21,7 @@ from PySide6.QtWidgets import (
 )
 
 from deliberate.window.actions import Actions
+from deliberate.window.arrow_leverage import ArrowLeverage
 from deliberate.window.asking import tell
 from deliberate.window.blank import Blank
 from deliberate.window.canvas import Canvas
@@ -125,6 +126,7 @@ class MainWindow(QMainWindow):
         self.variant_strip = self.top_bar.variants
         self.sidebar = Sidebar(session, look, self)
         self.canvas = Canvas(session, look, self)
+        self.arrow_leverage = ArrowLeverage(session, self.canvas, self)
         self.chart = ChartPanel(session, look, self)
         self.right_pages = RightPages(session, look, self)
         self.findings = self.right_pages.findings
@@ -306,6 +308,7 @@ class MainWindow(QMainWindow):
         self._settings.setValue("window/right", self.right.saveState())
         self.session.close()
         self.right_pages.close_down()
+        self.arrow_leverage.close()
         self.files.close()
         event.accept()
 
