@@ -4,7 +4,7 @@ from collections.abc import Callable
 from pathlib import Path
 
 import pytest
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, QTimer
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QAbstractButton, QApplication, QComboBox, QLabel
@@ -223,6 +223,24 @@ def test_the_list_can_be_saved_as_pdf(qtbot: QtBot, open_dialog: Open, tmp_path:
     assert path.stat().st_size > 2_000
     with pytest.raises(DeliberateError):
         paper.save_pdf(dialog._html(), "Tables", tmp_path / "nowhere" / "tables.pdf")
+
+
+def test_printing_asks_for_the_printer_first(qtbot: QtBot, open_dialog: Open) -> None:
+    dialog = found(qtbot, open_dialog())
+    asked: list[str] = []
+    timer = QTimer()
+
+    def leave() -> None:
+        if (box := QApplication.activeModalWidget()) is not None:
+            timer.stop()
+            asked.append(box.windowTitle())
+            QTest.keyClick(box, Qt.Key.Key_Escape)
+
+    timer.timeout.connect(leave)
+    timer.start(20)
+    press(dialog.print)
+    assert asked == ["Print the list of tables"]
+    assert dialog.seating is not None
 
 
 def test_hostile_names_stay_plain_text(qtbot: QtBot, open_dialog: Open) -> None:
