@@ -19,8 +19,10 @@ from deliberate.rehearsal.rehearse import rehearse
 from deliberate.scenario import edits
 from deliberate.scenario.values import Arrow, FrozenDict, Person, Plan, Poll, Question, Scenario, Stage, Variant
 from deliberate.window.comparison import ComparisonDialog
+from deliberate.window.errand import Errand
 from deliberate.window.history import History
 from deliberate.window.main_window import MainWindow
+from deliberate.window.right_pages import TITLES
 from deliberate.window.session import WITH_NAMES, Session
 from deliberate.window.theme import Look
 
@@ -86,6 +88,13 @@ def leaks() -> list[tuple[str, str]]:
     return [(where, text) for where, text in all_words() if HIDDEN.search(text)]
 
 
+def painted(window: MainWindow) -> str:
+    """What is painted by hand: names and the sentence on the picture, names and words on the chart."""
+    content = window.chart.chart._content
+    words = [*window.canvas.picture.scene.names, window.canvas._hint, window.chart.chart.hinted]
+    return " ".join([*words, *(content.names if content is not None else ())])
+
+
 def ready(qtbot: QtBot, window: MainWindow) -> None:
     qtbot.waitUntil(lambda: window.session.engine.idle() and window.session.rehearsal is not None, timeout=20_000)
 
@@ -122,8 +131,9 @@ def test_no_name_is_left_anywhere(qtbot: QtBot, window: MainWindow) -> None:
             for one in people:
                 session.select([one])
                 assert leaks() == []
-    for page in range(window.sidebar.pages.count() if hasattr(window.sidebar, "pages") else 0):
-        window.sidebar.pages.setCurrentIndex(page)
+                assert not HIDDEN.search(painted(window))
+    for page in range(window.sidebar.tabs.count()):
+        window.sidebar.tabs.setCurrentIndex(page)
         assert leaks() == []
     assert session.undo_step == WITH_NAMES
 
@@ -140,6 +150,28 @@ def test_no_name_is_left_in_the_windows_beside_the_work(qtbot: QtBot, window: Ma
     for figure in range(3):
         next(d for d in dialogs if isinstance(d, ComparisonDialog)).figure.setCurrentIndex(figure)
         assert leaks() == []
+
+
+def test_no_name_is_left_in_the_answers(qtbot: QtBot, window: MainWindow) -> None:
+    session = window.session
+    session.doubting.want(True)
+    for page in range(len(TITLES)):
+        window.right_pages.turn_to(page)
+        qtbot.waitUntil(lambda: answered(window), timeout=60_000)
+    assert any(HIDDEN.search(text) for where, text in all_words() if where.startswith("Card"))
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F7)
+    assert leaks() == []
+    for page in range(len(TITLES)):
+        window.right_pages.turn_to(page)
+        ready(qtbot, window)
+        qtbot.waitUntil(lambda: answered(window), timeout=60_000)
+        assert leaks() == []
+
+
+def answered(window: MainWindow) -> bool:
+    """Whether nothing is being worked out any more."""
+    busy = [errand for errand in window.findChildren(Errand) if errand.running]
+    return not busy and not window.session.doubting.drawing
 
 
 def test_the_comparison_opens_once(qtbot: QtBot, window: MainWindow) -> None:
