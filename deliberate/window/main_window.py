@@ -238,7 +238,7 @@ class MainWindow(QMainWindow):
         """Ask for codes or names, then fill a screen."""
         if self.findChild(ProjectorView) is not None:
             return
-        choice = ProjectorChoice(self, codes=self.session.codes_shown)
+        choice = ProjectorChoice(self)
         choice.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         choice.chosen.connect(self.project)
         choice.open()

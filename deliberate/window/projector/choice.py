@@ -19,7 +19,7 @@ class ProjectorChoice(QDialog):
 
     chosen = Signal(bool, QScreen)
 
-    def __init__(self, window: QWidget, *, codes: bool) -> None:
+    def __init__(self, window: QWidget) -> None:
         super().__init__(window)
         self.setWindowTitle("Projector view")
         heading = plain_label(self, text="What shall the room read?")
@@ -36,7 +36,8 @@ class ProjectorChoice(QDialog):
             buttons.addButton(button, QDialogButtonBox.ButtonRole.AcceptRole)
         buttons.addButton(QDialogButtonBox.StandardButton.Cancel)
         buttons.rejected.connect(self.reject)
-        (self.codes if codes else self.names).setDefault(True)
+        self.codes.setDefault(True)
+        self.codes.setFocus()
         column = QVBoxLayout(self)
         column.setSpacing(10)
         column.addWidget(heading)

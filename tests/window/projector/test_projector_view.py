@@ -82,6 +82,19 @@ def test_codes_or_names_are_chosen_before_anything_is_seen(qtbot: QtBot, open_wi
     view.close()
 
 
+def test_return_takes_codes(qtbot: QtBot, open_window) -> None:
+    window = open_window()
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F5)
+    choice = window.findChild(ProjectorChoice)
+    qtbot.waitUntil(lambda: choice.codes.isDefault())
+    qtbot.keyClick(choice, Qt.Key.Key_Return)
+    assert window.session.codes_shown
+    qtbot.waitUntil(lambda: shown(window) is not None)
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F5)  # it is open already
+    assert window.findChild(ProjectorChoice) is None or not window.findChild(ProjectorChoice).isVisible()
+    shown(window).close()
+
+
 def test_nothing_opens_when_she_thinks_better_of_it(qtbot: QtBot, open_window) -> None:
     window = open_window()
     qtbot.keyClick(window.canvas, Qt.Key.Key_F5)
