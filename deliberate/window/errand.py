@@ -6,11 +6,10 @@ from collections.abc import Callable
 
 from PySide6.QtCore import QObject, QThreadPool, Signal
 
+from deliberate.dynamics.progress import Progress, Stopped
 from deliberate.errors import DeliberateError
 from deliberate.window.background import pause_collector, resume_collector
 
-Progress = Callable[[float], object]  # told the part that is done, 0 to 1
-Stopped = Callable[[], bool]
 Work = Callable[[Progress, Stopped], object]
 
 

@@ -121,14 +121,7 @@ class RemediesPage(QWidget):
             aim = chosen or (asked[0] if asked else None)
             found = ()
             if aim is not None:
-                found = search.remedies(
-                    scenario,
-                    variant,
-                    question,
-                    aim,
-                    progress=lambda done, of: progress(done / of if of else 1.0),
-                    stopped=stopped,
-                )
+                found = search.remedies(scenario, variant, question, aim, progress=progress, stopped=stopped)
             return search.AIMS, search.IN_WORDS, asked, aim, found
 
         self._errand.start(work)

@@ -253,12 +253,21 @@ def test_any_meeting_can_be_asked_for_any_aim(scenario):
 
 
 def test_it_can_be_watched_and_stopped():
-    seen: list[tuple[int, int]] = []
-    whole = remedies(CIRCLES, None, None, "less-spread", progress=lambda done, of: seen.append((done, of)))
-    assert [done for done, _ in seen] == list(range(seen[0][1] + 1))
+    parts: list[float] = []
+    whole = remedies(CIRCLES, None, None, "less-spread", progress=parts.append)
+    assert parts == sorted(set(parts))
+    assert (parts[0], parts[-1]) == (0, 1)
     looks = iter([False] * 4 + [True] * 2)
     part = remedies(CIRCLES, None, None, "less-spread", stopped=lambda: next(looks))
     assert len(part) < len(whole)
+
+
+@pytest.mark.parametrize("present", [0, 1])
+def test_where_nobody_talks_with_anybody_no_aim_asks_for_a_change(present):
+    absent = [person.id for person in CIRCLES.variants[0].people[present:]]
+    quiet = edits.set_presence(CIRCLES, absent, False, variant=NOW)
+    assert aims_here(quiet) == ()
+    assert NOTHING_ASKED in remedies_summary(quiet, None, None, best_for_each_aim(quiet))
 
 
 def test_it_is_the_same_every_time():

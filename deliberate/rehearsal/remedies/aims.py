@@ -44,7 +44,9 @@ def as_aim(name: str) -> Aim:
 
 
 def asked_for(aim: Aim, now: Figures, meeting: Meeting) -> bool:
-    """Whether the figures as they are ask for this aim."""
+    """Whether the figures as they are ask for this aim; none is asked for where nobody has anybody to talk with."""
+    if meeting.people < 2:
+        return False
     match aim:
         case "common-view":
             return not now.common_view and not now.swings and now.firm < 2

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 
 from deliberate.dynamics.leverage import FULL_PEOPLE
+from deliberate.dynamics.progress import Progress, Stopped, never, no_report
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.remedies.aims import AIMS, ALL_OR_NOTHING, Aim, Meeting, as_aim, asked_for, reached, way
@@ -17,9 +17,6 @@ from deliberate.rehearsal.results import Introductions, Suggestion
 from deliberate.rehearsal.suggestions import apply, words
 from deliberate.scenario.access import variant_index
 from deliberate.scenario.values import Scenario
-
-Progress = Callable[[int, int], None]
-Stopped = Callable[[], bool]
 
 TOLD = 8
 PRICE = 0.5  # asking everything of everybody outweighs half of the way
@@ -58,31 +55,29 @@ def remedies(
     question: str | None,
     aim: str,
     *,
-    progress: Progress | None = None,
-    stopped: Stopped | None = None,
+    progress: Progress = no_report,
+    stopped: Stopped = never,
 ) -> tuple[Remedy, ...]:
     """The best change of each kind for the aim, the best first; none where nothing that is tried serves it.
 
-    `variant` is a name and `question` an id; None for the first ones. progress is called with how many candidates
-    have been computed and how many there are; when `stopped` says so the search ends, and what it found comes back.
-    Raises DeliberateError for names that are not there and for more than 1,000 people.
+    `variant` is a name and `question` an id; None for the first ones. `progress` is told the part that is done, 0 to
+    1. Once `stopped` is true the search ends, and what it found comes back. Raises DeliberateError for names that are
+    not there and for more than 1,000 people.
     """
-    search = _search(scenario, variant, question)
-    return search.best(as_aim(aim), progress or (lambda done, of: None), stopped or (lambda: False))
+    return _search(scenario, variant, question).best(as_aim(aim), progress, stopped)
 
 
 def aims_here(scenario: Scenario, variant: str | None = None, question: str | None = None) -> tuple[Aim, ...]:
     """The aims that the figures of a meeting ask for."""
-    search = _search(scenario, variant, question)
-    return tuple(aim for aim in AIMS if asked_for(aim, search.before, search.meeting))
+    return _search(scenario, variant, question).aims()
 
 
 def best_for_each_aim(
     scenario: Scenario, variant: str | None = None, question: str | None = None
 ) -> dict[Aim, tuple[Remedy, ...]]:
     """The best change for each aim that the figures ask for; no change where nothing that is tried serves it."""
-    found = {aim: remedies(scenario, variant, question, aim) for aim in aims_here(scenario, variant, question)}
-    return {aim: best[:1] for aim, best in found.items()}
+    search = _search(scenario, variant, question)
+    return {aim: search.best(aim)[:1] for aim in search.aims()}
 
 
 def _search(scenario: Scenario, variant: str | None, question: str | None) -> _Search:
@@ -104,19 +99,22 @@ class _Search:
         present = int(self.sketch.present.sum())
         self.meeting = Meeting(present, self.sketch.plan_rounds, self.sketch.question.width)
 
-    def best(self, aim: Aim, progress: Progress, stopped: Stopped) -> tuple[Remedy, ...]:
+    def aims(self) -> tuple[Aim, ...]:
+        return tuple(aim for aim in AIMS if asked_for(aim, self.before, self.meeting))
+
+    def best(self, aim: Aim, progress: Progress = no_report, stopped: Stopped = never) -> tuple[Remedy, ...]:
         found: dict[tuple[type, int], Remedy] = {}
         waiting = candidates(aim, Grounds(self.sketch)) if self.meeting.people else ()
         for done, suggestion in enumerate(waiting):
             if stopped():
                 break
-            progress(done, len(waiting))
+            progress(done / len(waiting))
             remedy = self._tried(aim, suggestion, stopped)
             kind = _kind(suggestion)
             if remedy is not None and _better(remedy, found.get(kind)):
                 found[kind] = remedy
         else:
-            progress(len(waiting), len(waiting))
+            progress(1.0)
         return tuple(sorted(found.values(), key=lambda one: -one.worth)[:TOLD])
 
     def _tried(self, aim: Aim, suggestion: Suggestion, stopped: Stopped) -> Remedy | None:
