@@ -26,6 +26,7 @@ usage: deliberate [FILE]
        deliberate doubt FILE [options]
        deliberate leverage FILE [options]
        deliberate remedies FILE [options]
+       deliberate tables FILE --tables N [options]
        deliberate check FILE
 
 Rehearse a contested meeting: who listens to whom, where talking leads, and why
@@ -37,6 +38,7 @@ it stalls. FILE is a scenario, `something.deliberate.json`.
   deliberate doubt FILE     draw the guesses again and again: how sure is that
   deliberate leverage FILE  say what the result hangs on, guess by guess
   deliberate remedies FILE  say which change of process would help
+  deliberate tables FILE    find who should sit with whom at mixed tables
   deliberate check FILE     say `ok`, or where the file is wrong and how
 
   -h, --help                show this and exit
@@ -70,6 +72,8 @@ def _run(arguments: Sequence[str]) -> int:
             return _on_file(_leverage, _leverage_parser().parse_args(rest))
         case ["remedies", *rest]:
             return _on_file(_remedies, _remedies_parser().parse_args(rest))
+        case ["tables", *rest]:
+            return _on_file(_tables, _tables_parser().parse_args(rest))
         case ["check", *rest]:
             return _on_file(_check, _check_parser().parse_args(rest))
         case _:
@@ -164,6 +168,22 @@ def _remedies(options: argparse.Namespace) -> None:
         _print(json.encode(remedies_to_json(scenario, *which, found)) + b"\n")
     else:
         _print(remedies_summary(scenario, *which, found))
+
+
+def _tables(options: argparse.Namespace) -> None:
+    from deliberate.files import read
+    from deliberate.rehearsal.seating.options import wish_of
+    from deliberate.rehearsal.seating.report import seating_summary, seating_to_json
+    from deliberate.rehearsal.seating.seat import seat
+
+    scenario = read(options.file)
+    found = seat(scenario, options.variant, options.question, wish_of(options), seed=options.seed)
+    if options.json:
+        from msgspec import json
+
+        _print(json.encode(seating_to_json(found)) + b"\n")
+    else:
+        _print(seating_summary(scenario, found))
 
 
 def _check(options: argparse.Namespace) -> None:
@@ -271,6 +291,15 @@ def _remedies_parser() -> argparse.ArgumentParser:
         help="common-view, end-swing, sooner, more-voices, outside-heard or less-spread"
         " (default: the best change for each that the figures ask for)",
     )
+    return parser
+
+
+def _tables_parser() -> argparse.ArgumentParser:
+    from deliberate.rehearsal.seating.options import add_options
+
+    parser = _meeting_parser("tables", "Find who should sit with whom at mixed tables.")
+    add_options(parser)
+    parser.add_argument("--seed", metavar="S", type=_seed, default=1, help="the same seed gives the same seating")
     return parser
 
 

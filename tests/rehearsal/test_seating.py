@@ -115,7 +115,7 @@ def test_conditions_are_kept_in_every_rotation():
         seat(CIRCLES, None, None, wish)
     assert str(refused.value) == (
         "these cannot all be met with 2 tables of 4: Amina and Emeka at one table and "
-        "somebody with the role “speaker” at every table"
+        'somebody with the role "speaker" at every table'
     )
     wish = Wish(tables=2, rotations=3, together=(("a", "f"),), apart=wish.apart, roles=wish.roles)
     found = seat(CIRCLES, None, None, wish)
@@ -128,7 +128,7 @@ def test_conditions_are_kept_in_every_rotation():
             assert {"b", "f"} & set(table)
     assert told.conditions_listed(wish, CIRCLES.variants[0]) == (
         "Amina and Farah <b> at one table, Bilal and c never at one table, g and h never at one table, somebody with "
-        "the role “speaker” at every table and somebody with the role “scribe” at every table"
+        'the role "speaker" at every table and somebody with the role "scribe" at every table'
     )
 
 
@@ -143,7 +143,7 @@ def test_conditions_are_kept_in_every_rotation():
         (Wish(tables=2, rounds=0), "a stage at tables has 1 to 1,000 rounds, not 0"),
         (
             Wish(tables=3, roles=("speaker",)),
-            "somebody with the role “speaker” at every table: there are 3 tables, and 2 with that role present",
+            'somebody with the role "speaker" at every table: there are 3 tables, and 2 with that role present',
         ),
         (Wish(tables=2, apart=(("a", "nobody"),)), "nobody is not present, and so not seated"),
         (
@@ -164,9 +164,7 @@ def test_one_condition_alone_can_be_too_much():
     lonely = edits.remove_arrows(lonely, [(other, "a") for other in "bcdefgh"], variant=NAME)
     with pytest.raises(DeliberateError) as refused:
         seat(lonely, None, None, Wish(tables=2, linked=True))
-    assert str(refused.value) == (
-        "this cannot be met with 2 tables of 4: everybody hears or is heard at her table"
-    )
+    assert str(refused.value) == ("this cannot be met with 2 tables of 4: everybody hears or is heard at her table")
 
 
 def test_no_arrow_is_invented():

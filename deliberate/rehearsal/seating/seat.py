@@ -157,6 +157,8 @@ def _room(variant: Variant, wish: Wish, sketch: Assembly, talk: TableTalk) -> tu
     known: dict[Condition, str] = {}
     for kind, pairs in ((Together, wish.together), (Apart, wish.apart)):
         for pair in pairs:
+            if len(set(pair)) < 2:
+                raise DeliberateError("a condition on who sits with whom needs two people")
             condition = kind(tuple(_place(one, seated, variant, sketch) for one in pair))
             known[condition] = condition_words("together" if kind is Together else "apart", pair, variant)
     for role in wish.roles:

@@ -35,7 +35,7 @@ def condition_words(
         case "apart", tuple():
             return f"{names(about, variant)} never at one table"
         case "role", str():
-            return f"somebody with the role “{about}” at every table"
+            return f'somebody with the role "{about}" at every table'
     return "everybody hears or is heard at her table"
 
 

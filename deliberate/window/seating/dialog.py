@@ -9,7 +9,7 @@ from pathlib import Path
 
 from msgspec.structs import replace
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QGuiApplication, QKeyEvent
+from PySide6.QtGui import QGuiApplication, QHideEvent, QKeyEvent
 from PySide6.QtWidgets import (
     QDialog,
     QFileDialog,
@@ -236,6 +236,11 @@ class SeatingDialog(QDialog):
             self.stop_here()
             return
         super().keyPressEvent(event)
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        super().hideEvent(event)
+        if not event.spontaneous():  # closed, or the window it belongs to is: nobody waits for it any more
+            self.errand.stop()
 
     def done(self, result: int) -> None:
         self.errand.close()

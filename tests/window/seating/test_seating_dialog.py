@@ -114,7 +114,7 @@ def test_conditions_are_added_kept_and_removed(qtbot: QtBot, open_dialog: Open) 
     assert dialog.form.wish.roles == ("speaker",)
     assert dialog.form.wish.linked
     texts = [conditions.list.item(row).text() for row in range(conditions.list.count())]
-    assert texts == ["Amina and Bilal never at one table", "Somebody with the role “speaker” at every table"]
+    assert texts == ["Amina and Bilal never at one table", 'Somebody with the role "speaker" at every table']
     found(qtbot, dialog)
     for tables in dialog.seating.rotations:
         for table in tables:
