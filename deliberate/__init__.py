@@ -1,7 +1,7 @@
 """Deliberate: rehearse a contested meeting before it happens.
 
 From Python: `read` a scenario file, `rehearse` one of its variants, `write` it back; `doubt` says how sure that is
-when every number is a guess, `leverage` what the result hangs on, `remedies` which change of process helps;
+when every number is a guess, `leverage` what the result hangs on, `remedies` which change of process helps, `seat` who should sit with whom;
 `to_networkx` and `from_networkx` exchange a variant with other programs. What a person gave wrongly raises
 `DeliberateError`.
 """
@@ -20,15 +20,19 @@ if TYPE_CHECKING:
     from deliberate.rehearsal.leverage import leverage
     from deliberate.rehearsal.rehearse import rehearse
     from deliberate.rehearsal.remedies import remedies
+    from deliberate.rehearsal.seating.seat import seat
+    from deliberate.rehearsal.seating.wish import Wish
 
 __all__ = [
     "DeliberateError",
+    "Wish",
     "doubt",
     "from_networkx",
     "leverage",
     "read",
     "rehearse",
     "remedies",
+    "seat",
     "to_networkx",
     "write",
 ]
@@ -47,6 +51,10 @@ def __getattr__(name: str) -> Any:
             module = "deliberate.rehearsal.leverage"
         case "remedies":
             module = "deliberate.rehearsal.remedies"
+        case "seat":
+            module = "deliberate.rehearsal.seating.seat"
+        case "Wish":
+            module = "deliberate.rehearsal.seating.wish"
         case "to_networkx" | "from_networkx":
             module = "deliberate.rehearsal.interchange"
         case _:

@@ -52,6 +52,14 @@ def test_graphs_there_and_back():
     assert deliberate.from_networkx(graph).variants[0].people == scenario.variants[1].people
 
 
+def test_who_should_sit_with_whom():
+    scenario = deliberate.read(RESERVOIR)
+    found = deliberate.seat(scenario, None, None, deliberate.Wish(tables=2, rotations=1))
+    assert sorted(person for table in found.rotations[0] for person in table) == sorted(
+        person.id for person in scenario.variants[0].people
+    )
+
+
 def test_what_it_hangs_on_and_what_would_help():
     scenario = deliberate.read(RESERVOIR)
     assert deliberate.leverage(scenario).levers[0].people == ("ngozi",)
