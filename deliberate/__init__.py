@@ -1,9 +1,9 @@
 """Deliberate: rehearse a contested meeting before it happens.
 
 From Python: `read` a scenario file, `rehearse` one of its variants, `write` it back; `doubt` says how sure that is
-when every number is a guess, `leverage` what the result hangs on, `remedies` which change of process helps, `seat` who should sit with whom;
-`to_networkx` and `from_networkx` exchange a variant with other programs. What a person gave wrongly raises
-`DeliberateError`.
+when every number is a guess, `leverage` what the result hangs on, `remedies` which change of process helps, `seat`
+who should sit with whom; `to_networkx` and `from_networkx` exchange a variant with other programs. What a person gave
+wrongly raises `DeliberateError`.
 """
 
 from __future__ import annotations
