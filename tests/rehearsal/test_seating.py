@@ -172,7 +172,9 @@ def test_no_arrow_is_invented():
     assert found.apart_groups == 2
     assert told.changes_nothing(found, DEMOS["air-sensor-label"].questions[0])
     assert "changes nothing that shows" in told.summary(found, DEMOS["air-sensor-label"].questions[0])
-    (caution,) = told.cautions(found, DEMOS["air-sensor-label"].variants[0])
+    caution, same = told.cautions(found, DEMOS["air-sensor-label"].variants[0])
+    assert found.rotations[0] == found.rotations[1]
+    assert same == "The tables are the same each time: in this sketch seating people anew gains nothing."
     assert caution.startswith("The sketch falls into two groups without an arrow between them.")
     after, name = as_variant(DEMOS["air-sensor-label"], found)
     assert after.variants[1].arrows == after.variants[0].arrows

@@ -9,26 +9,17 @@ from deliberate.rehearsal.words import count, in_words, listing, names, number, 
 from deliberate.scenario.values import Question, Variant
 
 GOALS = {
-    "less-spread": "Bring views closer together by the plan's end",
-    "more-voices": "Let more starts count in the average at the plan's end",
-}
-PLACES = {
-    "before": "before the stages of the plan",
-    "after": "after the stages of the plan",
-    "instead": "instead of the plan's stages at tables",
+    "less-spread": "Bring views closer by the plan's end",
+    "more-voices": "Let more starts count by the plan's end",
 }
 ALIKE = 1e-9  # of the scale's width: a spread that is called 0
 TIMES = {1: "once", 2: "twice"}
-UNHEARD = {
-    "rescale": "is spread over those at her own table",
-    "own": "goes to her own view",
-}
 
 
 def condition_words(
     kind: Literal["together", "apart", "role", "linked"], about: tuple[str, ...] | str, variant: Variant
 ) -> str:
-    """A condition as part of a sentence: "Amina and Jun at one table", "a chair at every table"."""
+    """A condition as part of a sentence: "Amina and Jun at one table"."""
     match kind, about:
         case "together", tuple():
             return f"{names(about, variant)} at one table"
@@ -107,6 +98,8 @@ def cautions(seating: Seating, variant: Variant) -> tuple[str, ...]:
     if alone:
         hears = "hears" if len(alone) == 1 else "hear"
         told.append(f"{names(alone, variant)} {hears} nobody at the table in at least one rotation.")
+    if len(seating.rotations) > 1 and len(set(seating.rotations)) == 1:
+        told.append("The tables are the same each time: in this sketch seating people anew gains nothing.")
     return tuple(told)
 
 

@@ -14,7 +14,7 @@ from deliberate.rehearsal.seating.wish import seated_people
 from deliberate.rehearsal.words import sentence, shown_names
 from deliberate.scenario.values import Variant
 from deliberate.window.sidebar.fields import Choice
-from deliberate.window.text import explain
+from deliberate.window.text import explain, plain_label
 
 ROWS_SHOWN = 4
 
@@ -50,6 +50,7 @@ class ConditionsEditor(QWidget):
         self.kind = Choice("Together or apart", self, [("sits with", "together"), ("never with", "apart")])
         self.second = Choice("Second person", self)
         self.add_pair = _small("Add", "Add this condition on two people", self)
+        self.every = plain_label(self, text="At every table somebody with the role", muted=True)
         self.role = Choice("Role that every table needs", self)
         self.add_role = _small("Add", "Add: somebody with this role at every table", self)
         self.linked = QCheckBox("Everybody hears or is heard at her table", self)
@@ -78,8 +79,9 @@ class ConditionsEditor(QWidget):
         grid.addWidget(self.kind, 0, 1)
         grid.addWidget(self.second, 1, 0)
         grid.addWidget(self.add_pair, 1, 1)
-        grid.addWidget(self.role, 2, 0)
-        grid.addWidget(self.add_role, 2, 1)
+        grid.addWidget(self.every, 2, 0, 1, 2)
+        grid.addWidget(self.role, 3, 0)
+        grid.addWidget(self.add_role, 3, 1)
         grid.setColumnStretch(0, 3)
         grid.setColumnStretch(1, 2)
         column = QVBoxLayout(self)
@@ -116,10 +118,10 @@ class ConditionsEditor(QWidget):
             box.show_value(before if before in seated else (seated[min(place, len(seated) - 1)] if seated else None))
         roles = list(dict.fromkeys(one.role for one in variant.people if one.present and one.role))
         role = self.role.currentData()
-        self.role.set_options([(f"“{one}” at every table", one) for one in roles])
+        self.role.set_options([(one, one) for one in roles])
         self.role.show_value(role if role in roles else (roles[0] if roles else None))
-        self.role.setVisible(bool(roles))
-        self.add_role.setVisible(bool(roles))
+        for part in (self.every, self.role, self.add_role):
+            part.setVisible(bool(roles))
         self.conditions = [
             one
             for one in self.conditions
