@@ -27,8 +27,9 @@ from deliberate.dynamics.structure import full_structure
 from deliberate.dynamics.turns import Turn, advance, turn_of
 
 FULL_PEOPLE = 1_000
-# Beyond this an inverse has lost about half of its digits: groups hardly hear each other.
+# Beyond these an inverse has lost about half, and nearly all, of its digits: groups hardly hear each other.
 NEARLY_APART = 1e7
+APART = 1e13
 
 
 @dataclass(frozen=True, eq=False)
@@ -169,16 +170,25 @@ class Lasting:
         if len(passing):
             more, to_starts = reached.trace(voice[passing])
             into = into + more
-            inverse = np.linalg.inv(np.eye(len(passing)) - turn.kept[np.ix_(passing, passing)])
-            visits[passing] = voice[passing] @ inverse
+            inverse = _inverse(np.eye(len(passing)) - turn.kept[np.ix_(passing, passing)])
+            with np.errstate(invalid="ignore"):
+                visits[passing] = voice[passing] @ inverse
         fundamental = tuple(_fundamental(turn.kept, reached.within, group.members) for group in reached.groups)
         return cls(voice, turn, track.firmness, reached, into, to_starts, visits, inverse, fundamental)
 
     @property
     def accurate(self) -> bool:
         """Whether the closed forms keep half of their digits or more: not where groups hardly hear each other."""
-        inverses = (self.inverse, *self.fundamental)
-        return all(np.abs(inverse).max(initial=0.0) < NEARLY_APART for inverse in inverses)
+        return self._largest < NEARLY_APART
+
+    @property
+    def usable(self) -> bool:
+        """Whether they keep any."""
+        return self._largest < APART
+
+    @property
+    def _largest(self) -> float:
+        return max(float(np.abs(inverse).max(initial=0.0)) for inverse in (self.inverse, *self.fundamental))
 
     def result(self, person: int, row: Floats, firm: float, before: Floats, starts: Floats) -> float:
         """The result with the person's kept row (n,) and firmness replaced, when `before` is held before it."""
@@ -222,7 +232,15 @@ class Lasting:
 
 def _fundamental(kept: Floats, within: Floats, members: Indices) -> Floats:
     inside = kept[np.ix_(members, members)]
-    return np.linalg.inv(np.eye(len(members)) - inside + within[members][None, :])
+    return _inverse(np.eye(len(members)) - inside + within[members][None, :])
+
+
+def _inverse(matrix: Floats) -> Floats:
+    """The inverse; infinite where groups hear each other so little that doubles cannot tell it from none at all."""
+    try:
+        return np.linalg.inv(matrix)
+    except np.linalg.LinAlgError:
+        return np.full(matrix.shape, np.inf)
 
 
 # Derivatives by every weight
@@ -258,12 +276,14 @@ def pull_at_end(
     return pull, voices[0] + to_starts
 
 
+@np.errstate(over="ignore", invalid="ignore")  # both end as NaN
 def pull_in_long_run(
     process: Process, starts: Floats, lasting: Lasting, audible: Sequence[Mask] | None = None
 ) -> tuple[Floats, Floats]:
     """`pull_at_end` for the long run of a plan that is not repeated; lasting: `Lasting.of(process, voice)`.
 
-    NaN where an arrow from a closed group to others would merge groups, so that the long run would jump.
+    NaN where an arrow from a closed group to others would merge groups, so that the long run would jump, and where
+    groups hear each other so little that the rate is beyond double range.
     """
     track = course(process)
     reached = lasting.reached
@@ -278,7 +298,9 @@ def pull_in_long_run(
     pull = _by_weight(process, len(process.blocks) - 1, worth, audible)
     voice_before, to_starts = reached.give_back(lasting.voice)
     earlier, counts = pull_at_end(process, starts, track.rounds_before, voice_before, audible)
-    return pull + earlier, counts + to_starts
+    pull += earlier
+    pull[~np.isfinite(pull)] = np.nan
+    return pull, counts + to_starts
 
 
 def _moved(process: Process, index: int, beliefs: Floats, starts: Floats) -> Floats:

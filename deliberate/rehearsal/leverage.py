@@ -65,8 +65,10 @@ class Lever:
 class Leverage:
     """What a result hangs on, the largest first by what it moves at the plan's end.
 
+    result_at_end, result_in_long_run: on the question's scale; 0 where nobody is present. step: that of the starts.
     arrows_at_end, arrows_in_long_run: (arrows,) what ten points more for each arrow of the variant would move, the
-    listener's others making room in proportion, at the rate of the first; None where there is no such rate.
+    listener's others making room in proportion, at the rate of the first; None, or NaN for one arrow, where there is
+    no such rate.
     """
 
     variant: str
@@ -100,7 +102,11 @@ def _require_size(variant: Variant, question: Question) -> None:
     most = MOST_REPLAYED if replayed else FULL_PEOPLE
     if len(variant.people) > most:
         when = "with a hearing range or a repeated plan leverage" if replayed else "leverage"
-        raise DeliberateError(f"{when} is worked out for up to {most:,} people, there are {len(variant.people):,}")
+        raise _too_large(when, most, len(variant.people))
+
+
+def _too_large(what: str, most: int, people: int) -> DeliberateError:
+    return DeliberateError(f"{what} is worked out for up to {most:,} people, there are {people:,}")
 
 
 @dataclass(frozen=True)
@@ -133,6 +139,8 @@ class _Levers:
         self.lasting = Lasting.of(self.process, self.voice) if linear else None
         small = len(sketch.people) <= MOST_REPLAYED
         self.replayed = self.lasting is None or (small and not self.lasting.accurate)
+        if not (self.replayed or self.lasting.usable):
+            raise _too_large("where groups hardly hear each other leverage", MOST_REPLAYED, len(sketch.people))
 
     def found(self) -> Leverage:
         at_end, in_long_run = self._results(self.process, self.starts)

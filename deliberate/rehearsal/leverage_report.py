@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from itertools import groupby
 from typing import Any
@@ -19,14 +20,17 @@ TOLD = 12  # levers in the text; the JSON has all
 def leverage_summary(scenario: Scenario, found: Leverage) -> str:
     """What the result hangs on, for people; the largest first. Made for 80 columns."""
     question = pick_question(scenario, found.question)
-    end, last = (with_unit(result, question) for result in (found.result_at_end, found.result_in_long_run))
     told = list(_together(scenario, found, question))
+    above = heading(scenario, pick_variant(scenario, found.variant), question)
+    if not told:  # even one person alone has a start
+        return "\n\n".join([above, "Nobody is present, so there is no result.", CAUTION]) + "\n"
+    end, last = (with_unit(result, question) for result in (found.result_at_end, found.result_in_long_run))
     lines = [
-        heading(scenario, pick_variant(scenario, found.variant), question),
+        above,
         "",
         wrap(f"The mean of those present is {end} at the plan's end and {last} in the long run."),
         "",
-        "What it hangs on" if told else "Nobody is present, so it hangs on nothing.",
+        "What it hangs on",
         *(wrap(says, f"{place:3}. ") for place, says in enumerate(told[:TOLD], 1)),
         "",
         wrap(
@@ -56,7 +60,7 @@ def _alike(lever: Lever, question: Question) -> tuple[str, str]:
 
 
 def leverage_to_json(scenario: Scenario, found: Leverage) -> dict[str, Any]:
-    """All levers at full precision: plain dicts, lists, text and finite numbers."""
+    """All levers at full precision: plain dicts, lists, text and finite numbers (an arrow without a rate is null)."""
     arrows = pick_variant(scenario, found.variant).arrows
     return {
         "format": "deliberate-leverage",
@@ -68,8 +72,8 @@ def leverage_to_json(scenario: Scenario, found: Leverage) -> dict[str, Any]:
         "result_in_long_run": found.result_in_long_run,
         "levers": [_lever(lever) for lever in found.levers],
         "arrows": [[arrow.listener, arrow.source] for arrow in arrows],
-        "arrows_at_end": _numbers(found.arrows_at_end),
-        "arrows_in_long_run": _numbers(found.arrows_in_long_run),
+        "arrows_at_end": _rates(found.arrows_at_end),
+        "arrows_in_long_run": _rates(found.arrows_in_long_run),
     }
 
 
@@ -85,5 +89,5 @@ def _lever(lever: Lever) -> dict[str, Any]:
     }
 
 
-def _numbers(values: Floats | None) -> list[float] | None:
-    return None if values is None else values.tolist()
+def _rates(values: Floats | None) -> list[float | None] | None:
+    return None if values is None else [rate if math.isfinite(rate) else None for rate in values.tolist()]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import math
 
 import numpy as np
 import pytest
@@ -15,7 +16,7 @@ from deliberate.rehearsal.leverage import Lever, leverage, step_of
 from deliberate.rehearsal.leverage_report import leverage_summary, leverage_to_json
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.scenario import edits
-from deliberate.scenario.values import Plan, Question, Scenario, Stage
+from deliberate.scenario.values import Arrow, Person, Plan, Question, Scenario, Stage, Variant
 
 NOW = "As it stands"
 HUB = meeting(
@@ -155,7 +156,26 @@ def test_nobody_present_and_nobody_at_all():
     absent = edits.set_presence(HUB, IDS[:3], False, variant=NOW)
     assert leverage(absent).levers == ()
     assert "Nobody is present" in leverage_summary(absent, leverage(absent))
+    assert "mean" not in leverage_summary(absent, leverage(absent))
     assert leverage(meeting([], [])).levers == ()
+
+
+def test_arrows_without_a_rate_are_null():
+    apart = meeting([[50, 50, 0, 0], [50, 50, 0, 0], [1e-310, 0, 50, 50], [0, 0, 50, 50]], [10, 20, 80, 90])
+    told = leverage_to_json(apart, leverage(apart))
+    json.dumps(told, allow_nan=False)
+    assert all(math.isfinite(lever["in_long_run"]) for lever in told["levers"])
+    assert None in told["arrows_in_long_run"]
+    assert None not in told["arrows_at_end"]
+
+
+def test_large_meetings_in_which_groups_hardly_hear_each_other_are_refused():
+    people = tuple(Person(f"p{at}", own_weight=50.0) for at in range(102))
+    in_pairs = tuple(Arrow(f"p{at}", f"p{at ^ 1}", 50.0) for at in range(102))
+    variant = Variant(NOW, people, arrows=(*in_pairs, Arrow("p2", "p0", 1e-20)))
+    large = Scenario("A test", (Question("q", "What is asked?", 0, 100),), (variant,))
+    with pytest.raises(DeliberateError, match="hardly hear each other leverage is worked out for up to 100 people"):
+        leverage(large)
 
 
 def test_too_large_meetings_are_refused():
