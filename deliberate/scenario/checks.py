@@ -22,6 +22,7 @@ AGREEMENT_KEYS = {
     "spread": ("at_most",),
 }
 RAND_UCLA_SCALE = (1, 9)
+LEAST_WIDTH = 1e-290  # of a scale: what counts as equal on it, parts in 1e12, is then a full double still
 
 _decoder = msgspec.json.Decoder(Scenario)
 _encoder = msgspec.json.Encoder()
@@ -80,6 +81,8 @@ def _check_question(question: Question, where: str) -> None:
         refuse(f"must be more than low ({shown(question.low)}), is {shown(question.high)}", f"{where}.high")
     if not math.isfinite(question.width):
         refuse("must lie closer to low: the width of the scale is outside double range", f"{where}.high")
+    if question.width < LEAST_WIDTH:
+        refuse("must lie further from low: parts of the scale are outside double range", f"{where}.high")
     if question.pass_mark is not None:
         _check_on_scale(question.pass_mark, question, f"{where}.pass_mark")
     for index, test in enumerate(question.agreement):

@@ -81,6 +81,10 @@ REFUSED: list[tuple[Scenario, str]] = [
         asked(low=-1.7e308, high=1.7e308),
         "questions[0].high: must lie closer to low: the width of the scale is outside double range",
     ),
+    (
+        asked(low=0, high=1e-300, pass_mark=None),
+        "questions[0].high: must lie further from low: parts of the scale are outside double range",
+    ),
     (asked(pass_mark=1.5), 'questions[0].pass_mark: must lie on the scale of "levy", from 0 to 1, is 1.5'),
     (asked(undecided=-0.1), "questions[0].undecided: must be 0 or more, is -0.1"),
     (asked(hearing_range=-1), "questions[0].hearing_range: must be 0 or more, is -1"),
