@@ -128,8 +128,8 @@ def test_a_ready_rule_is_known_by_its_tests_alone() -> None:
         ),
         (
             Ballot(quorum="5/7", tests=(BallotTest(side="objecting", of="present", less_than=0.125),)),
-            "Passes when less than 12.5 % of the votes of those present belong to people who object; at least 5/7 of those "
-            "with a vote must be present.",
+            "Passes when less than 12.5 % of the votes of those present belong to people who object; at least 5/7 of "
+            "those with a vote must be present.",
         ),
         (Ballot(quorum=None, tests=()), "Passes with any vote."),
         (
