@@ -67,8 +67,7 @@ class SeatingDialog(QDialog):
         self._made = ""  # the variant with these tables
         self.errand = Errand(self)
         self.form = WishForm(self)
-        self.result = ResultView(look, self)
-        self.find = _button("&Find a seating", self)
+        self.find = _button("&Find a seating", self)  # Tab goes in the order in which things are made
         self.find.setDefault(True)
         self.bar = QProgressBar(self)
         self.bar.setRange(0, STEPS)
@@ -76,6 +75,7 @@ class SeatingDialog(QDialog):
         self.bar.setFixedHeight(6)
         self.bar.setAccessibleName("How far the search is")
         self.stop = _button("&Stop here", self)
+        self.result = ResultView(look, self)
         self.make = _button("Make it a &variant", self)
         self.copy = _button("&Copy the list", self)
         self.print = _button("&Print …", self)

@@ -34,6 +34,7 @@ class WishForm(QWidget):
         super().__init__(parent)
         self._variant: Variant | None = None
         self._filling = False
+        self.goal = Choice("What the seating is for", self, [(words, goal) for goal, words in GOALS.items()])
         self.counted = Choice("What is given", self, [("Tables", "tables"), ("People at a table", "size")])
         self.number = _spin("How many", 1, 500, self)
         self.comes_to = plain_label(self, muted=True)
@@ -41,7 +42,6 @@ class WishForm(QWidget):
         self.rounds = _spin("Rounds at each seating", 1, 1_000, self)
         self.place = Choice("Where in the plan", self, PLACES)
         self.unheard = Choice("Points for those at other tables", self, UNHEARD)
-        self.goal = Choice("What the seating is for", self, [(words, goal) for goal, words in GOALS.items()])
         self.conditions = ConditionsEditor(self)
         self.rotations.setValue(2)
         self.rounds.setValue(2)
@@ -67,7 +67,7 @@ class WishForm(QWidget):
         for text, field in (
             ("Seated &anew, times", self.rotations),
             ("&Rounds each time", self.rounds),
-            ("In the &plan", self.place),
+            ("In the p&lan", self.place),
             ("&Other tables' points", self.unheard),
         ):
             label = QLabel(text, self)

@@ -286,3 +286,35 @@ def test_it_fits_a_small_projector(open_dialog: Open) -> None:
     dialog = open_dialog()
     dialog.resize(900, 560)
     assert (dialog.width(), dialog.height()) == (900, 560)
+
+
+def test_all_of_it_can_be_done_at_the_keyboard(qtbot: QtBot, open_dialog: Open) -> None:
+    dialog = open_dialog()
+    dialog.activateWindow()
+    qtbot.waitUntil(dialog.isActiveWindow)
+    dialog.form.goal.setFocus()
+    reached = [dialog.focusWidget()]
+    while (now := _tab(dialog)) is not reached[0]:
+        reached.append(now)
+        assert len(reached) < 40
+    form, conditions = dialog.form, dialog.form.conditions
+    wanted = [form.goal, form.counted, form.number, form.rotations, form.rounds, form.place, form.unheard]
+    wanted += [conditions.first, conditions.kind, conditions.second, conditions.add_pair, conditions.role]
+    wanted += [conditions.add_role, conditions.linked, dialog.find, dialog.close_button]
+    assert [widget for widget in reached if widget in wanted] == wanted
+    dialog.find.setFocus()
+    QTest.keyClick(dialog.find, Qt.Key.Key_Return)
+    qtbot.waitUntil(lambda: dialog.seating is not None, timeout=20_000)
+
+
+def _tab(dialog: SeatingDialog) -> object:
+    QTest.keyClick(dialog.focusWidget(), Qt.Key.Key_Tab)
+    return dialog.focusWidget()
+
+
+def test_no_two_fields_share_a_letter(open_dialog: Open) -> None:
+    dialog = open_dialog()
+    texts = [one.text() for kind in (QLabel, QAbstractButton) for one in dialog.findChildren(kind)]
+    letters = [text[text.index("&") + 1].casefold() for text in texts if "&" in text]
+    assert len(letters) > 8
+    assert len(letters) == len(set(letters))
