@@ -10,12 +10,9 @@ from PySide6.QtGui import QAction, QActionGroup, QKeySequence
 from PySide6.QtWidgets import QMenu, QMenuBar, QWidget
 
 from deliberate.window import help_texts
-from deliberate.window.comparison import ComparisonDialog
-from deliberate.window.gallery import Gallery
 from deliberate.window.player import SPEEDS
 from deliberate.window.recent import label
 from deliberate.window.right_pages import TITLES
-from deliberate.window.seating import SeatingDialog
 from deliberate.window.text import tooltip, with_ampersands
 
 if TYPE_CHECKING:
@@ -107,6 +104,8 @@ class Actions(QObject):
         self.recent.addAction("&Forget recent files", files.recent.forget).setEnabled(bool(paths))
 
     def _show_gallery(self) -> None:
+        from deliberate.window.gallery import Gallery  # as all dialogs, when it is asked for: the start is quicker
+
         gallery = Gallery(self._window.look, self._window)
         gallery.chosen.connect(self._window.files.open_demo)
         gallery.open()
@@ -177,6 +176,8 @@ class Actions(QObject):
         doubting.changed.connect(lambda: self.doubt.setChecked(doubting.wanted))
 
     def _show_seating(self) -> None:
+        from deliberate.window.seating import SeatingDialog
+
         window = self._window
         dialog = window.findChild(SeatingDialog) or SeatingDialog(window.session, window.look, window)
         dialog.show()
@@ -198,6 +199,8 @@ class Actions(QObject):
 
     def _show_comparison(self) -> None:
         window = self._window
+        from deliberate.window.comparison import ComparisonDialog
+
         dialog = window.findChild(ComparisonDialog) or ComparisonDialog(window.session, window.look, window)
         dialog.show()
         dialog.raise_()

@@ -113,7 +113,7 @@ def paint_arrows(
     lowering = scene.lowering[which]
     group = ((manner * 1000 + np.rint(wide / _WIDTH_STEP).astype(np.intp)) * 2 + dashed) * 2 + lowering
     inks = colors(theme)
-    for key in np.unique(group).tolist():
+    for key in sorted(set(group.tolist())):  # np.unique would load numpy.ma before the first frame
         members = np.flatnonzero(group == key)
         ink, width, dash = inks[key // 4000], key % 4000 // 4 * _WIDTH_STEP, bool(key // 2 % 2)
         pen = QPen(ink, width if fine else max(width, 1.01), Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap)

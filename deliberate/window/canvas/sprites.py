@@ -59,7 +59,7 @@ class DiscAtlas:
         painter.drawPixmapFragments(first, len(fragments), self.pixmap)
 
     def _paint_missing(self, shade: Indices) -> None:
-        missing = [index for index in np.unique(shade).tolist() if not self._done[index]]
+        missing = [index for index in sorted(set(shade.tolist())) if not self._done[index]]
         if not missing:
             return
         colors = shades(self.theme)
