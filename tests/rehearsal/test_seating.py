@@ -1,5 +1,7 @@
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from hypothesis import assume, given, settings
@@ -221,6 +223,13 @@ def test_seeds_repeat_and_stopping_gives_the_best_so_far():
     stopped = seat(scenario, None, None, wish, stopped=lambda: True)
     assert not stopped.finished
     assert told.standing(stopped) == "The search was stopped; this is the best seating so far."
+
+
+def test_how_many_others_people_come_to_sit_with():
+    found = seat(CIRCLES, None, None, Wish(tables=2, rotations=1))
+    assert told.company(found) == "Everybody sits with 3 of 7 others on average."
+    twice = replace(found, rotations=((tuple("abcd"), tuple("efgh")), (tuple("abef"), tuple("cdgh"))))
+    assert told.company(twice) == "In all, everybody sits with 5 of 7 others on average."
 
 
 def test_table_sizes_are_as_equal_as_can_be():

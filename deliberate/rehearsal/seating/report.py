@@ -9,6 +9,7 @@ from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.page import CAUTION, heading, wrap
 from deliberate.rehearsal.seating.told import (
     cautions,
+    company,
     conditions_listed,
     stage_names,
     standing,
@@ -24,7 +25,7 @@ def seating_summary(scenario: Scenario, seating: Seating) -> str:
     """What the seating does, and who sits where. Made for 80 columns."""
     variant, question = pick_variant(scenario, seating.variant), pick_question(scenario, seating.question)
     kept = conditions_listed(seating.wish, variant)
-    paragraphs = [summary(seating, question), standing(seating), *cautions(seating, variant)]
+    paragraphs = [summary(seating, question), standing(seating), company(seating), *cautions(seating, variant)]
     if kept:
         paragraphs.append(f"Kept in every rotation: {kept}.")
     lines = [heading(scenario, variant, question), "", *map(wrap, paragraphs), *_tables(seating, variant)]

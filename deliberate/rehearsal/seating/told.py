@@ -85,6 +85,18 @@ def standing(seating: Seating) -> str:
     return f"The best of {starts}; a better one may exist."
 
 
+def company(seating: Seating) -> str:
+    """How many others people come to sit with: one sentence."""
+    met: dict[str, set[str]] = {}
+    for tables in seating.rotations:
+        for table in tables:
+            for one in table:
+                met.setdefault(one, set()).update(other for other in table if other != one)
+    mean = sum(map(len, met.values())) / len(met)
+    together = "In all, everybody" if len(seating.rotations) > 1 else "Everybody"
+    return f"{together} sits with {mean:.2g} of {len(met) - 1} others on average."
+
+
 def cautions(seating: Seating, variant: Variant) -> tuple[str, ...]:
     """What a facilitator should know before she lays the tables; a sentence each."""
     told = []

@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QLabel, QScrollArea, QVBoxLayout, QWidget
 
-from deliberate.rehearsal.seating.told import cautions, stage_names, standing, summary, table_names
+from deliberate.rehearsal.seating.told import cautions, company, stage_names, standing, summary, table_names
 from deliberate.rehearsal.seating.wish import Seating
 from deliberate.rehearsal.words import shown_names
 from deliberate.scenario.values import Question, Variant
@@ -60,7 +60,7 @@ class ResultView(QWidget):
         self._shown = seating, variant, question
         self.says.setText(summary(seating, question))
         self.says.show()
-        self.standing.setText(standing(seating))
+        self.standing.setText(f"{standing(seating)} {company(seating)}")
         told = cautions(seating, variant)
         self.caution.setText("\n".join(told))
         self.caution.setVisible(bool(told))

@@ -13,7 +13,7 @@ from rooms import ASSEMBLY, HOSTILE, MARKUP, TWO_HALVES
 
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.rehearse import rehearse
-from deliberate.rehearsal.seating.told import standing, summary
+from deliberate.rehearsal.seating.told import company, standing, summary
 from deliberate.scenario import edits
 from deliberate.window.seating import SeatingDialog, paper
 from deliberate.window.seating.dialog import ANOTHER_WISH, MOVED_ON
@@ -47,7 +47,7 @@ def test_it_finds_and_shows_a_seating(qtbot: QtBot, open_dialog: Open) -> None:
     assert not dialog.make.isEnabled()
     found(qtbot, dialog)
     assert dialog.result.says.text() == summary(dialog.seating, TWO_HALVES.questions[0])
-    assert dialog.result.standing.text() == standing(dialog.seating)
+    assert dialog.result.standing.text() == f"{standing(dialog.seating)} {company(dialog.seating)}"
     assert "1,225" in dialog.result.standing.text()
     cards = [(card.title, card.names) for card in dialog.result.cards]
     assert [title for title, _ in cards] == ["Table 1", "Table 2"] * 2
@@ -151,7 +151,7 @@ def test_stopping_shows_the_best_so_far(qtbot: QtBot, open_dialog: Open) -> None
     qtbot.waitUntil(lambda: dialog.bar.value() > 0, timeout=20_000)
     press(dialog.stop)
     qtbot.waitUntil(lambda: dialog.seating is not None, timeout=20_000)
-    assert dialog.result.standing.text() == "The search was stopped; this is the best seating so far."
+    assert dialog.result.standing.text().startswith("The search was stopped; this is the best seating so far.")
     assert not dialog.stop.isVisible()
 
 
