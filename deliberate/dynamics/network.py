@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
 Indices = NDArray[np.intp]
@@ -56,13 +56,3 @@ class Network:
     def arrows(self) -> int:
         """How many arrows there are, whether they count at the moment or not."""
         return len(self.weight)
-
-
-def network_of(matrix: ArrayLike) -> Network:
-    """The network whose weights are the entries of a square matrix (row = listener), everybody present."""
-    weights = np.asarray(matrix, dtype=np.float64)
-    own = weights.diagonal().copy()
-    listener, source = np.nonzero(weights)
-    drawn = listener != source
-    listener, source = listener[drawn], source[drawn]
-    return Network(own, listener, source, weights[listener, source], np.ones(len(own), dtype=bool))

@@ -53,11 +53,6 @@ def arrows_of(variant: Variant, listener: str) -> tuple[Arrow, ...]:
     return tuple(arrow for arrow in variant.arrows if arrow.listener == listener)
 
 
-def arrows_to(variant: Variant, source: str) -> tuple[Arrow, ...]:
-    """The arrows of those who hear `source`, in the order of the file."""
-    return tuple(arrow for arrow in variant.arrows if arrow.source == source)
-
-
 def stage_at(variant: Variant, index: int) -> Stage:
     """The stage at `index`, counted from 0. Raises DeliberateError where there is none."""
     stages = variant.plan.stages

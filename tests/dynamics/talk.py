@@ -6,8 +6,9 @@ from collections.abc import Sequence
 
 import numpy as np
 from hypothesis import strategies as st
+from numpy.typing import ArrayLike
 
-from deliberate.dynamics.network import Network, network_of
+from deliberate.dynamics.network import Network
 from deliberate.dynamics.process import Block, Process
 
 # Points as they are written in a file: half of the pairs hear nothing of each other.
@@ -16,6 +17,16 @@ POINTS = ("0", "0", "0", "0", "1", "2.5", "0.3", "7")
 FAR_APART = ("0", "0", "0", "1", "2.5", "1e-12", "7e-12", "0.3e-6")
 FEW = st.integers(1, 7)
 FIRMNESS = (0.0, 0.0, 0.0, 0.0, 0.25, 0.6, 1.0)
+
+
+def network_of(matrix: ArrayLike) -> Network:
+    """The network whose weights are the entries of a square matrix (row = listener), everybody present."""
+    weights = np.asarray(matrix, dtype=np.float64)
+    own = weights.diagonal().copy()
+    listener, source = np.nonzero(weights)
+    drawn = listener != source
+    listener, source = listener[drawn], source[drawn]
+    return Network(own, listener, source, weights[listener, source], np.ones(len(own), dtype=bool))
 
 
 def plenary(points: Sequence[Sequence[float]], firmness: Sequence[float] | None = None) -> Process:

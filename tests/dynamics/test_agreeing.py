@@ -2,12 +2,11 @@ import numpy as np
 import pytest
 from hypothesis import assume, given, reject
 from hypothesis import strategies as st
-from talk import in_other_order, line, plenary, ring, talks
+from talk import in_other_order, line, network_of, plenary, ring, talks
 
 from deliberate.dynamics import agreeing as module
 from deliberate.dynamics.agreeing import agreeing, rounds_to_agree
 from deliberate.dynamics.longrun import long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 from deliberate.dynamics.shares import heard_in_silence

@@ -4,12 +4,11 @@ import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from talk import line, plenary, ring
+from talk import line, network_of, plenary, ring
 
 from deliberate.dynamics.drawn_talk import DrawnFate, DrawnTalk, Stopped
 from deliberate.dynamics.draws import RowSource, draw_starts
 from deliberate.dynamics.longrun import long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 

@@ -1,9 +1,10 @@
 import numpy as np
 import pytest
 from scipy import stats
+from talk import network_of
 
 from deliberate.dynamics.draws import LEAST, MOST_SOBOL, RowSource, adder, draw_starts
-from deliberate.dynamics.network import Network, network_of
+from deliberate.dynamics.network import Network
 
 
 def seeded(seed=7):

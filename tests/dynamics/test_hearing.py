@@ -6,13 +6,12 @@ import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from talk import in_other_order, plain_rounds, plenary, talks
+from talk import in_other_order, network_of, plain_rounds, plenary, talks
 
 from deliberate.dynamics import hearing
 from deliberate.dynamics.agreeing import rounds_to_agree
 from deliberate.dynamics.hearing import BY_STEPPING, KEEPS_CHANGING, NOT_TRACED, follow_hearing
 from deliberate.dynamics.longrun import long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 

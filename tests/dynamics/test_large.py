@@ -4,12 +4,11 @@ import networkx as nx
 import numpy as np
 import pytest
 from hypothesis import given
-from talk import line, plenary, ring, talks
+from talk import line, network_of, plenary, ring, talks
 
 from deliberate.dynamics import large, longrun
 from deliberate.dynamics.large import Iterated, large_structure, large_turn
 from deliberate.dynamics.longrun import NOT_EXACT, long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process, course
 from deliberate.dynamics.shares import heard_at_tables, shares
 from deliberate.errors import DeliberateError

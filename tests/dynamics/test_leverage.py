@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from talk import network_of
 
 from deliberate.dynamics.leverage import (
     Lasting,
@@ -20,7 +21,7 @@ from deliberate.dynamics.leverage import (
     with_row,
 )
 from deliberate.dynamics.longrun import long_run
-from deliberate.dynamics.network import Network, network_of
+from deliberate.dynamics.network import Network
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 

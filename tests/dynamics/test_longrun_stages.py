@@ -2,10 +2,9 @@
 
 import numpy as np
 import pytest
-from talk import plenary, ring
+from talk import network_of, plenary, ring
 
 from deliberate.dynamics.longrun import END_OF_PASS, TOO_LONG, final_map, long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 from deliberate.dynamics.shares import heard_at_tables, heard_in_silence

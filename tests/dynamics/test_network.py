@@ -1,8 +1,8 @@
 import numpy as np
 from hypothesis import given
-from talk import as_numbers, point_matrices
+from talk import as_numbers, network_of, point_matrices
 
-from deliberate.dynamics.network import network_of, sum_by
+from deliberate.dynamics.network import sum_by
 
 
 @given(point_matrices())

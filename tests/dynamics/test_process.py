@@ -1,8 +1,7 @@
 import numpy as np
 from hypothesis import given
-from talk import processes
+from talk import network_of, processes
 
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process, course
 
 

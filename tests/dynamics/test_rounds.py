@@ -3,10 +3,9 @@ import pytest
 from hypothesis import assume, given
 from hypothesis import strategies as st
 from scipy.sparse import csr_array
-from talk import in_other_order, line, plain_rounds, plenary, processes, ring, starts_of, talks
+from talk import in_other_order, line, network_of, plain_rounds, plenary, processes, ring, starts_of, talks
 
 from deliberate.dynamics.longrun import final_map
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import block_at, play, scheduled
 from deliberate.dynamics.shares import Shares, heard_at_tables, heard_from

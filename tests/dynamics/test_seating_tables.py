@@ -3,8 +3,8 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from seats import Circle
+from talk import network_of
 
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.seating.search import _ends, never
 from deliberate.dynamics.seating.tables import TableTalk
 

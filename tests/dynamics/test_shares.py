@@ -7,10 +7,10 @@ from exact import assert_close, exact_shares
 from hypothesis import given
 from hypothesis import strategies as st
 from scipy.sparse import csr_array
-from talk import as_numbers, networks, plain_shares, point_matrices
+from talk import as_numbers, network_of, networks, plain_shares, point_matrices
 
 from deliberate.dynamics import shares as module
-from deliberate.dynamics.network import Network, network_of
+from deliberate.dynamics.network import Network
 from deliberate.dynamics.shares import (
     Shares,
     heard_at_tables,

@@ -4,10 +4,9 @@ import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from talk import plenary
+from talk import network_of, plenary
 
 from deliberate.dynamics.longrun import long_run
-from deliberate.dynamics.network import network_of
 from deliberate.dynamics.process import Block, Process
 from deliberate.dynamics.rounds import play
 from deliberate.dynamics.shares import heard_in_silence
