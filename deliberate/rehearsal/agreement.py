@@ -11,8 +11,9 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from deliberate.rehearsal.ballots import exact, rounding
+from deliberate.rehearsal.ballots import rounding
 from deliberate.rehearsal.results import Agreement, Floats, Verdict
+from deliberate.scenario.rules import exact
 from deliberate.scenario.values import AgreementTest, Person, Question
 
 Figures = tuple[NDArray[np.bool_], NDArray[np.bool_], Floats]  # agreement, disagreement, figure, each (k,)

@@ -16,18 +16,19 @@ from fractions import Fraction
 from functools import cached_property
 
 import numpy as np
-from msgspec import UNSET
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.results import Floats, Tally
-from deliberate.scenario.values import Ballot, BallotTest, Person, Question, Share
+from deliberate.scenario.rules import exact, threshold
+from deliberate.scenario.values import Ballot, BallotTest, Person, Question
 
 _HALF = Fraction(1, 2)
-
-
-def exact(share: Share) -> Fraction:
-    """A number or fraction as it reads: 0.55 is 55/100, not the nearest double; "2/3" is two thirds."""
-    return Fraction(share if isinstance(share, str) else repr(float(share)))
+_COMPARISONS = {
+    "more_than": np.greater,
+    "at_least": np.greater_equal,
+    "at_most": np.less_equal,
+    "less_than": np.less,
+}
 
 
 def rounding(question: Question) -> float:
@@ -87,7 +88,7 @@ class Electorate:
         self._unit = math.lcm(*(weight.denominator for weight in as_written.values()))
         whole = {given: int(weight * self._unit) for given, weight in as_written.items()}
         self._eligible_weight = sum(whole[person.ballots] for person in people)
-        thresholds = [_threshold(test)[1] for test in self.ballot.tests]
+        thresholds = [threshold(test)[1] for test in self.ballot.tests]
         largest = max((max(limit.numerator, limit.denominator) for limit in thresholds), default=1)
         # Counts are multiplied by numerators and denominators: beyond 64 bits Python's integers take over.
         self._whole_type = np.int64 if max(self._eligible_weight, 1) * largest < 2**63 else object
@@ -152,10 +153,10 @@ class Electorate:
             "present": self._whole(weights),
             "eligible": self._eligible_weight if by_ballots else self.eligible,
         }[test.of]
-        compare, limit = _threshold(test)
+        kind, limit = threshold(test)
         share, bar = counts[test.side] * limit.denominator, of * limit.numerator
-        holds = compare(share, bar).astype(bool)
-        majority = (test.side, test.of, compare, limit) == ("for", "cast", np.greater, _HALF)
+        holds = _COMPARISONS[kind](share, bar).astype(bool)
+        majority = (test.side, test.of, kind, limit) == ("for", "cast", "more_than", _HALF)
         if majority and self._casting is not None:
             holds |= (share == bar).astype(bool) & (beliefs[:, self._casting] > self._for_above)
         return holds
@@ -173,19 +174,3 @@ class Electorate:
             return counts.astype(np.float64) / self._unit
         largest = int(sys.float_info.max) * self._unit
         return np.array([min(count, largest) / self._unit for count in counts.tolist()], dtype=float)
-
-
-def _threshold(test: BallotTest) -> tuple[np.ufunc, Fraction]:
-    """The one comparison a test makes, and what it compares with."""
-    if test.more_than is not UNSET:
-        return np.greater, exact(test.more_than)
-    if test.at_least is not UNSET:
-        return np.greater_equal, exact(test.at_least)
-    if test.at_most is not UNSET:
-        return np.less_equal, exact(test.at_most)
-    return np.less, exact(test.less_than)
-
-
-def tally(question: Question, ballot: Ballot, people: Sequence[Person], beliefs: Floats) -> Tallies:
-    """The ballots that k lists of beliefs would give, shape (k, people); see `Electorate`."""
-    return Electorate(question, ballot, people).tally(beliefs)

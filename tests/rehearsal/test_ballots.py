@@ -1,3 +1,4 @@
+from collections.abc import Sequence
 from fractions import Fraction
 
 import numpy as np
@@ -6,12 +7,17 @@ from hypothesis import given
 from hypothesis import strategies as st
 from meetings import electors
 
-from deliberate.rehearsal.ballots import Electorate, tally
+from deliberate.rehearsal.ballots import Electorate, Tallies
 from deliberate.scenario.values import Ballot, BallotTest, Person, Question
 
 MOTION = Question("q", "Shall it be done?", 0, 1, pass_mark=0.5)
 MAJORITY = Ballot()
 TWO_THIRDS = Ballot(tests=(BallotTest("for", at_least="2/3"),))
+
+
+def tally(question: Question, ballot: Ballot, people: Sequence[Person], beliefs: np.ndarray) -> Tallies:
+    """The ballots that k lists of beliefs, shape (k, people), would give."""
+    return Electorate(question, ballot, people).tally(beliefs)
 
 
 def outcome(ballot: Ballot, in_favour: int, against: int, *, abstain: int = 0, absent: int = 0) -> bool:

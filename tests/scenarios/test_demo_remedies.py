@@ -10,7 +10,7 @@ from demo import DEMOS, NOW, load
 from plain_rounds import plain_rounds
 
 from deliberate.files import decode, encode
-from deliberate.rehearsal.ballots import tally
+from deliberate.rehearsal.ballots import Electorate
 from deliberate.rehearsal.remedies import AIMS, Remedy, aims_here, remedies
 from deliberate.rehearsal.remedies.figures import figures, sketch_for
 from deliberate.rehearsal.results import (
@@ -120,7 +120,7 @@ def test_trying_it_gives_what_was_said(slug):
                 f"mean stays at {number(mean, question)}" in remedy.outcome
             )
             if question.pass_mark is not None:
-                vote = next(iter(tally(question, saved.ballot, tried.people, played[None, :])))
+                (vote,) = Electorate(question, saved.ballot, tried.people).tally(played[None, :])
                 assert remedy.after.vote_at_end == vote
             if aim in ("common-view", "less-spread"):
                 shown = number(spread, question)

@@ -9,11 +9,10 @@ from dataclasses import dataclass
 import numpy as np
 from msgspec.structs import replace
 
-from deliberate.rehearsal.ballots import exact
 from deliberate.rehearsal.findings.sketch import Indices, Mask, Sketch, is_are, round_name, since
 from deliberate.rehearsal.results import Finding, Tally
 from deliberate.rehearsal.words import amount, count, sentence
-from deliberate.scenario.rules import rule_in_words
+from deliberate.scenario.rules import exact, rule_in_words
 
 
 def vote(sketch: Sketch) -> Iterator[Finding]:
