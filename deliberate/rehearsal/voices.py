@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from deliberate.scenario.settings import lets_through
 from deliberate.scenario.values import Arrow, Stage, Variant
 
 Indices = NDArray[np.intp]
@@ -64,25 +65,10 @@ def _as_arrays(arrows: Sequence[Arrow], place: Mapping[str, int]) -> tuple[Indic
     return listener, source, np.array([arrow.weight for arrow in arrows], dtype=np.float64)
 
 
-def _that_count(variant: Variant, stage: Stage) -> Iterable[Arrow]:
-    """The arrows between present people that the stage's setting lets through."""
+def _that_count(variant: Variant, stage: Stage) -> Iterator[Arrow]:
+    """The arrows between present people that the stage lets through."""
     present = {person.id for person in variant.people if person.present}
-    arrows = [arrow for arrow in variant.arrows if arrow.listener in present and arrow.source in present]
-    match stage.setting:
-        case "plenary":
-            return arrows
-        case "silence":
-            return []
-        case "panel":
-            speakers = set(stage.speakers)
-            return [arrow for arrow in arrows if arrow.source in speakers]
-        case "pairs":
-            pairs = {frozenset(pair) for pair in stage.pairs}
-            return [arrow for arrow in arrows if frozenset((arrow.listener, arrow.source)) in pairs]
-        case "tables":
-            table = {person: number for number, people in enumerate(stage.tables) for person in people}
-            return [
-                arrow
-                for arrow in arrows
-                if arrow.listener in table and table.get(arrow.source) == table[arrow.listener]
-            ]
+    counts = lets_through(stage)
+    for arrow in variant.arrows:
+        if arrow.listener in present and arrow.source in present and counts(arrow.listener, arrow.source):
+            yield arrow

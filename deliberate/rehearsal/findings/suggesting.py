@@ -11,6 +11,7 @@ from deliberate.rehearsal.findings.sketch import Indices, Sketch, sketch_of
 from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.results import Introduce, Introductions, JointRound, KeepOwnView, Suggestion
 from deliberate.rehearsal.suggestions import change_in_place
+from deliberate.scenario.settings import lets_through
 from deliberate.scenario.values import Ballot
 
 INTRODUCED_POINTS = 10.0
@@ -84,15 +85,5 @@ def _by_weight(sketch: Sketch, people: Indices) -> Indices:
 def _would_count(sketch: Sketch, listener: int, source: int) -> bool:
     """Whether an arrow between the two would be heard in a stage that goes on for ever."""
     plan = sketch.variant.plan
-    hears, heard = sketch.ids([listener, source])
-    for stage in plan.stages if plan.afterwards == "repeat" else plan.stages[-1:]:
-        match stage.setting:
-            case "plenary":
-                return True
-            case "tables" if any(hears in table and heard in table for table in stage.tables):
-                return True
-            case "panel" if heard in stage.speakers:
-                return True
-            case "pairs" if (hears, heard) in stage.pairs or (heard, hears) in stage.pairs:
-                return True
-    return False
+    lasting = plan.stages if plan.afterwards == "repeat" else plan.stages[-1:]
+    return any(lets_through(stage)(*sketch.ids([listener, source])) for stage in lasting)
