@@ -1,4 +1,4 @@
-"""The command line: the window, `rehearse` and `check`.
+"""The command line: the window, and what can be asked of a file without one.
 
 Each command imports what it needs when it runs, so that none pays for another and only the window loads Qt.
 Exit status 0 when done, 2 for bad usage or bad input, 1 for anything else.
@@ -12,6 +12,7 @@ import os
 import sys
 import traceback
 from collections.abc import Callable, Sequence
+from typing import Any
 
 from deliberate.errors import DeliberateError
 
@@ -20,14 +21,16 @@ MOST_ROUNDS = 1_000_000
 MOST_DRAWS = 1_000_000
 LARGEST_SEED = 2**63 - 1
 
-WINDOW_HELP = """\
-usage: deliberate [FILE]
+USAGE = """\
+deliberate [FILE]
        deliberate rehearse FILE [options]
        deliberate doubt FILE [options]
        deliberate leverage FILE [options]
        deliberate remedies FILE [options]
        deliberate tables FILE --tables N [options]
-       deliberate check FILE
+       deliberate check FILE"""
+WINDOW_HELP = f"""\
+usage: {USAGE}
 
 Rehearse a contested meeting: who listens to whom, where talking leads, and why
 it stalls. FILE is a scenario, `something.deliberate.json`.
@@ -101,11 +104,9 @@ def _rehearse(options: argparse.Namespace) -> None:
     scenario = read(options.file)
     rehearsal = rehearse(scenario, options.variant, options.question, options.rounds, options.tolerance)
     if options.json:
-        from msgspec import json
-
         from deliberate.rehearsal.report import to_json
 
-        _print(json.encode(to_json(rehearsal)) + b"\n")
+        _print_json(to_json(rehearsal))
     else:
         from deliberate.rehearsal.findings import findings
         from deliberate.rehearsal.summary import summary
@@ -130,9 +131,7 @@ def _doubt(options: argparse.Namespace) -> None:
         concentration=Concentration(**{basis: value for basis, value in given.items() if value is not None}),
     )
     if options.json:
-        from msgspec import json
-
-        _print(json.encode(doubt_to_json(found)) + b"\n")
+        _print_json(doubt_to_json(found))
     else:
         _print(doubt_summary(scenario, found))
 
@@ -145,9 +144,7 @@ def _leverage(options: argparse.Namespace) -> None:
     scenario = read(options.file)
     found = leverage(scenario, options.variant, options.question)
     if options.json:
-        from msgspec import json
-
-        _print(json.encode(leverage_to_json(scenario, found)) + b"\n")
+        _print_json(leverage_to_json(scenario, found))
     else:
         _print(leverage_summary(scenario, found))
 
@@ -163,9 +160,7 @@ def _remedies(options: argparse.Namespace) -> None:
     else:
         found = {options.aim: remedies(scenario, *which, options.aim)}
     if options.json:
-        from msgspec import json
-
-        _print(json.encode(remedies_to_json(scenario, *which, found)) + b"\n")
+        _print_json(remedies_to_json(scenario, *which, found))
     else:
         _print(remedies_summary(scenario, *which, found))
 
@@ -179,9 +174,7 @@ def _tables(options: argparse.Namespace) -> None:
     scenario = read(options.file)
     found = seat(scenario, options.variant, options.question, wish_of(options), seed=options.seed)
     if options.json:
-        from msgspec import json
-
-        _print(json.encode(seating_to_json(found)) + b"\n")
+        _print_json(seating_to_json(found))
     else:
         _print(seating_summary(scenario, found))
 
@@ -221,8 +214,8 @@ def _no_qt(error: ImportError) -> str:
 class _Parser(argparse.ArgumentParser):
     """Options in full only, and help that goes the way of all output."""
 
-    def __init__(self, prog: str, description: str, whole_help: str = "") -> None:
-        super().__init__(prog, description=description, allow_abbrev=False)
+    def __init__(self, prog: str, description: str, usage: str | None = None, whole_help: str = "") -> None:
+        super().__init__(prog, usage, description, allow_abbrev=False)
         self._whole_help = whole_help
 
     def format_help(self) -> str:
@@ -233,7 +226,7 @@ class _Parser(argparse.ArgumentParser):
 
 
 def _window_parser() -> argparse.ArgumentParser:
-    parser = _Parser("deliberate", "", WINDOW_HELP)
+    parser = _Parser("deliberate", "", USAGE, WINDOW_HELP)
     parser.add_argument("file", nargs="?", metavar="FILE")
     parser.add_argument("--version", action="store_true")
     return parser
@@ -344,6 +337,12 @@ def _version() -> str:
         return metadata.version("deliberate")
     except metadata.PackageNotFoundError:
         return "(not installed)"
+
+
+def _print_json(data: dict[str, Any]) -> None:
+    from msgspec import json
+
+    _print(json.encode(data) + b"\n")
 
 
 def _print(text: str | bytes) -> None:

@@ -146,7 +146,15 @@ def test_bad_usage_exits_with_2(arguments, capsys):
     assert "Traceback" not in err
 
 
-@pytest.mark.parametrize("arguments", [["-h"], ["--help"], ["rehearse", "-h"], ["check", "--help"], ["--version"]])
+def test_a_misspelt_command_is_answered_with_those_there_are(capsys):
+    assert cli.main(["rehearze", "a"]) == 2
+    assert "usage: deliberate [FILE]\n       deliberate rehearse FILE [options]\n" in capsys.readouterr().err
+
+
+COMMANDS = ("rehearse", "doubt", "leverage", "remedies", "tables", "check")
+
+
+@pytest.mark.parametrize("arguments", [["-h"], ["--help"], ["--version"], *([one, "--help"] for one in COMMANDS)])
 def test_help_and_version(arguments, capsys):
     assert cli.main(arguments) == 0
     out, err = capsys.readouterr()
