@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QWidget
 from deliberate.rehearsal.comparing import course
 from deliberate.rehearsal.words import number
 from deliberate.window.chart.frame import Frame
-from deliberate.window.chart.plot import AXIS_WIDTH, RoundAxis, StillItem
+from deliberate.window.chart.items import RoundAxis, StillItem
 from deliberate.window.comparison.picture import Figure, Line, paint_lines
 from deliberate.window.comparison.run import Comparison
 from deliberate.window.comparison.table import letter
@@ -48,7 +48,6 @@ class ComparisonPlot(pg.PlotWidget):
         for menu in (plot.ctrlMenu, *filter(None, [action.menu() for action in plot.ctrlMenu.actions()])):
             menu.setParent(self, menu.windowFlags())  # never shown; ours, so that they go when the chart goes
         plot.hideButtons()
-        plot.getAxis("left").setWidth(AXIS_WIDTH)
         plot.getAxis("left").setStyle(tickLength=-4)
         self._axis.setStyle(tickLength=-4)
         box = plot.getViewBox()
