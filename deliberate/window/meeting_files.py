@@ -160,7 +160,7 @@ class MeetingFiles(QObject):
     def ask_save_as(self) -> bool:
         """Ask for a file and save there. True when it is on disk."""
         self._finish_typing()
-        proposed = self._session.path or self._folder() / (_file_name(self._session.meeting.title) + SUFFIX)
+        proposed = self._session.path or self._folder() / (_file_name(self._session.scenario.title) + SUFFIX)
         chosen, _ = QFileDialog.getSaveFileName(self._window, "Save the meeting as", str(proposed), FILTER)
         return bool(chosen) and self.save_as(Path(chosen))
 
