@@ -9,12 +9,9 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal
 
-import numpy as np
-from numpy.typing import NDArray
-
+from deliberate.dynamics.network import Floats
 from deliberate.scenario.values import AgreementTest
 
-Floats = NDArray[np.float64]
 Verdict = Literal["agreement", "disagreement", "neither"]
 
 

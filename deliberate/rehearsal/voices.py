@@ -6,12 +6,10 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import NDArray
 
+from deliberate.dynamics.network import Floats, Indices
 from deliberate.scenario.settings import lets_through
 from deliberate.scenario.values import Arrow, Stage, Variant
-
-Indices = NDArray[np.intp]
 
 
 @dataclass(frozen=True, eq=False)
@@ -22,11 +20,11 @@ class Voices:
     have one entry per arrow that counts in the stage, in the order of the variant's arrows.
     """
 
-    own: NDArray[np.float64]
-    firm: NDArray[np.float64]
-    listener: NDArray[np.intp]
-    source: NDArray[np.intp]
-    share: NDArray[np.float64]
+    own: Floats
+    firm: Floats
+    listener: Indices
+    source: Indices
+    share: Floats
 
 
 def voices(variant: Variant, stage: int) -> Voices:
@@ -58,7 +56,7 @@ def voices(variant: Variant, stage: int) -> Voices:
     return Voices(open_part * own / total, firm, listener, source, (open_part / total)[listener] * weight)
 
 
-def _as_arrays(arrows: Sequence[Arrow], place: Mapping[str, int]) -> tuple[Indices, Indices, NDArray[np.float64]]:
+def _as_arrays(arrows: Sequence[Arrow], place: Mapping[str, int]) -> tuple[Indices, Indices, Floats]:
     """Listeners and sources as indices, and weights."""
     listener = np.array([place[arrow.listener] for arrow in arrows], dtype=np.intp)
     source = np.array([place[arrow.source] for arrow in arrows], dtype=np.intp)

@@ -11,10 +11,10 @@ from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
-from numpy.typing import NDArray
 
 from deliberate.dynamics.large import large_structure, large_turn
 from deliberate.dynamics.longrun import final_map
+from deliberate.dynamics.network import Indices, Mask
 from deliberate.dynamics.process import course
 from deliberate.dynamics.shares import Shares, shares
 from deliberate.dynamics.structure import full_structure, structure
@@ -26,9 +26,6 @@ from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.rehearse import rounds_to_agree_among
 from deliberate.rehearsal.results import Floats, Rehearsal
 from deliberate.scenario.values import Question, Scenario, Variant
-
-Indices = NDArray[np.intp]
-Mask = NDArray[np.bool_]
 
 FULL_PEOPLE = 400  # up to here a full map from starts to the plan's end costs less than an edit may
 A_MILLION = 1_000_000
