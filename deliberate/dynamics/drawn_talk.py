@@ -6,7 +6,6 @@ hearing range), so closed groups, periods and who is outside are worked out once
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -18,6 +17,7 @@ from deliberate.dynamics.draws import Rows, adder
 from deliberate.dynamics.elimination import absorption, stationary
 from deliberate.dynamics.network import Floats, Indices, Mask, Network
 from deliberate.dynamics.process import Block, Process, course
+from deliberate.dynamics.progress import Stopped, never
 from deliberate.dynamics.rounds import RANGE_SLACK, block_at
 from deliberate.dynamics.shares import TINY, Unheard
 from deliberate.dynamics.structure import ClosedSet, full_structure
@@ -32,13 +32,8 @@ TURNS_TO_REST = 400
 TURNS_BETWEEN_LOOKS = 8
 
 
-class Stopped(Exception):  # noqa: N818 - somebody asked for it
+class BrokenOff(Exception):  # noqa: N818 - somebody asked for it
     """The work was stopped before its end."""
-
-
-def never() -> bool:
-    """Nobody wants to stop."""
-    return False
 
 
 @dataclass(frozen=True, eq=False)
@@ -107,7 +102,7 @@ class DrawnTalk:
     """The talk of one process with drawn rows and starts (n, d).
 
     hearing_range, scale_width: as for `rounds.play`. stopped: asked every few rounds; once it is true, what is being
-    worked out ends with `Stopped`.
+    worked out ends with `BrokenOff`.
     """
 
     def __init__(
@@ -117,7 +112,7 @@ class DrawnTalk:
         starts: Floats,
         hearing_range: float | None = None,
         scale_width: float = 1.0,
-        stopped: Callable[[], bool] = never,
+        stopped: Stopped = never,
     ) -> None:
         self.process = process
         self.starts = starts
@@ -147,7 +142,7 @@ class DrawnTalk:
 
     def _look_up(self) -> None:
         if self._stopped():
-            raise Stopped
+            raise BrokenOff
 
     def _move(self, shares: DrawnShares, beliefs: Floats, draws: Indices | slice = slice(None)) -> Floats:
         mixed = shares.hear(beliefs, self._reach)

@@ -7,11 +7,11 @@ are. Vote odds are counted over whole draws: final views share their inputs, so 
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 
 import numpy as np
 
-from deliberate.dynamics.drawn_talk import never
+from deliberate.dynamics.progress import Progress, Stopped, never, no_report
 from deliberate.errors import DeliberateError
 from deliberate.rehearsal.doubt_draws import Chunk, GuessedMeeting
 from deliberate.rehearsal.doubt_findings import Check, by_structure, check_of
@@ -42,10 +42,6 @@ MOST_NUMBERS = 100_000_000  # beliefs kept, rounds times people times draws
 IN_DOUBT: tuple[Call, ...] = ("too-close", "leans")
 
 
-def no_report(part: float) -> None:
-    """Nobody wants to know how far it is."""
-
-
 def doubt(
     scenario: Scenario,
     variant: str | None = None,
@@ -54,8 +50,8 @@ def doubt(
     draws: int = DRAWS,
     seed: int = SEED,
     concentration: Concentration | None = None,
-    progress: Callable[[float], object] = no_report,
-    stopped: Callable[[], bool] = never,
+    progress: Progress = no_report,
+    stopped: Stopped = never,
 ) -> Doubt | None:
     """Draw the guesses of a meeting `draws` times and play each draw to the plan's end and in the long run.
 

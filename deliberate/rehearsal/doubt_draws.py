@@ -2,20 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from deliberate.dynamics.drawn_talk import ELIMINATED_PEOPLE, DrawnEnd, DrawnFate, DrawnTalk, Stopped
+from deliberate.dynamics.drawn_talk import ELIMINATED_PEOPLE, BrokenOff, DrawnEnd, DrawnFate, DrawnTalk
 from deliberate.dynamics.draws import Rows, RowSource, draw_starts
+from deliberate.dynamics.network import Mask
+from deliberate.dynamics.progress import Stopped
 from deliberate.rehearsal.ballots import Tallies
 from deliberate.rehearsal.doubt_results import Concentration
 from deliberate.rehearsal.findings.sketch import Sketch
 from deliberate.rehearsal.results import Floats
-
-Mask = NDArray[np.bool_]
 
 # Numbers worked on at a time: small enough to stay near the processor, and to look up often whether to stop.
 MATRIX_NUMBERS, LARGEST_MATRIX_NUMBERS, ARROW_NUMBERS = 100_000, 500_000, 500_000
@@ -70,7 +70,7 @@ class GuessedMeeting:
         by_elimination = question.hearing_range is None and len(people) <= ELIMINATED_PEOPLE
         self.fate = DrawnFate(self.process, question.low, question.width) if by_elimination else None
 
-    def chunks(self, draws: int, seed: int, stopped: Callable[[], bool]) -> Iterator[Chunk]:
+    def chunks(self, draws: int, seed: int, stopped: Stopped) -> Iterator[Chunk]:
         """All draws, some at a time; fewer when `stopped` becomes true."""
         for_starts, for_rows = map(np.random.default_rng, np.random.SeedSequence(seed).spawn(2))
         starts = draw_starts(self.low, self.high, draws, for_starts)
@@ -80,7 +80,7 @@ class GuessedMeeting:
             rows = self.rows.draw(part.shape[1], for_rows)
             try:
                 yield self._chunk(rows, part, stopped)
-            except Stopped:
+            except BrokenOff:
                 return
 
     def _chunk_size(self) -> int:
@@ -91,7 +91,7 @@ class GuessedMeeting:
             size = min(size, max(MATRIX_NUMBERS // matrix, min(SMALLEST_CHUNK, LARGEST_MATRIX_NUMBERS // matrix)))
         return min(size, LARGEST_CHUNK)
 
-    def _chunk(self, rows: Rows, starts: Floats, stopped: Callable[[], bool]) -> Chunk:
+    def _chunk(self, rows: Rows, starts: Floats, stopped: Stopped) -> Chunk:
         talk = self.talk(rows, starts, stopped)
         played = talk.play(self.sketch.plan_rounds)
         end = None if self.fate is None else self.fate.of(talk)
@@ -100,7 +100,7 @@ class GuessedMeeting:
         )
         return Chunk(rows, starts, played, long_run, settles, self.tallies(played), end)
 
-    def talk(self, rows: Rows, starts: Floats, stopped: Callable[[], bool]) -> DrawnTalk:
+    def talk(self, rows: Rows, starts: Floats, stopped: Stopped) -> DrawnTalk:
         """The talk with these rows and starts."""
         question = self.sketch.question
         return DrawnTalk(self.process, rows, starts, question.hearing_range, question.width, stopped)

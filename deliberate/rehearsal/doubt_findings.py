@@ -11,9 +11,10 @@ from collections.abc import Callable
 
 import numpy as np
 
-from deliberate.dynamics.drawn_talk import never
+from deliberate.dynamics.network import Mask
+from deliberate.dynamics.progress import never
 from deliberate.rehearsal import agreement
-from deliberate.rehearsal.doubt_draws import Chunk, GuessedMeeting, Mask
+from deliberate.rehearsal.doubt_draws import Chunk, GuessedMeeting
 from deliberate.rehearsal.findings.sketch import Sketch
 from deliberate.rehearsal.findings.voices import HALF, LARGE_OF_TWO, MORE_THAN_EQUAL
 from deliberate.rehearsal.results import Finding, Floats

@@ -14,8 +14,8 @@ import pytest
 from bench_rehearsal import committee
 from msgspec.structs import replace
 
-from deliberate.dynamics.drawn_talk import never
 from deliberate.dynamics.draws import RowSource, draw_starts
+from deliberate.dynamics.progress import never
 from deliberate.rehearsal.assemble import assemble
 from deliberate.rehearsal.doubt import doubt
 from deliberate.rehearsal.doubt_draws import GuessedMeeting

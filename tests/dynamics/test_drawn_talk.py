@@ -6,7 +6,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from talk import line, network_of, plenary, ring
 
-from deliberate.dynamics.drawn_talk import DrawnFate, DrawnTalk, Stopped
+from deliberate.dynamics.drawn_talk import BrokenOff, DrawnFate, DrawnTalk
 from deliberate.dynamics.draws import RowSource, draw_starts
 from deliberate.dynamics.longrun import long_run
 from deliberate.dynamics.process import Block, Process
@@ -148,10 +148,10 @@ def test_stopping_ends_playing_and_stepping():
         calls.append(1)
         return len(calls) > 3
 
-    with pytest.raises(Stopped):
+    with pytest.raises(BrokenOff):
         DrawnTalk(process, rows, starts, stopped=after_three).play(100)
     assert len(calls) == 4
-    with pytest.raises(Stopped):
+    with pytest.raises(BrokenOff):
         DrawnTalk(process, rows, starts, stopped=lambda: True).step_to_rest(starts)
 
 
