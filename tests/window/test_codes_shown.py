@@ -7,6 +7,7 @@ from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
+from circles import CIRCLES
 from msgspec.structs import replace
 from PySide6.QtCore import QSettings, Qt
 from PySide6.QtGui import QGuiApplication
@@ -270,6 +271,50 @@ def test_revert_takes_what_is_on_disk(qtbot: QtBot, window: MainWindow) -> None:
     ready(qtbot, window)
     assert session.meeting == meeting()
     assert not session.modified
+    assert leaks() == []
+
+
+def test_a_name_cannot_be_changed_unseen(qtbot: QtBot, window: MainWindow) -> None:
+    session, before = window.session, window.session.meeting
+    session.show_codes(True)
+    ready(qtbot, window)
+    session.select([session.variant.people[0].id])
+    window.canvas.setFocus()
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F2)
+    qtbot.keyClicks(window.canvas.editors.line, "Zofia")
+    qtbot.keyClick(window.canvas.editors.line, Qt.Key.Key_Return)
+    assert session.meeting is before
+    assert window.statusBar().currentMessage() == "names are hidden while codes are shown: show names to change one"
+    qtbot.keyClick(window.canvas.editors.line, Qt.Key.Key_Escape)
+
+
+def test_codes_stay_on_for_the_next_meeting(qtbot: QtBot, window: MainWindow) -> None:
+    session = window.session
+    session.show_codes(True)
+    session.open(CIRCLES, None)
+    ready(qtbot, window)
+    assert [person.name for person in session.variant.people] == ["P1", "P2", "P3", "P4", "P5", "P6"]
+    assert not session.modified
+    assert not any("Amina" in text for _, text in all_words())
+
+
+def test_codes_are_off_at_every_start(qtbot: QtBot, look: Look, window: MainWindow, tmp_path: Path) -> None:
+    window.session.show_codes(True)
+    settings = QSettings(str(tmp_path / "window.ini"), QSettings.Format.IniFormat)
+    again = MainWindow(Session(CIRCLES), look, settings)
+    assert not again.session.codes_shown
+    again.close()
+    again.deleteLater()
+
+
+def test_an_editor_that_shows_a_name_closes(qtbot: QtBot, window: MainWindow) -> None:
+    window.session.select([window.session.variant.people[0].id])
+    window.canvas.setFocus()
+    qtbot.keyClick(window.canvas, Qt.Key.Key_F2)
+    assert window.canvas.editors.line.text() == NAMES[0]
+    qtbot.keyClick(window.canvas.editors.line, Qt.Key.Key_F7)
+    assert window.session.codes_shown
+    assert not window.canvas.editors.open
     assert leaks() == []
 
 

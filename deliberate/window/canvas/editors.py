@@ -236,6 +236,8 @@ class Editors:
         self.place, self.open_for_name, self._where = None, False, None
         focused = self.line.hasFocus()
         self.line.hide()
+        self.line.clear()
+        self.line.setAccessibleName("")
         if focused:
             self._canvas.setFocus(Qt.FocusReason.OtherFocusReason)
         self._canvas.refresh_hint()

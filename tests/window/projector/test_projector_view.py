@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Iterator
+from pathlib import Path
 
 import pytest
 from circles import CIRCLES, SWAP
@@ -14,6 +16,10 @@ from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
+from deliberate import files
+from deliberate.files.resources import demo_scenarios
+from deliberate.rehearsal.findings import findings
+from deliberate.rehearsal.rehearse import rehearse
 from deliberate.rehearsal.results import Finding
 from deliberate.scenario.values import Scenario
 from deliberate.window.main_window import MainWindow
@@ -243,6 +249,16 @@ def test_nobody_is_ranked_on_the_wall() -> None:
     kinds = ("carries", "fixed-view", "knife-edge", "outside", "vote")
     assert for_the_room([finding(kind) for kind in kinds]).kind == "vote"
     assert for_the_room([finding("carries")]) is None
+
+
+@pytest.mark.parametrize("path", demo_scenarios(), ids=lambda path: path.name.split(".")[0])
+def test_the_sentence_for_the_room_names_nobody(path: Path) -> None:
+    scenario = files.read(path)
+    for variant in scenario.variants:
+        finding = for_the_room(findings(scenario, rehearse(scenario, variant.name)))
+        assert finding is not None
+        for one in variant.people:
+            assert not re.search(rf"\b{re.escape(one.shown_name)}\b", finding.says)
 
 
 def test_a_meeting_without_people_says_so(qtbot: QtBot, open_window, look: Look) -> None:
