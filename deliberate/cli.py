@@ -187,6 +187,8 @@ def _check(options: argparse.Namespace) -> None:
 
 
 def _window(path: str | None) -> int:
+    # A committee's matrices are small: more threads would only wait for each other, and for other programs.
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     try:
         from deliberate.window.app import NoScreenError, run
     except ImportError as error:
