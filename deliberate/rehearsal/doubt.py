@@ -235,11 +235,10 @@ def _checks(meeting: GuessedMeeting, told: Sequence[Finding]) -> list[Check | No
 
 
 def _mean(sketch: Sketch, beliefs: Floats) -> Floats:
-    """Mean of (..., n, d) beliefs over those present; of all where nobody is."""
-    counted = sketch.present if sketch.present.any() else ~sketch.present
-    if not len(counted):
+    """Mean of (..., n, d) beliefs over those present; 0 where nobody is."""
+    if not sketch.present.any():
         return np.zeros((*beliefs.shape[:-2], beliefs.shape[-1]))
-    return beliefs[..., counted, :].mean(axis=-2)
+    return beliefs[..., sketch.present, :].mean(axis=-2)
 
 
 def _spread(sketch: Sketch, beliefs: Floats) -> Floats:

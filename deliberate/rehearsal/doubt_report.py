@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 
 from deliberate.rehearsal.choosing import pick_question, pick_variant
-from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Doubt, FindingOdds, Odds
+from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Doubt, FindingOdds, Odds, VoteDoubt
 from deliberate.rehearsal.doubt_words import holds, in_draws
 from deliberate.rehearsal.page import CAUTION, aligned, heading, labelled, shown_rounds, wrap, wrapped
 from deliberate.rehearsal.results import Floats
@@ -25,13 +25,14 @@ LOW, MIDDLE, HIGH = 0, 2, 4  # in LEVELS
 def doubt_summary(scenario: Scenario, found: Doubt) -> str:
     """The doubt for people: ranges and odds, what holds, what to ask about again. Made for 80 columns."""
     variant, question = pick_variant(scenario, found.variant), pick_question(scenario, found.question)
+    present = sum(person.present for person in variant.people)
     parts = [
         heading(scenario, variant, question),
-        _table(found, variant, question),
-        _facts(found, question),
+        _table(found, variant, question) if present else "",
+        _facts(found, question, present),
         _people(found, variant, question),
         _standing_out(found),
-        _asking(found),
+        _asking(found) if present else "",
         wrapped(f"Note: {note}." for note in found.notes),
         CAUTION,
     ]
@@ -79,16 +80,14 @@ def _of_100(odds: Odds) -> str:
     return "over 99 of 100" if hundredths == 100 and odds.share < 1 else f"{hundredths} of 100"
 
 
-def _facts(found: Doubt, question: Question) -> str:
+def _facts(found: Doubt, question: Question, present: int) -> str:
     within, draws = with_unit(found.tolerance, question), found.draws
-    return labelled(
-        [
-            ("View" if found.vote is None else "Vote", found.says),
-            ("Agree", f"within {within} of each other at the plan's end in {in_draws(found.agrees, draws)}"),
-            ("Settles", f"in {in_draws(found.settles, draws)}"),
-            ("Drawn", _drawn(found.concentration)),
-        ]
-    )
+    facts = [("View" if found.vote is None else "Vote", found.says)]
+    if present > 1:  # one person alone has nobody to agree with
+        facts.append(("Agree", f"within {within} of each other at the plan's end in {in_draws(found.agrees, draws)}"))
+    if present:
+        facts.append(("Settles", f"in {in_draws(found.settles, draws)}"))
+    return labelled([*facts, ("Drawn", _drawn(found.concentration))])
 
 
 def _drawn(concentration: Concentration) -> str:
@@ -164,7 +163,7 @@ def doubt_to_json(found: Doubt) -> dict[str, Any]:
         "agrees": _odds(found.agrees),
         "tolerance": found.tolerance,
         "ballot": None if found.vote is None else list(_ballots(found)),
-        "ballot_in_long_run": None if found.vote is None else _odds(found.vote.passes_in_long_run),
+        "ballot_in_long_run": _ballot_in_long_run(found.vote),
         "findings": [_finding(odds) for odds in found.findings],
         "hangs_about": found.hangs_about,
         "hangs_on": [asdict(guess) for guess in found.hangs_on],
@@ -181,6 +180,13 @@ def _ballots(found: Doubt) -> Iterator[dict[str, Any]]:
             "against": found.vote.against[:, at].tolist(),
             "quorum_met": found.vote.quorum_met,
         }
+
+
+def _ballot_in_long_run(vote: VoteDoubt | None) -> dict[str, Any] | None:
+    """None without a vote, and where views swing."""
+    if vote is None or vote.passes_in_long_run is None:
+        return None
+    return {"passes": _odds(vote.passes_in_long_run), "quorum_met": vote.quorum_met}
 
 
 def _odds(odds: Odds | None) -> dict[str, float] | None:

@@ -65,7 +65,7 @@ class Lever:
 class Leverage:
     """What a result hangs on, the largest first by what it moves at the plan's end.
 
-    result_at_end, result_in_long_run: on the question's scale; 0 where nobody is present. step: that of the starts.
+    step: that of the starts. result_at_end, result_in_long_run: on the question's scale; 0 where nobody is present.
     arrows_at_end, arrows_in_long_run: (arrows,) what ten points more for each arrow of the variant would move, the
     listener's others making room in proportion, at the rate of the first; None, or NaN for one arrow, where there is
     no such rate.

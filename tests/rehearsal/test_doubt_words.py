@@ -16,6 +16,7 @@ from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Odds, call
 from deliberate.rehearsal.doubt_words import in_draws, says_vote
 from deliberate.rehearsal.page import CAUTION
 from deliberate.rehearsal.results import Kind
+from deliberate.scenario import edits
 from deliberate.scenario.values import Question
 
 VOTE = Question("q", "Adopt the plan?", 0, 100, pass_mark=50)
@@ -168,6 +169,11 @@ def test_json_of_the_harbour():
         "share": found.vote.passes[12].share,
         "error": found.vote.passes[12].error,
     }
+    in_long_run = found.vote.passes_in_long_run
+    assert data["ballot_in_long_run"] == {
+        "passes": {"share": in_long_run.share, "error": in_long_run.error},
+        "quorum_met": True,
+    }
     assert all(list(one) == ["kind", "says", "holds", "by_structure"] for one in data["findings"])
     assert all(list(one) == ["kind", "person", "share", "error", "says"] for one in data["hangs_on"])
     assert {one["kind"] for one in data["findings"]} <= set(Kind.__args__)
@@ -177,6 +183,17 @@ def test_a_question_without_a_vote_has_no_ballot():
     data = doubt_to_json(doubt(HARBOUR, question="days", draws=20))
     assert data["ballot"] is None
     assert data["ballot_in_long_run"] is None
+
+
+@pytest.mark.parametrize(("present", "told"), [(0, []), (1, ["Settles"]), (2, ["Agree", "Settles"])])
+def test_nothing_is_said_of_views_where_nobody_is_there_to_hold_them(present, told):
+    absent = [person.id for person in HARBOUR.variants[0].people[present:]]
+    scenario = edits.set_presence(HARBOUR, absent, False, variant=HARBOUR.variants[0].name)
+    page = doubt_summary(scenario, doubt(scenario, draws=20))
+    labels = [line.split()[0] for line in page.splitlines() if line[:1].isupper()]
+    assert [label for label in labels if label in ("Agree", "Settles")] == told
+    assert ("8 of 10 draws lie within" in page) == (present > 0)
+    assert ("explains a telling part" in page or "Worth asking" in page) == (present > 0)
 
 
 @settings(max_examples=60)
