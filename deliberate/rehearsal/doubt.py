@@ -212,8 +212,9 @@ class _Counted:
             notes.append(f"stopped after {amount(draws)} of {amount(wanted)} draws")
         sure = int(((meeting.high == meeting.low) & sketch.present).sum())
         if sure:
-            people = in_words(sure, "present person has", "present people have")
-            notes.append(f"{people} no margin, so those starts are taken as known")
+            one = "present person has no margin, so that start is"
+            several = "present people have no margin, so those starts are"
+            notes.append(f"{in_words(sure, one, several)} taken as known")
         moving = Odds.of(int((~self._settles[:draws]).sum()), draws)
         if meeting.fate is None:
             why = "a hearing range" if sketch.question.hearing_range is not None else "the size of the group"

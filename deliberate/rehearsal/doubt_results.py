@@ -130,10 +130,10 @@ class Doubt:
     """Everything drawn: `draws` times, from `seed`, rows with `concentration`.
 
     mean is the mean view of those present (0 where nobody is); spread, and what is said about it, is that of the
-    people who take part in the talk. settles: there is a limit (no swing). agrees: the spread is within `tolerance` at
-    the plan's end. The long run is the average over a swing where there is one. hangs_on: at most three guesses, the
-    weightiest first, about the vote or about the mean view of those present at the plan's end (`hangs_about`). says:
-    the vote, or the mean view where there is no vote.
+    people who take part in the talk. settles: there is a limit (no swing). agrees: the spread is within `tolerance`
+    at the plan's end. The long run is the average over a swing where there is one. hangs_on: at most three guesses,
+    the weightiest first, about the vote or about the mean view of those present at the plan's end (`hangs_about`).
+    says: the vote, or the mean view where there is no vote.
     """
 
     variant: str
