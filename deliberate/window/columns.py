@@ -6,7 +6,8 @@ from PySide6.QtCore import QByteArray, Qt
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QSplitter, QWidget
 
-LEFT, RIGHT = (236, 290), (296, 370)  # least and most pixels
+LEFT, RIGHT = (236, 290), (296, 370)  # least and most pixels, where a line of text is as high as usual
+USUAL_LINE = 14  # pixels
 LEFT_SHARE, RIGHT_SHARE = 0.227, 0.29
 
 
@@ -34,9 +35,9 @@ class Columns(QSplitter):
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         if not self._chosen:
-            width = self.width()
-            left = round(min(max(width * LEFT_SHARE, LEFT[0]), LEFT[1]))
-            right = round(min(max(width * RIGHT_SHARE, RIGHT[0]), RIGHT[1]))
+            width, larger = self.width(), max(self.fontMetrics().height() / USUAL_LINE, 1.0)
+            left = round(min(max(width * LEFT_SHARE, LEFT[0] * larger), LEFT[1] * larger))
+            right = round(min(max(width * RIGHT_SHARE, RIGHT[0] * larger), RIGHT[1] * larger))
             self.setSizes([left, width - left - right, right])
 
     def _keep(self) -> None:

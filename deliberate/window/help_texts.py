@@ -26,7 +26,8 @@ On the picture
   Drag from a ring      an arrow to a person, or to a new one on free ground
   0 to 9                starting belief of the selected person, points of the selected arrow
   Wheel                 zoom; on a selected arrow: its points
-  Tab, Shift+Tab        next, previous person and arrow
+  Tab, Shift+Tab        next, previous person
+  W, Shift+W            next, previous arrow of the focused person: whom she listens to, then who listens to her
   A                     draw an arrow from the focused person: Tab to the source, Return
   R                     turn the selected arrow round
   F2, Delete            rename, remove

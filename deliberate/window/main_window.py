@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QByteArray, QEvent, QSettings, QSize, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent, QResizeEvent, QScreen
+from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QPaintEvent, QScreen
 from PySide6.QtWidgets import (
     QApplication,
     QComboBox,
@@ -13,7 +13,6 @@ from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
     QMainWindow,
-    QSizePolicy,
     QSplitter,
     QToolTip,
     QVBoxLayout,
@@ -38,7 +37,7 @@ from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.styles import style_sheet
-from deliberate.window.text import elided, explain, plain_label, strong
+from deliberate.window.text import ElidedLabel, strong
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
 from deliberate.window.vote import CAUTION, vote_in_words
@@ -50,9 +49,7 @@ class TopBar(QWidget):
     def __init__(self, session: Session, parent: QWidget) -> None:
         super().__init__(parent)
         self._session = session
-        self.title = plain_label(self)
-        self.title.setWordWrap(False)
-        self.title.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+        self.title = ElidedLabel(self, cut=Qt.TextElideMode.ElideMiddle)  # so that "edited" stays
         self.title.setMinimumWidth(120)
         strong(self.title)
         self.variants = VariantStrip(session, self)
@@ -64,9 +61,7 @@ class TopBar(QWidget):
         self.question.setMinimumContentsLength(18)
         self.question.activated.connect(self._choose)
         self.question_label.setBuddy(self.question)
-        self.only_question = plain_label(self)
-        self.only_question.setWordWrap(False)
-        self.only_question.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
+        self.only_question = ElidedLabel(self, align=Qt.AlignmentFlag.AlignRight)
         row = QHBoxLayout(self)
         row.setContentsMargins(16, 5, 12, 5)
         row.setSpacing(10)
@@ -83,7 +78,6 @@ class TopBar(QWidget):
         """Read title and questions again."""
         scenario = self._session.scenario
         self.title.setText(scenario.title + (" · edited" if self._session.modified else ""))
-        explain(self.title, scenario.title)
         self.question.clear()
         for question in scenario.questions:
             self.question.addItem(question.text, question.id)
@@ -92,18 +86,9 @@ class TopBar(QWidget):
         self.question.setVisible(several)
         self.question_label.setVisible(several)
         self.only_question.setVisible(not several)
-        self._fit_question()
-
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        super().resizeEvent(event)
-        self._fit_question()
-
-    def _fit_question(self) -> None:
-        """A single question stands as text, as much of it as there is room for."""
         text = self._session.question.text
-        self.only_question.setText(elided(text, self.only_question.font(), self.width() * 0.27))
+        self.only_question.setText(text)
         self.only_question.setAccessibleName(f"Question: {text}")
-        explain(self.only_question, text)
 
     def _choose(self, place: int) -> None:
         self._session.show_question(self.question.itemData(place))

@@ -50,11 +50,18 @@ def elided(text: str, font: QFont, width: float) -> str:
 
 
 class ElidedLabel(QWidget):
-    """One line of text, shortened at its end where there is no room; all of it is in the tooltip and spoken."""
+    """One line of text, shortened (`cut` says where) if there is no room; all of it is in the tooltip and spoken."""
 
-    def __init__(self, parent: QWidget, *, muted: bool = False, align: Qt.AlignmentFlag | None = None) -> None:
+    def __init__(
+        self,
+        parent: QWidget,
+        *,
+        muted: bool = False,
+        align: Qt.AlignmentFlag | None = None,
+        cut: Qt.TextElideMode = Qt.TextElideMode.ElideRight,
+    ) -> None:
         super().__init__(parent)
-        self._text = ""
+        self._text, self._cut = "", cut
         self._align = align or Qt.AlignmentFlag.AlignLeft
         self._role = QPalette.ColorRole.PlaceholderText if muted else QPalette.ColorRole.WindowText
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
@@ -81,7 +88,7 @@ class ElidedLabel(QWidget):
         with QPainter(self) as painter:
             painter.setPen(self.palette().color(self._role))
             flags = self._align | Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
-            painter.drawText(self.rect(), flags, elided(self._text, self.font(), self.width()))
+            painter.drawText(self.rect(), flags, self.fontMetrics().elidedText(self._text, self._cut, self.width()))
 
 
 class WrappingButton(QAbstractButton):

@@ -35,6 +35,7 @@ from deliberate.window.canvas.viewport import ZOOM_STEP, Viewport
 from deliberate.window.session import Session
 from deliberate.window.theme import Look
 
+LEAST_LEGEND = 190  # pixels beside the colour scale: in less the scale is left out
 REST_MS = 120  # after the last movement the picture is painted fine
 
 
@@ -263,8 +264,9 @@ class Canvas(QWidget):
         theme, question, picture = self.look.theme, self.session.question, self.picture
         if self.choosing.stage is None:
             room = overlays.scale_width(QFontMetricsF(self.font()), question)
-            overlays.paint_legend(painter, self.width(), picture.legend(), theme, room)
-            if picture.scene.ids and self.width() > 420:
+            with_scale = bool(picture.scene.ids) and self.width() > room + LEAST_LEGEND
+            overlays.paint_legend(painter, self.width(), picture.legend(), theme, room if with_scale else 0.0)
+            if with_scale:
                 overlays.paint_scale(painter, self.width(), question, theme)
         overlays.paint_foot(painter, self.width(), self.height(), self._hint, theme)
         if not picture.scene.ids and not self.editors.open_for_name:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+import numpy as np
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtGui import QKeyEvent, QKeySequence
 
@@ -25,7 +26,8 @@ class Keys:
 
     def __init__(self, canvas: Canvas) -> None:
         self._canvas = canvas
-        self._order: int | None = None  # place of the focus: people first, then arrows
+        self._focus: Hit | None = None
+        self._around: int | None = None  # the person whose arrows are gone through
         self.shows_focus = False
         self.listener: int | None = None  # who listens in an arrow that is being drawn by keyboard
 
@@ -33,10 +35,14 @@ class Keys:
 
     def focus_on(self, hit: Hit | None, *, shown: bool = True) -> None:
         """Put the focus on a person or an arrow; `shown` only where keys are used."""
-        marks = self._canvas.picture.emphasis
-        marks.focus = hit if shown else None
-        people = len(self._canvas.picture.scene.ids)
-        self._order = None if hit is None else hit.index + (people if hit.kind == "arrow" else 0)
+        self._focus = hit
+        self._canvas.picture.emphasis.focus = hit if shown else None
+        if hit is None:
+            self._around = None
+        elif hit.kind == "person":
+            self._around = hit.index
+        elif self._around is None or self._around not in self._ends(hit.index):
+            self._around = self._ends(hit.index)[0]
         if shown:
             tell_focus(self._canvas)
 
@@ -49,57 +55,74 @@ class Keys:
 
     def focused(self) -> Hit | None:
         """The person or arrow that keys act on."""
-        if self._order is None:
-            return None
-        people = len(self._canvas.picture.scene.ids)
-        return Hit("person", self._order) if self._order < people else Hit("arrow", self._order - people)
+        return self._focus
 
     def check_focus(self) -> None:
         """People or arrows may have gone."""
         scene, marks = self._canvas.picture.scene, self._canvas.picture.emphasis
-        total = len(scene.ids) + len(scene.share)
-        if self._order is not None and self._order >= total:
-            self._order, marks.focus = None, None
-        if marks.focus is not None:
-            limit = len(scene.share) if marks.focus.kind == "arrow" else len(scene.ids)
-            marks.focus = marks.focus if marks.focus.index < limit else None
-        if self.listener is not None and self.listener >= len(scene.ids):
+        people, arrows = len(scene.ids), len(scene.share)
+        if self._focus is not None and self._focus.index >= (arrows if self._focus.kind == "arrow" else people):
+            self._focus = marks.focus = None
+        if self._around is not None and self._around >= people:
+            self._around = None
+        if self.listener is not None and self.listener >= people:
             self.listener = None
 
     def tab(self, forward: bool) -> bool:
-        """The next or previous person or arrow; False at either end, where the focus leaves the canvas."""
+        """The next or previous person; False at either end, where the focus leaves the canvas.
+
+        Back from an arrow is the person it was reached from.
+        """
         canvas = self._canvas
-        if canvas.editors.open:
+        people = len(canvas.picture.scene.ids)
+        if canvas.editors.open or people == 0:
             return False
-        scene = canvas.picture.scene
-        total = len(scene.ids) + (len(scene.share) if self.listener is None else 0)
-        if total == 0:
-            return False
-        before = (-1 if forward else total) if self._order is None else self._order
-        order = before + (1 if forward else -1)
+        before = (-1 if forward else people) if self._around is None else self._around
+        on_arrow = self._focus is not None and self._focus.kind == "arrow"
+        place = before if on_arrow and not forward else before + (1 if forward else -1)
         if self.listener is not None:
-            order %= total
-        if not 0 <= order < total:
-            self._order, canvas.picture.emphasis.focus = None, None
+            place %= people
+        if not 0 <= place < people:
+            self._focus = self._around = canvas.picture.emphasis.focus = None
             return False
-        people = len(scene.ids)
-        hit = Hit("person", order) if order < people else Hit("arrow", order - people)
+        self._go_to(Hit("person", place))
+        return True
+
+    def next_arrow(self, forward: bool) -> None:
+        """Through the arrows of the person in focus, the strongest of those she listens to first, then of those who
+        listen to her; then the person again. So a crowd's arrows are a few keys away instead of thousands."""
+        person = self._around
+        if person is None or self.listener is not None:
+            return
+        scene = self._canvas.picture.scene
+        stops = [Hit("person", person)]
+        for ends in (scene.listener, scene.source):
+            hers = np.flatnonzero(ends == person)
+            stops += [Hit("arrow", int(arrow)) for arrow in hers[np.argsort(-scene.strength[hers], kind="stable")]]
+        here = stops.index(self._focus) if self._focus in stops else 0
+        self._go_to(stops[(here + (1 if forward else -1)) % len(stops)])
+
+    def _go_to(self, hit: Hit) -> None:
+        canvas, scene = self._canvas, self._canvas.picture.scene
+        self.shows_focus = True
         if self.listener is None:
             if hit.kind == "person":
-                canvas.session.select([scene.ids[order]])
+                canvas.session.select([scene.ids[hit.index]])
             else:
                 canvas.session.select(arrows=[scene.pair(hit.index)])
-        self.shows_focus = True
         self.focus_on(hit)
         canvas.refresh_hint()
         canvas.update()
-        return True
+
+    def _ends(self, arrow: int) -> tuple[int, int]:
+        scene = self._canvas.picture.scene
+        return int(scene.listener[arrow]), int(scene.source[arrow])
 
     def focus_in(self, reason: Qt.FocusReason) -> None:
         """The canvas gets the focus: by Tab it begins at the first or the last."""
         self.shows_focus = reason in (Qt.FocusReason.TabFocusReason, Qt.FocusReason.BacktabFocusReason)
         if self.shows_focus:
-            self._order = None
+            self._focus = self._around = None
             self.tab(reason == Qt.FocusReason.TabFocusReason)
         self._canvas.update()
 
@@ -248,6 +271,8 @@ class Keys:
                 self.focus_on(None)
             case Key.Key_A | Key.Key_L:
                 self.begin_arrow()
+            case Key.Key_W:
+                self.next_arrow(not event.modifiers() & Modifier.ShiftModifier)
             case Key.Key_R:
                 canvas.turn_round()
             case Key.Key_Plus | Key.Key_Equal:

@@ -19,6 +19,7 @@ Floats = NDArray[np.float64]
 LISTENED = "Arrows point at the person listened to"
 TRAVEL = "Arrows show the way beliefs travel"
 MOVES = "Arrow thickness: what ten points more would move"
+TIMES = "× says how many votes somebody casts"
 UP_OR_DOWN = "Filled heads move the mean up, open heads down"
 EMPTY = "Double-click to add the first person"
 EDGE = 16  # of the picture to what is written on it
@@ -81,17 +82,15 @@ def paint_band(painter: QPainter, area: QRectF, theme: Theme) -> None:
 
 def paint_legend(painter: QPainter, width: float, lines: Iterable[str], theme: Theme, right_room: float) -> None:
     """Which way arrows point and what is not shown, top left."""
-    metrics = QFontMetricsF(painter.font())
-    painter.setPen(QColor(theme.muted))
+    metrics, wrap = QFontMetricsF(painter.font()), Qt.TextFlag.TextWordWrap
     top = float(EDGE - 4)
     for line in lines:
-        text = metrics.elidedText(line, Qt.TextElideMode.ElideRight, max(width - right_room - 3 * EDGE, 60))
-        _ground(
-            painter, QRectF(EDGE - 6, top - 1, metrics.horizontalAdvance(text) + 12, metrics.lineSpacing() + 1), theme
-        )
+        room = QRectF(EDGE, top, max(width - right_room - 3 * EDGE, 60), 1000)
+        area = metrics.boundingRect(room, wrap, line)
+        _ground(painter, area.adjusted(-6, -1, 6, 0), theme)
         painter.setPen(QColor(theme.muted))
-        painter.drawText(QPointF(EDGE, top + metrics.ascent()), text)
-        top += metrics.lineSpacing()
+        painter.drawText(area.adjusted(0, 0, 2, 0), wrap, line)
+        top += area.height()
 
 
 def scale_width(metrics: QFontMetricsF, question: Question) -> float:

@@ -29,6 +29,8 @@ Indices = NDArray[np.intp]
 
 ALONE = 0.88  # radius of a disc without a ring, as a part of the whole
 LEAST_NUMBER_PX = 10.5  # of the disc
+LEAST_TIMES_PX = 9.0  # of the letters that say how many votes
+BESIDE = 0.74  # radii to the right of and below the middle, where votes are marked
 _TEXTS_KEPT = 3000
 
 
@@ -93,6 +95,7 @@ class PeoplePainter:
             self._paint_numbers(painter, points, disc, shade, texts, scene, theme)
         if radius >= 8:
             self._paint_no_vote(painter, scene, points, radius, theme)
+            self._paint_weighted(painter, scene, points, radius, theme)
 
     def _paint_rings(self, painter: QPainter, points: Floats, radius: float, shade: Indices, here: Indices) -> None:
         rings = self._rings
@@ -119,14 +122,13 @@ class PeoplePainter:
 
     def _paint_no_vote(self, painter: QPainter, scene: Scene, points: Floats, radius: float, theme: Theme) -> None:
         """A crossed-out ballot paper at the lower right."""
-        silent = np.flatnonzero(~scene.votes)
-        if len(silent) == 0:
+        if len(scene.silent) == 0:
             return
         painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
         size = min(max(radius * 0.36, 6.0), 17.0)
         pen = QPen(QColor(theme.ink), max(1.0, size * 0.1))
-        for person in silent.tolist():
-            middle = points[person] + radius * 0.74
+        for person in scene.silent.tolist():
+            middle = points[person] + radius * BESIDE
             slip = QRectF(middle[0] - size / 2, middle[1] - size * 0.62, size, size * 1.24)
             painter.setPen(pen)
             painter.setBrush(QColor(theme.canvas))
@@ -135,6 +137,28 @@ class PeoplePainter:
                 slip.bottomLeft() + QPointF(-size * 0.2, size * 0.2),
                 slip.topRight() + QPointF(size * 0.2, -size * 0.2),
             )
+
+    def _paint_weighted(self, painter: QPainter, scene: Scene, points: Floats, radius: float, theme: Theme) -> None:
+        """How many votes somebody casts, at the lower right, where it is not one. In small, two ballot papers."""
+        if not scene.weighted:
+            return
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
+        font = QFont(painter.font())
+        font.setPixelSize(round(min(max(radius * 0.36, LEAST_TIMES_PX), 14.0)))
+        painter.setFont(font)
+        metrics = QFontMetricsF(font)
+        height = metrics.height() if radius >= LEAST_RING_PX else 8.0
+        for person, text in scene.weighted.items():
+            width = metrics.horizontalAdvance(text) + 7 if radius >= LEAST_RING_PX else 6.0
+            middle = QPointF(*(points[person] + radius * BESIDE))
+            slip = QRectF(middle.x() - height * 0.5, middle.y() - height * 0.4, width, height)
+            painter.setPen(QPen(QColor(theme.ink), 1.0))
+            painter.setBrush(QColor(theme.canvas))
+            if radius < LEAST_RING_PX:
+                painter.drawRoundedRect(slip.translated(2.5, -2.0), 1.5, 1.5)
+            painter.drawRoundedRect(slip, 2.5, 2.5)
+            if radius >= LEAST_RING_PX:
+                painter.drawText(slip, Qt.AlignmentFlag.AlignCenter, text)
 
     def _paint_numbers(
         self,

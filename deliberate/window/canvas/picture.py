@@ -39,6 +39,7 @@ Flags = NDArray[np.bool_]
 FINE_AT_ONCE = 160  # so many arrows are painted fine even while something moves
 FINE_ALIVE = 60
 HALO_ALIVE = 60  # so many names get a halo while something moves
+LEAST_NAME, MOST_NAME = 6.0, 13.5  # width of a line of somebody's name, in heights of the line
 FIT_MARGINS = (58.0, 88.0, 58.0, 72.0)  # room for legend, names and the sentence at the foot
 
 
@@ -217,6 +218,8 @@ class Picture:
             lines += [overlays.MOVES, overlays.UP_OR_DOWN]
         elif total and self.moves_note:
             lines.append(self.moves_note)
+        if self.scene.weighted:
+            lines.append(overlays.TIMES)
         if total <= STRONG:
             return lines
         idle, weak = int((~look.shown & look.dashed).sum()), int((~look.shown & ~look.dashed).sum())
@@ -323,7 +326,8 @@ class Picture:
         lines = np.zeros((0, 4))
         if has_room(len(scene.ids), radius):
             lines, _ = geometry.strokes(self.curves(shown), np.full(len(shown), 6))
-        room = min(max(radius * 4.4, 56.0), 190.0)
+        line = QFontMetricsF(font).height()
+        room = min(max(radius * 4.4, line * LEAST_NAME), line * MOST_NAME)
         points, paper = self.view.to_screen(scene.places), (self.width, self.height)
         self.names.place(scene.names, points, radius, lines, font, room, paper)
 

@@ -95,9 +95,15 @@ class Scene:
         return np.array([person.present for person in self.variant.people], dtype=bool)
 
     @cached_property
-    def votes(self) -> Flags:
-        """Who has a vote."""
-        return np.array([person.ballots > 0 for person in self.variant.people], dtype=bool)
+    def silent(self) -> Indices:
+        """Who has no vote."""
+        return np.array([place for place, one in enumerate(self.variant.people) if one.ballots == 0], dtype=np.intp)
+
+    @cached_property
+    def weighted(self) -> dict[int, str]:
+        """Who casts another number of votes than one, and what is written beside them."""
+        people = enumerate(self.variant.people)
+        return {place: times_words(one.ballots) for place, one in people if one.ballots not in (0, 1)}
 
     @cached_property
     def unknown(self) -> Flags:
@@ -170,6 +176,11 @@ def points_words(share: float) -> str:
     if 0 < points < 0.05:
         return "under 0.1"
     return amount(round(points, 1))
+
+
+def times_words(ballots: float) -> str:
+    """A number of votes in a few digits: "×2.5", "×1,200", "×<0.01"."""
+    return f"×{amount(round(ballots, 2))}" if ballots >= 0.01 else "×<0.01"
 
 
 def moves_words(change: float, question: Question) -> str:

@@ -19,9 +19,10 @@ from deliberate.window.chart.strips import paint_ballot, paint_spread
 from deliberate.window.session import Session
 from deliberate.window.theme import Look, Theme
 
-AXIS_WIDTH = 46
+AXIS_WIDTH = 46  # at least
 SPREAD_HEIGHT = 34
 BALLOT_HEIGHT = 40
+LEAST_CURVES = 110  # pixels: in a low window the strips give way to the curves, the spread's first
 NEAR = 14.0  # pixels within which the pointer means a curve
 LARGEST_PICTURE = 16_000_000  # pixels
 
@@ -36,7 +37,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self._session, self._look = session, look
         self._content: Content | None = None
         self._range: tuple[float, ...] = ()
-        self._ballot_shown = True
+        self._ballot_wanted = True
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setFrameShape(self.Shape.NoFrame)
         self.setAccessibleName("Chart of beliefs by round")
@@ -59,6 +60,7 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         self.beliefs.addItem(self.hint, ignoreBounds=True)
         self.hinted = ""
 
+        self.sigDeviceRangeChanged.connect(self._share_height)
         self.scene().sigMouseClicked.connect(self._click)
         self.beliefs.getViewBox().sigRangeChanged.connect(self._tell_zoom)
         for signal in (
@@ -87,10 +89,8 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             menu.setParent(self, menu.windowFlags())  # never shown; ours, so that they go when the chart goes
         plot.hideButtons()
         plot.hideAxis("bottom")
-        plot.getAxis("left").setWidth(AXIS_WIDTH)
         plot.getAxis("left").setStyle(tickLength=0 if words else -4)
         plot.getAxis("bottom").setStyle(tickLength=-4)
-        plot.getAxis("bottom").setHeight(22)
         box = plot.getViewBox()
         box.setDefaultPadding(0)
         box.setBorder(None)
@@ -117,6 +117,9 @@ class BeliefChart(pg.GraphicsLayoutWidget):
                 plot.getAxis(side).setPen(theme.line)
                 plot.getAxis(side).setTextPen(theme.muted)
                 plot.getAxis(side).setTickFont(self.font())
+            words = self.fontMetrics().horizontalAdvance("spread") + 6
+            plot.getAxis("left").setWidth(max(AXIS_WIDTH, words))
+            plot.getAxis("bottom").setHeight(self.fontMetrics().height() + 8)
         for cursor in self.cursors:
             cursor.setPen(pg.mkPen(theme.ink, width=1.5))
             cursor.setHoverPen(pg.mkPen(theme.accent, width=2.5))
@@ -151,7 +154,8 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             )
             self._keep_range(len(rehearsal.rounds) - 1, question.low, question.high)
             self.setAccessibleDescription(self._spoken())
-        self._show_ballot(rehearsal is not None and rehearsal.ballot is not None)
+        self._ballot_wanted = rehearsal is not None and rehearsal.ballot is not None
+        self._share_height()
         for item in (self._curves, self._spread, self._ballot):
             item.forget()
         self._follow(session.player.position)
@@ -163,12 +167,18 @@ class BeliefChart(pg.GraphicsLayoutWidget):
             return None
         return doubt
 
-    def _show_ballot(self, shown: bool) -> None:
-        """Give the ballot its row, or leave the room to the curves."""
-        if shown != self._ballot_shown:
-            self._ballot_shown = shown
-            self.ballot.setFixedHeight(BALLOT_HEIGHT if shown else 0)
-            self.ballot.setVisible(shown)
+    def _share_height(self) -> None:
+        """Give the strips their rows, or leave the room to the curves."""
+        left = self.height() - LEAST_CURVES
+        with_ballot = self._ballot_wanted and left >= BALLOT_HEIGHT
+        with_spread = left >= SPREAD_HEIGHT + (BALLOT_HEIGHT if with_ballot else 0)
+        for plot, shown, height in (
+            (self.spread, with_spread, SPREAD_HEIGHT),
+            (self.ballot, with_ballot, BALLOT_HEIGHT),
+        ):
+            if shown != plot.isVisible():
+                plot.setFixedHeight(height if shown else 0)
+                plot.setVisible(shown)
 
     def _spoken(self) -> str:
         content = self._content

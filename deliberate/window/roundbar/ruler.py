@@ -109,7 +109,7 @@ class Ruler(QAbstractSlider):
         return QSize(400, round(height * 2.9 + 24))
 
     def minimumSizeHint(self) -> QSize:
-        return QSize(180, self.sizeHint().height())
+        return QSize(120, self.sizeHint().height())
 
     def _follow(self, position: float) -> None:
         blocked = self.blockSignals(True)

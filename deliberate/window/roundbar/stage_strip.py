@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QComboBox, QHBoxLayout, QLabel, QLineEdit, QPushButton, QSpinBox, QWidget
+from PySide6.QtCore import QSize, Qt, Signal
+from PySide6.QtGui import QKeyEvent, QResizeEvent
+from PySide6.QtWidgets import QBoxLayout, QComboBox, QHBoxLayout, QLabel, QLineEdit, QPushButton, QSpinBox, QWidget
 
 from deliberate.scenario import edits
 from deliberate.scenario.values import Afterwards, Setting, Stage, Unheard
@@ -64,26 +64,56 @@ class StageStrip(QWidget):
         self.remove = self._button("Remove", "Remove the stage", self._remove)
         self.after = self._choice(AFTERWARDS, "After the last round", self._change_afterwards)
         self.done = self._button("Done", "Close the stage", self.closed.emit)
-        row = QHBoxLayout(self)
-        row.setContentsMargins(16, 6, 12, 0)
-        row.setSpacing(6)
-        rounds_label = QLabel("rounds", self)
-        rounds_label.setProperty("muted", True)
-        for part, stretch in (
-            (self.name, 3), (self.rounds, 0), (rounds_label, 0), (self.setting, 2), (self.choose, 0),
-            (self.unheard, 2), (self.earlier, 0), (self.later, 0), (self.add, 0), (self.remove, 0), (self.after, 2),
-            (self.done, 0),
-        ):  # fmt: skip
-            row.addWidget(part, stretch)
+        self._lay_out()
         session.scenario_changed.connect(self.refresh)
         self.hide()
+
+    def _lay_out(self) -> None:
+        rounds_label = QLabel("rounds", self)
+        rounds_label.setProperty("muted", True)
+        of_the_stage, of_the_plan = QHBoxLayout(), QHBoxLayout()
+        for part, stretch in (
+            (self.name, 1), (self.rounds, 0), (rounds_label, 0), (self.setting, 0), (self.choose, 0),
+            (self.unheard, 0),
+        ):  # fmt: skip
+            of_the_stage.addWidget(part, stretch)
+        for part in (self.earlier, self.later, self.add, self.remove):
+            of_the_plan.addWidget(part)
+        of_the_plan.addStretch(1)
+        of_the_plan.addWidget(self.after)
+        of_the_plan.addWidget(self.done)
+        self._halves = QBoxLayout(QBoxLayout.Direction.LeftToRight, self)
+        self._halves.setContentsMargins(16, 6, 12, 0)
+        for half, stretch in ((of_the_stage, 1), (of_the_plan, 0)):
+            half.setSpacing(6)
+            self._halves.addLayout(half, stretch)
+        self._halves.setSpacing(6)
+
+    def minimumSizeHint(self) -> QSize:
+        """That of two rows, so that a window in which there is one can be made narrower."""
+        margins = self._halves.contentsMargins()
+        widest = max(self._halves.itemAt(place).minimumSize().width() for place in range(2))
+        return QSize(widest + margins.left() + margins.right(), super().minimumSizeHint().height())
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit()
+
+    def _fit(self) -> None:
+        """One row where there is room for all words, otherwise two."""
+        halves = [self._halves.itemAt(place).sizeHint().width() for place in range(2)]
+        margins = self._halves.contentsMargins()
+        needed = sum(halves) + self._halves.spacing() + margins.left() + margins.right()
+        one_row = needed <= self.width()
+        ways = QBoxLayout.Direction
+        self._halves.setDirection(ways.LeftToRight if one_row else ways.TopToBottom)
 
     def _choice(self, entries: tuple[tuple[str, str], ...], name: str, changed: object) -> QComboBox:
         combo = QComboBox(self)
         combo.setAccessibleName(name)
         combo.setToolTip(name)
-        combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
-        combo.setMinimumContentsLength(6)
+        combo.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToContents)
+        combo.setMinimumWidth(80)  # a last resort: there is a second row
         for key, words in entries:
             combo.addItem(words, key)
         combo.activated.connect(changed)
@@ -129,6 +159,7 @@ class StageStrip(QWidget):
         self.later.setEnabled(self.index < len(plan.stages) - 1)
         self.remove.setEnabled(len(plan.stages) > 1)
         self._filling = False
+        self._fit()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

@@ -1,10 +1,12 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from itertools import combinations
 
 import pytest
 from circles import CIRCLES, meeting
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QEvent, Qt
+from PySide6.QtWidgets import QApplication, QComboBox, QPushButton
 from pytestqt.qtbot import QtBot
 
 from deliberate.scenario.values import Plan, Stage
@@ -148,3 +150,19 @@ def test_undoing_a_stage_that_is_being_edited_closes_the_row(qtbot: QtBot, bar: 
     bar._session.undo()
     assert names(bar) == ["Go-round", "Plenary"]
     assert bar.ruler.chosen < 2
+
+
+@pytest.mark.parametrize("width", [1250, 1024, 820])
+@pytest.mark.parametrize("setting", ["plenary", "tables", "panel", "pairs", "silence"])
+def test_no_word_is_cut_however_narrow_the_window(qtbot: QtBot, bar: RoundBar, width: int, setting: str) -> None:
+    """In two rows where one has no room."""
+    choose(qtbot, bar.strip.setting, setting)
+    bar.resize(width, 160)
+    qtbot.waitUntil(lambda: bar.strip.width() == width)
+    QApplication.sendPostedEvents(None, QEvent.Type.LayoutRequest)  # one row has become two
+    parts = [part for part in bar.strip.children() if isinstance(part, QComboBox | QPushButton) and part.isVisible()]
+    assert bar.strip.done in parts
+    assert [part.accessibleName() for part in parts if part.width() < part.sizeHint().width()] == []
+    assert all(bar.strip.rect().contains(part.geometry()) for part in parts)
+    overlaps = [(a, b) for a, b in combinations(parts, 2) if a.geometry().intersects(b.geometry())]
+    assert overlaps == []
