@@ -1,8 +1,8 @@
 """Writing scenario files so that a person can read them and versions differ by line.
 
-Two spaces of indentation; each person, arrow, stage, test and poll takes one line. Keys come in the order of the
-contract. A key at its default is left out, but for those in `_ALWAYS`, which a reader looks for: the own weight as
-one of a person's points, the ballot rule in full, the plan with its stages.
+Two spaces of indentation; each person, arrow, stage, test and poll takes one line. Keys come in the order in which
+FORMATS.md shows them. A key at its default is left out, but for those in `_ALWAYS`, which a reader looks for: the own
+weight as one of a person's points, the ballot rule in full, the plan with its stages.
 """
 
 from __future__ import annotations
@@ -52,7 +52,7 @@ _encoder = msgspec.json.Encoder()
 def write(scenario: Scenario, path: str | os.PathLike[str]) -> None:
     """Save a scenario: after a crash at any moment the file is the old one or the new one, whole.
 
-    Raises a DeliberateError, and leaves the file as it was, for a scenario that does not fit the contract and for
+    Raises a DeliberateError, and leaves the file as it was, for a scenario that does not fit the file format and for
     a place that cannot be written to.
     """
     replace_file(path, encode(validate(scenario)))

@@ -1,4 +1,4 @@
-"""A rehearsal as the JSON of the contract."""
+"""A rehearsal as JSON; FORMATS.md has the keys."""
 
 from __future__ import annotations
 

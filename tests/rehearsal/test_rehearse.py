@@ -170,7 +170,7 @@ def test_results_are_read_only():
 
 
 def person_by_person(scenario, rounds):
-    """The rounds from the words of the contract: loops over people and arrows, no arrays."""
+    """The rounds from the words of FORMATS.md: loops over people and arrows, no arrays."""
     (variant,) = scenario.variants
     (question,) = scenario.questions
     order = [stage for stage in variant.plan.stages for _ in range(stage.rounds)]
@@ -219,7 +219,7 @@ def in_range(question, now, arrow):
 
 
 @given(meetings())
-def test_rounds_are_those_of_the_contract(scenario):
+def test_rounds_are_those_of_the_words(scenario):
     rehearsal = rehearse(scenario, rounds=8)
     for beliefs, expected in zip(rehearsal.rounds, person_by_person(scenario, 8), strict=True):
         assert by_id(rehearsal, beliefs) == pytest.approx(expected, abs=1e-9)

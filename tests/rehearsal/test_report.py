@@ -57,7 +57,7 @@ def numbers_in(value):
 
 
 @given(meetings())
-def test_keys_types_and_lengths_are_those_of_the_contract(scenario):
+def test_keys_types_and_lengths_are_as_promised(scenario):
     data = written(scenario, rounds=4)
     people = [person.id for person in scenario.variants[0].people]
     assert list(data) == list(KEYS)
