@@ -359,13 +359,20 @@ def _print(text: str | bytes) -> None:
             out.buffer.write(text)
         else:
             out.reconfigure(errors="backslashreplace")
-            out.write(text)
+            out.write(text if text.isascii() else _fit_for(out.encoding, text))
         out.flush()
     except OSError as error:
         os.dup2(os.open(os.devnull, os.O_WRONLY), out.fileno())  # or the interpreter's last flush fails as well
         if not isinstance(error, BrokenPipeError):
             _say(f"deliberate: the output cannot be written: {error.strerror}")
         raise SystemExit(OTHERWISE) from None
+
+
+def _fit_for(encoding: str, text: str) -> str:
+    """`text` without the marks around names that are read from right to left, where these cannot be written."""
+    from deliberate.rehearsal.words import ISOLATED, without_marks
+
+    return text if ISOLATED.encode(encoding, "ignore") else without_marks(text)
 
 
 def _say(message: str) -> None:

@@ -14,7 +14,7 @@ from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Doubt, Fin
 from deliberate.rehearsal.doubt_words import holds, in_draws
 from deliberate.rehearsal.page import CAUTION, aligned, heading, labelled, shown_rounds, wrap, wrapped
 from deliberate.rehearsal.results import Floats
-from deliberate.rehearsal.words import amount, listing, numbers, shown_names, with_unit
+from deliberate.rehearsal.words import amount, isolated, listing, numbers, shown_names, with_unit
 from deliberate.scenario.values import Question, Scenario, Variant
 
 SHOWN_PEOPLE = 8
@@ -118,7 +118,7 @@ def _people(found: Doubt, variant: Variant, question: Question) -> str:
     which = "the widest first" if widest == doubtful else f"the widest {len(widest)} of {len(doubtful)}"
     lines = [f"Views at the plan's end in 8 of 10 draws, {which}"]
     for at, between, middle in zip(widest, ranges, middles, strict=True):
-        lines.append(wrap(f"{names[found.people[at]]}: {between}, half the draws below {middle}", "  "))
+        lines.append(wrap(f"{isolated(names[found.people[at]])}: {between}, half the draws below {middle}", "  "))
     return "\n".join(lines)
 
 

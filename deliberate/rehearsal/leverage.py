@@ -32,7 +32,7 @@ from deliberate.errors import DeliberateError
 from deliberate.rehearsal.assemble import Assembly, assemble
 from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.results import Floats
-from deliberate.rehearsal.words import amount, decimals, number, percent, shown_names
+from deliberate.rehearsal.words import amount, decimals, isolated, number, percent, shown_names
 from deliberate.scenario.values import Question, Scenario, Variant
 
 POINTS = 10.0  # of 100: what rows, own views and firmness are changed by
@@ -134,7 +134,7 @@ class _Levers:
         self.rounds = variant.plan.rounds
         self.weights = weight_shares(sketch.process.network)
         known = shown_names(variant)
-        self.names = [known[person] for person in sketch.people]
+        self.names = [isolated(known[person]) for person in sketch.people]
         linear = question.hearing_range is None and not sketch.process.repeat
         self.lasting = Lasting.of(self.process, self.voice) if linear else None
         small = len(sketch.people) <= MOST_REPLAYED

@@ -19,7 +19,7 @@ from deliberate.rehearsal.results import (
     SpeakFirst,
     Suggestion,
 )
-from deliberate.rehearsal.words import amount, count, in_words, listing, names, shown_names
+from deliberate.rehearsal.words import amount, count, in_words, listing, names, shown_names, without_marks
 from deliberate.scenario import edits
 from deliberate.scenario.access import variant_named
 from deliberate.scenario.values import Scenario, Stage, Variant
@@ -35,11 +35,11 @@ def apply(scenario: Scenario, variant_name: str, suggestion: Suggestion) -> Scen
     defined, in `results`. Raises DeliberateError for unknown names and ids, and where a change cannot be made.
     """
     before = variant_named(scenario, variant_name)
-    change = _in_short(suggestion, before)
+    change = without_marks(_in_short(suggestion, before))
     wanted = change if before is scenario.variants[0] else f"{before.name}, {change}"
     name = edits.fresh_variant_name(scenario, wanted)
     scenario = edits.add_variant(scenario, copy_of=variant_name, name=name)
-    scenario = edits.set_variant_notes(scenario, name, f"{words(suggestion, before)}.")
+    scenario = edits.set_variant_notes(scenario, name, f"{without_marks(words(suggestion, before))}.")
     return change_in_place(scenario, name, suggestion)
 
 

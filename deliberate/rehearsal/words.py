@@ -1,11 +1,13 @@
 """Figures and names as a reader wants them: digits that fit the scale, short lists, plurals.
 
-Only ASCII is added to what the scenario holds, so that every terminal can print it.
+Only ASCII is added to what the scenario holds, so that every terminal can print it; but for the marks of `isolated`,
+which can be left out.
 """
 
 from __future__ import annotations
 
 import math
+import unicodedata
 from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 
@@ -13,6 +15,7 @@ from deliberate.scenario.values import AgreementTest, Question, Variant
 
 _STEPS = 1000  # a figure is shown to about this part of the scale: 0.714 of 1, 71.4 of 100, 714 of 1000
 _MOST_DECIMALS = 9
+ISOLATED = "\u2068\u2069"  # first strong isolate, pop directional isolate
 # fmt: off
 _SMALL_NUMBERS = ("no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven",
                   "twelve")
@@ -119,12 +122,13 @@ def shown_names(variant: Variant) -> Mapping[str, str]:
 def names(ids: Iterable[str], variant: Variant | Mapping[str, str], most: int = 4) -> str:
     """The people as a list of at most `most` entries: "Amina and Bilal", "Amina, Bilal, Chen and 3 others".
 
-    A name that is a number stands in quotation marks, so that it is not read as a figure.
+    A name that is a number stands in quotation marks, so that it is not read as a figure; one that is read from right
+    to left is `isolated`.
 
     `variant` may also be what `shown_names` gives, which saves time where many lists are made of one variant.
     """
     known = shown_names(variant) if isinstance(variant, Variant) else variant
-    shown = [_told_from_figures(known.get(one, one)) for one in ids]
+    shown = [isolated(_told_from_figures(known.get(one, one))) for one in ids]
     if len(shown) > max(most, 1):
         kept = max(most - 1, 1)
         shown = [*shown[:kept], count(len(shown) - kept, "other", "others")]
@@ -133,6 +137,21 @@ def names(ids: Iterable[str], variant: Variant | Mapping[str, str], most: int = 
 
 def _told_from_figures(name: str) -> str:
     return name if any(map(str.isalpha, name)) or not any(map(str.isdigit, name)) else f'"{name}"'
+
+
+def isolated(name: str) -> str:
+    """A name for the middle of a sentence: one that is read from right to left stands within invisible marks (FSI and
+    PDI of the Unicode Bidirectional Algorithm, UAX #9), so that it turns round nothing but itself."""
+    return name.join(ISOLATED) if any(map(_from_right_to_left, name)) else name
+
+
+def without_marks(text: str) -> str:
+    """`text` without the marks of `isolated`: for what is kept in a file, and for terminals that lack them."""
+    return text.translate(dict.fromkeys(map(ord, ISOLATED)))
+
+
+def _from_right_to_left(letter: str) -> bool:
+    return unicodedata.bidirectional(letter) in ("R", "AL")
 
 
 def sentence(text: str) -> str:

@@ -72,6 +72,15 @@ def test_names_are_fresh_and_tell_what_they_build_on():
     assert further.variants[2].name == "Amina hears Chidi, Dolores hears b"
 
 
+def test_what_is_kept_of_a_change_has_no_invisible_marks():
+    name = "\u05de\u05e8\u05d9\u05dd"
+    before = meeting([[1, 0], [0, 1]], [80, 20], people={"a": {"name": name}})
+    change = Introduce("a", "b", 10)
+    assert words(change, before.variants[0]) == f"Let \u2068{name}\u2069 hear b: 10 of 100 points"
+    tried = apply(before, "As it stands", change).variants[1]
+    assert (tried.name, tried.notes) == (f"{name} hears b", f"Let {name} hear b: 10 of 100 points.")
+
+
 def test_very_long_names_still_make_a_valid_variant():
     long = meeting([[1, 0], [0, 1]], [0, 1], people={"a": {"name": "A" * 200}, "b": {"name": "B" * 200}})
     for _ in range(2):

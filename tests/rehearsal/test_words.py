@@ -119,6 +119,22 @@ def test_a_sentence_begins_with_a_capital():
     assert words.sentence("views settle on Ada's") == "Views settle on Ada's"
 
 
+@pytest.mark.parametrize("name", ["\u05de\u05e8\u05d9\u05dd", "\u0646\u0648\u0631 4", "Noor (\u0646\u0648\u0631)"])
+def test_names_read_from_right_to_left_turn_round_nothing_but_themselves(name):
+    """UAX #9, 6.1: text put into other text stands between FSI and PDI; rule P2 passes over it for the paragraph's
+    direction."""
+    told = f"{words.names(['a'], {'a': name})} listens to Ida: 30 of 100 points"
+    assert told == f"\u2068{name}\u2069 listens to Ida: 30 of 100 points"
+    assert words.without_marks(told) == f"{name} listens to Ida: 30 of 100 points"
+
+
+@pytest.mark.parametrize(
+    "name", ["Ida", "\u0391\u03bb\u03ad\u03be\u03b7\u03c2", "\u82b1\u5b50", "\u0e19\u0e34\u0e14"]
+)
+def test_names_read_from_left_to_right_stand_as_they_are(name):
+    assert words.isolated(name) == name
+
+
 def test_names_that_are_numbers_are_told_from_figures():
     people = {"p1": "7", "p2": "12 b", "p3": "3-4", "p4": "٤"}
     assert words.names(people, people) == '"7", 12 b, "3-4" and "٤"'

@@ -17,7 +17,7 @@ from deliberate.rehearsal.seating.told import (
     table_names,
 )
 from deliberate.rehearsal.seating.wish import Seating, Wish
-from deliberate.rehearsal.words import shown_names
+from deliberate.rehearsal.words import isolated, shown_names
 from deliberate.scenario.values import Scenario, Variant
 
 
@@ -37,7 +37,7 @@ def _tables(seating: Seating, variant: Variant) -> Iterator[str]:
     for name, tables in zip(stage_names(seating), seating.rotations, strict=True):
         yield from ("", name)
         for table, people in zip(table_names(seating), tables, strict=True):
-            yield wrap(", ".join(known[one] for one in people), f"  {table}: ")
+            yield wrap(", ".join(isolated(known[one]) for one in people), f"  {table}: ")
 
 
 def seating_to_json(seating: Seating) -> dict[str, Any]:

@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.voices import Voices, voices
-from deliberate.rehearsal.words import amount, decimals, number, shown_names
+from deliberate.rehearsal.words import amount, decimals, isolated, number, shown_names
 from deliberate.scenario.values import Question, Variant
 from deliberate.window.canvas.geometry import bends
 from deliberate.window.canvas.places import disc_radius, places
@@ -82,7 +82,7 @@ class Scene:
     def told_apart(self) -> tuple[str, ...]:
         """Names for sentences, in which two of the same name can be told apart."""
         known = shown_names(self.variant)
-        return tuple(known[one] for one in self.ids)
+        return tuple(isolated(known[one]) for one in self.ids)
 
     @cached_property
     def arrow_index(self) -> dict[Pair, int]:
