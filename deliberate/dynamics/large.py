@@ -13,6 +13,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 from scipy.sparse import csr_array
+from scipy.sparse.linalg import splu
 
 from deliberate.dynamics.camps import stationary_of_camps
 from deliberate.dynamics.destination import Destination, group_numbers
@@ -306,8 +307,6 @@ def _direct(
         return answer, False
     if last <= AIM or not thin:
         return answer, last <= ENOUGH
-    from scipy.sparse.linalg import splu
-
     matrix = csr_array((np.ones(size), (np.arange(size), np.arange(size))), shape=(size, size)) - inner
     answer, last = _refined(splu((matrix.T if transposed else matrix).tocsc()).solve, missing, given)
     return answer, last <= ENOUGH

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 import numpy as np
+from scipy.linalg import lu_factor, lu_solve
 from scipy.sparse import coo_array, csr_array
 
 from deliberate.dynamics.destination import Destination
@@ -160,8 +161,6 @@ def _radius_of_large(block: Floats | csr_array, share: Floats | None) -> tuple[f
     missing = np.eye(len(full)) - full
     if share is not None:
         missing += share
-    from scipy.linalg import lu_factor, lu_solve
-
     factors = lu_factor(missing, check_finite=False)
     inverse, exact = leading_eigenvalue(lambda given: lu_solve(factors, given), len(full), ARNOLDI_STEPS)
     nearest = abs(1 - 1 / inverse)
