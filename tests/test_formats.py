@@ -1,4 +1,4 @@
-"""FORMATS.md keeps its word: its file is read, and its tables list the keys that are printed."""
+"""`resources/formats.md` keeps its word: its file is read, and its tables list the keys that are printed."""
 
 from __future__ import annotations
 
@@ -12,7 +12,7 @@ from deliberate import cli
 from deliberate.files import decode
 
 CHECKOUT = Path(__file__).parent.parent
-FORMATS = (CHECKOUT / "FORMATS.md").read_text(encoding="utf-8")
+FORMATS = (CHECKOUT / "resources" / "formats.md").read_text(encoding="utf-8")
 CLINICS = CHECKOUT / "scenarios" / "two-clinics.deliberate.json"
 PARTS = dict(part.split("\n", 1) for part in FORMATS.split("\n### ")[1:])
 REMEDY = re.compile(r"\{([^{}]*)\}")

@@ -1,7 +1,7 @@
 """Writing scenario files so that a person can read them and versions differ by line.
 
 Two spaces of indentation; each person, arrow, stage, test and poll takes one line. Keys come in the order in which
-FORMATS.md shows them. A key at its default is left out, but for those in `_ALWAYS`, which a reader looks for: the own
+formats.md shows them. A key at its default is left out, but for those in `_ALWAYS`, which a reader looks for: the own
 weight as one of a person's points, the ballot rule in full, the plan with its stages.
 """
 

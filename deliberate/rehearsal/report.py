@@ -1,4 +1,4 @@
-"""A rehearsal as JSON; FORMATS.md has the keys."""
+"""A rehearsal as JSON; resources/formats.md has the keys."""
 
 from __future__ import annotations
 

@@ -170,7 +170,7 @@ def test_results_are_read_only():
 
 
 def person_by_person(scenario, rounds):
-    """The rounds from the words of FORMATS.md: loops over people and arrows, no arrays."""
+    """The rounds from the words of formats.md: loops over people and arrows, no arrays."""
     (variant,) = scenario.variants
     (question,) = scenario.questions
     order = [stage for stage in variant.plan.stages for _ in range(stage.rounds)]

@@ -25,7 +25,7 @@ def circles(*later: Stage) -> Scenario:
 
 
 def heard_shares(variant: Variant, listener: str, table: tuple[str, ...]) -> dict[str, float]:
-    """Shares at a table where what is not heard is spread over the rest (`rescale`), as FORMATS.md defines it."""
+    """Shares at a table where what is not heard is spread over the rest (`rescale`), as formats.md defines it."""
     points = {one: part for one, part in points_of(variant, listener).items() if one in table}
     return {one: part / sum(points.values()) for one, part in points.items()}
 

@@ -23,7 +23,7 @@ def row(scenario: Scenario, listener: str) -> dict[str, float]:
 
 
 def exact_shares(variant: Variant, listener: str) -> dict[str, Fraction]:
-    """The definition of FORMATS.md in exact fractions: own weight and arrow weights divided by their sum."""
+    """The definition of formats.md in exact fractions: own weight and arrow weights divided by their sum."""
     weights = {listener: Fraction(next(p.own_weight for p in variant.people if p.id == listener))}
     weights |= {arrow.source: Fraction(arrow.weight) for arrow in variant.arrows if arrow.listener == listener}
     total = sum(weights.values())

@@ -1,4 +1,4 @@
-"""The rounds of a scenario in a few lines of plain numpy, from the words of FORMATS.md and from nothing in the
+"""The rounds of a scenario in a few lines of plain numpy, from the words of formats.md and from nothing in the
 program but the values it reads: what the demo tests are checked against besides the program itself."""
 
 from __future__ import annotations
