@@ -30,24 +30,27 @@ def style_sheet(theme: Theme) -> str:
         color: {theme.ink}; min-height: 16px;
     }}
     QPushButton:hover, QToolButton:hover {{ border-color: {theme.accent}; }}
-    QPushButton:focus, QToolButton:focus, QPushButton:default {{ border: 1px solid {theme.accent}; }}
-    QPushButton:pressed, QToolButton:pressed, QToolButton:checked {{
-        background: {theme.tint}; color: {theme.accent};
+    QPushButton:default {{ border: 1px solid {theme.accent}; }}
+    QPushButton:pressed, QToolButton:pressed, QPushButton:checked, QToolButton:checked {{
+        background: {theme.tint}; color: {theme.accent}; border-color: {theme.accent};
     }}
+    QPushButton:focus, QToolButton:focus {{ border: 2px solid {theme.accent}; padding: 3px 9px; }}
     QPushButton:disabled, QToolButton:disabled {{ color: {theme.muted}; }}
     QPushButton[quiet="true"], QToolButton[quiet="true"] {{
         background: transparent; border: 1px solid transparent; color: {theme.accent}; text-align: left;
         font-weight: 600; padding: 4px 4px;
     }}
     QPushButton[quiet="true"]:hover, QToolButton[quiet="true"]:hover {{ background: {theme.tint}; }}
-    QPushButton[quiet="true"]:focus, QToolButton[quiet="true"]:focus {{ border-color: {theme.accent}; }}
+    QPushButton[quiet="true"]:focus, QToolButton[quiet="true"]:focus {{
+        border: 2px solid {theme.accent}; padding: 3px 3px;
+    }}
     QToolButton[quiet="true"]:checked {{ background: {theme.tint}; border-color: {theme.accent}; }}
     QLineEdit, QPlainTextEdit {{
-        background: {theme.panel}; border: 1px solid {theme.line}; border-radius: 5px; padding: 3px 6px;
+        background: {theme.panel}; border: 1px solid {theme.mark}; border-radius: 5px; padding: 3px 6px;
         color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};
         min-height: 18px;
     }}
-    QLineEdit:focus, QPlainTextEdit:focus {{ border-color: {theme.accent}; }}
+    QLineEdit:focus, QPlainTextEdit:focus {{ border: 2px solid {theme.accent}; padding: 2px 5px; }}
     QLineEdit:disabled {{ color: {theme.muted}; background: {theme.raised}; border-color: {theme.raised}; }}
     QTableView, QListView {{
         background: {theme.panel}; border: none; gridline-color: {theme.line};
@@ -100,9 +103,9 @@ def style_sheet(theme: Theme) -> str:
     QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
     QScrollBar:horizontal {{ background: transparent; height: 10px; margin: 0; }}
     QScrollBar::handle {{
-        background: {theme.line}; border-radius: 4px; min-height: 24px; min-width: 24px; margin: 1px;
+        background: {theme.mark}; border-radius: 3px; min-height: 24px; min-width: 24px; margin: 2px;
     }}
-    QScrollBar::handle:hover {{ background: {theme.mark}; }}
+    QScrollBar::handle:hover {{ background: {theme.muted}; }}
     QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page {{
         background: transparent; border: none; width: 0; height: 0;
     }}

@@ -75,7 +75,7 @@ class ElidedLabel(QWidget):
         if text != self._text:
             self._text = text
             self.setAccessibleName(text)
-            self.setToolTip(tooltip(text))
+            explain(self, text)
             self.update()
 
     def sizeHint(self) -> QSize:

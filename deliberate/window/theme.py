@@ -31,7 +31,7 @@ class Theme:
     ink: str
     muted: str  # second-rank text, at least 4.5:1 on panel and canvas
     line: str  # hairlines between parts
-    mark: str  # arrows, ticks, rings: at least 3:1 on the canvas
+    mark: str  # arrows, ticks, rings, edges of fields: at least 3:1 on all grounds
     accent: str  # selected, played, pointed at
     on_accent: str
     tint: str  # accent ground behind text
@@ -46,7 +46,7 @@ LIGHT = Theme(
     ink="#23252b",
     muted="#666a73",
     line="#dedbd3",
-    mark="#85888f",
+    mark="#82858c",
     accent="#7c2a5c",
     on_accent="#ffffff",
     tint="#f3e9ef",
@@ -127,6 +127,13 @@ def mix(one: str, other: str, share: float) -> QColor:
     """An opaque colour `share` of the way from `one` to `other`: painting it is far cheaper than translucency."""
     a, b = QColor(one), QColor(other)
     return QColor(*(round(x + (y - x) * share) for x, y in zip(a.getRgb()[:3], b.getRgb()[:3], strict=True)))
+
+
+@lru_cache(maxsize=2048)
+def line_color(color: str, theme: Theme) -> QColor:
+    """`color` with as much ink as a line on a panel needs to be seen (3:1): pale beliefs are nearly paper."""
+    steps = (mix(color, theme.ink, step / 20) for step in range(21))
+    return next(mixed for mixed in steps if contrast(mixed, QColor(theme.panel)) >= 3.0)
 
 
 def qt_palette(theme: Theme) -> QPalette:

@@ -1,12 +1,21 @@
 from __future__ import annotations
 
+import re
+from itertools import pairwise
+
 import numpy as np
 import pytest
 from circles import LABEL
-from PySide6.QtGui import QColor
+from PySide6.QtCore import QRectF
+from PySide6.QtGui import QColor, QImage, QPainter, QPixmap
 
+from deliberate.files.resources import resources
+from deliberate.rehearsal.doubt_results import Odds
 from deliberate.scenario.values import Question
-from deliberate.window.theme import DARK, LIGHT, Theme, belief_fractions, contrast, ink_on, mix, shades
+from deliberate.window.canvas.sprites import DiscAtlas
+from deliberate.window.chart.doubt_bands import paint_odds
+from deliberate.window.chart.frame import Frame
+from deliberate.window.theme import DARK, LIGHT, Theme, belief_fractions, contrast, ink_on, line_color, mix, shades
 
 THEMES = pytest.mark.parametrize("theme", [LIGHT, DARK], ids=lambda theme: theme.name)
 
@@ -24,9 +33,9 @@ def test_text_reads_on_its_ground(theme: Theme) -> None:
     """WCAG 2.2, 1.4.3: at least 4.5 to 1."""
     for ground in (theme.canvas, theme.panel, theme.raised):
         assert contrast(QColor(theme.ink), QColor(ground)) >= 4.5
-    for ground in (theme.canvas, theme.panel):
+    for ground in (theme.canvas, theme.panel, theme.raised, theme.tint):
         assert contrast(QColor(theme.muted), QColor(ground)) >= 4.5
-    for ground in (theme.canvas, theme.panel, theme.tint):
+    for ground in (theme.canvas, theme.panel, theme.raised, theme.tint):
         assert contrast(QColor(theme.accent), QColor(ground)) >= 4.5
     assert contrast(QColor(theme.on_accent), QColor(theme.accent)) >= 4.5
     assert contrast(QColor(theme.ink), QColor(theme.tint)) >= 4.5
@@ -34,9 +43,52 @@ def test_text_reads_on_its_ground(theme: Theme) -> None:
 
 @THEMES
 def test_marks_stand_out_from_the_ground(theme: Theme) -> None:
-    """WCAG 2.2, 1.4.11: at least 3 to 1."""
-    assert contrast(QColor(theme.mark), QColor(theme.canvas)) >= 3
-    assert contrast(QColor(theme.mark), QColor(theme.panel)) >= 3
+    """WCAG 2.2, 1.4.11: at least 3 to 1. `mark` draws arrows, rims, ticks, edges of fields and of boxes to check;
+    `accent` what has the focus, is checked or selected, and the line under the page that is shown."""
+    for ground in (theme.canvas, theme.panel, theme.raised, theme.tint):
+        assert contrast(QColor(theme.mark), QColor(ground)) >= 3
+        assert contrast(QColor(theme.accent), QColor(ground)) >= 3
+
+
+@THEMES
+def test_a_tick_stands_out_from_its_box(theme: Theme) -> None:
+    picture = (resources() / f"tick-{theme.name}.svg").read_text()
+    tick = QColor(re.search(r'stroke="(#[0-9a-f]{6})"', picture)[1])
+    for box in (theme.accent, theme.mark):
+        assert contrast(tick, QColor(box)) >= 3
+
+
+@THEMES
+def test_columns_of_odds_stand_out_from_what_is_left_of_them(theme: Theme, qapp: object) -> None:
+    """As painted: of two columns, one is filled to its whole height and the other not at all."""
+    image = QImage(200, 60, QImage.Format.Format_RGB32)
+    image.fill(QColor(theme.panel))
+    frame = Frame(QRectF(0, 0, 200, 60), -0.5, 1.5, 0.0, 1.0)
+    with QPainter(image) as painter:
+        paint_odds(painter, frame, (Odds.of(100, 100), Odds.of(0, 100)), theme)
+    full, empty = image.pixelColor(50, 10), image.pixelColor(150, 10)
+    assert contrast(full, empty) >= 3
+    assert contrast(full, QColor(theme.panel)) >= 3
+
+
+@THEMES
+def test_curves_stand_out_from_the_paper_whatever_their_belief(theme: Theme) -> None:
+    for shade in shades(theme):
+        seen = line_color(shade.name(), theme)
+        assert contrast(seen, QColor(theme.panel)) >= 3
+        assert seen == shade or contrast(shade, QColor(theme.panel)) < 3
+
+
+@THEMES
+def test_discs_have_a_rim_that_stands_out(theme: Theme) -> None:
+    """Beliefs near the middle are nearly the paper's colour; the rim of `mark` says that somebody is there."""
+    atlas = DiscAtlas(30.0, 1.0, theme)
+    page = QPixmap(80, 80)
+    page.fill(QColor(theme.canvas))
+    with QPainter(page) as painter:
+        atlas.draw(painter, np.array([[40.0, 40.0]]), np.array([127]), 1.0)
+    across = [page.toImage().pixelColor(x, 40) for x in range(5, 20)]
+    assert max(contrast(color, QColor(theme.canvas)) for color in across) >= 3
 
 
 @THEMES
@@ -63,6 +115,39 @@ def test_for_and_against_look_different_to_everybody(theme: Theme, deficiency: s
     for low, high, least in ((0, 10, 40), (2, 8, 20)):
         ends = (_lab(QColor(theme.stops[stop]), deficiency) for stop in (low, high))
         assert np.linalg.norm(next(ends) - next(ends)) >= least
+
+
+@THEMES
+@pytest.mark.parametrize("deficiency", [None, *DEFICIENCIES])
+def test_neighbouring_stops_can_be_told_apart_by_everybody(theme: Theme, deficiency: str | None) -> None:
+    """At least four times what is just noticeable (CIE76, 2.3) from one stop to the next, and between the two that
+    stand as far below and above the middle as each other."""
+    seen = [_lab(QColor(stop), deficiency) for stop in theme.stops]
+    assert min(np.linalg.norm(one - other) for one, other in pairwise(seen)) >= 9.2
+    mirrored = [np.linalg.norm(seen[place] - seen[-1 - place]) for place in range(5)]
+    assert min(mirrored) >= 18.4
+
+
+@THEMES
+def test_in_grey_both_halves_grow_stronger_step_by_step(theme: Theme) -> None:
+    """In grey, distance from the middle is left of the scale; which side it is, numbers and names say."""
+    grey = [float(_lab(QColor(stop), None)[0]) for stop in theme.stops]
+    away = -1 if theme is LIGHT else 1
+    for half in (grey[5::-1], grey[5:]):
+        assert np.all(np.diff(half) * away >= 9)
+
+
+@THEMES
+@pytest.mark.parametrize("deficiency", [None, *DEFICIENCIES])
+def test_what_is_selected_differs_from_what_is_not_for_everybody(theme: Theme, deficiency: str | None) -> None:
+    accent, mark, ink = (_lab(QColor(color), deficiency) for color in (theme.accent, theme.mark, theme.ink))
+    assert np.linalg.norm(accent - mark) >= 18.4
+    assert np.linalg.norm(accent - ink) >= 18.4
+
+
+@THEMES
+def test_in_grey_the_selected_differs_from_what_is_not(theme: Theme) -> None:
+    assert contrast(QColor(theme.accent), QColor(theme.mark)) >= 1.7
 
 
 def test_the_neutral_middle_is_at_the_pass_mark() -> None:

@@ -67,7 +67,7 @@ class DiscAtlas:
             painter.setRenderHint(QPainter.RenderHint.Antialiasing)
             reach = self.radius * self.ratio
             width = max(1.0, min(1.5, self.radius * 0.06)) * self.ratio
-            painter.setPen(QPen(mix(self.theme.mark, self.theme.canvas, 0.1), width))
+            painter.setPen(QPen(QColor(self.theme.mark), width))
             for index in missing:
                 middle = QPointF((index % _COLUMNS + 0.5) * self.cell, (index // _COLUMNS + 0.5) * self.cell)
                 painter.setBrush(colors[index])
@@ -157,7 +157,7 @@ def directions(places: Floats, listener: Indices, source: Indices) -> Floats:
 
 def _coverage_table(theme: Theme) -> NDArray[np.uint32]:
     """Premultiplied ARGB for each level of coverage and each shade; the last column is the hairline's colour."""
-    colors = [*shades(theme), mix(theme.mark, theme.canvas, 0.25)]
+    colors = [*shades(theme), QColor(theme.mark)]
     rgb = np.array([color.getRgb()[:3] for color in colors], dtype=np.float64)
     alpha = np.linspace(0, 1, _LEVELS)[:, None, None]
     mixed = np.rint(rgb[None] * alpha).astype(np.uint32)

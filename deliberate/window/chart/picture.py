@@ -16,7 +16,7 @@ from deliberate.window.chart import doubt_bands
 from deliberate.window.chart.endings import Endings
 from deliberate.window.chart.frame import Frame
 from deliberate.window.text import elided
-from deliberate.window.theme import Theme, mix, shade_indices, shades
+from deliberate.window.theme import Theme, line_color, mix, shade_indices, shades
 
 MOST_POINTS = 800  # rounds drawn per curve; longer plans are thinned evenly
 RIMMED = 12  # up to here selected curves get a rim
@@ -140,12 +140,11 @@ def _paint_curves(painter: QPainter, frame: Frame, content: Content, theme: Them
     everybody = not chosen and len(people) <= COLOURED_ALONE
     quiet = [one for one in people if one not in chosen]
     for one in quiet:
-        shade = palette[starts[one]].name() if everybody else theme.mark
-        color = mix(theme.panel, shade, 0.8 if everybody else 0.5)
+        color = line_color(palette[starts[one]].name(), theme) if everybody else mix(theme.panel, theme.mark, 0.5)
         painter.setPen(QPen(color, 1.4 if everybody else 1.0, _dash(content, one)))
         _polyline(painter, x, y[:, one])
     for one in sorted(content.lit - content.selected):
-        painter.setPen(QPen(palette[starts[one]], 1.8, _dash(content, one)))
+        painter.setPen(QPen(line_color(palette[starts[one]].name(), theme), 1.8, _dash(content, one)))
         _polyline(painter, x, y[:, one])
     for one in sorted(content.selected):
         if len(content.selected) <= RIMMED:

@@ -9,7 +9,7 @@ from PySide6.QtGui import QColor, QPainter, QPolygonF
 
 from deliberate.rehearsal.results import Tally
 from deliberate.window.chart.frame import Frame
-from deliberate.window.theme import Theme, mix
+from deliberate.window.theme import Theme
 
 WIDEST_CELL = 26.0
 
@@ -27,7 +27,7 @@ def paint_spread(painter: QPainter, frame: Frame, spread: NDArray[np.float64], w
     """Bars as tall as the spread, against the widest there can be."""
     painter.setClipRect(frame.rect)
     painter.setPen(Qt.PenStyle.NoPen)
-    painter.setBrush(mix(theme.panel, theme.mark, 0.75))
+    painter.setBrush(QColor(theme.mark))
     for at in shown_rounds(frame, len(spread)):
         left, right = cell_edges(frame, len(spread), at)
         height = max(frame.rect.height() * float(spread[at]) / widest, 1.0) if widest > 0 else 1.0

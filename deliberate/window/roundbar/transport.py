@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Literal
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPolygonF
+from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen, QPolygonF
 from PySide6.QtWidgets import QAbstractButton, QWidget
 
 from deliberate.window.theme import Look
@@ -48,10 +48,11 @@ class TransportButton(QAbstractButton):
                 painter.drawEllipse(disc)
             elif self.underMouse() or self.isChecked():
                 painter.setBrush(QColor(theme.tint))
+                painter.setPen(QColor(theme.accent) if self.isChecked() else Qt.PenStyle.NoPen)
                 painter.drawEllipse(disc)
             if self.hasFocus():
                 painter.setBrush(Qt.BrushStyle.NoBrush)
-                painter.setPen(QColor(theme.on_accent if main else theme.accent))
+                painter.setPen(QPen(QColor(theme.on_accent if main else theme.accent), 2))
                 inset = 3 if main else 0
                 painter.drawEllipse(disc.adjusted(inset, inset, -inset, -inset))
             lit = self.underMouse() or self.isChecked()
