@@ -66,8 +66,8 @@ class Card(QWidget):
             column.addWidget(part)
 
     def tell(self, told: Told, is_open: bool) -> None:
-        """Show `told`."""
-        self.told = told
+        """Show `told`; where the pointer or the focus is here already, it is pointed at now."""
+        before, self.told = self.told, told
         self.says.setText(told.says)
         self.note.setText(told.note)
         self.note.setVisible(bool(told.note))
@@ -77,6 +77,8 @@ class Card(QWidget):
         self.setAccessibleName(told.says)
         self.setAccessibleDescription(f"{told.note} {told.why}".strip())
         self.set_open(is_open)
+        if self._hot and (before is None or before.lights is not told.lights):
+            self.pointed.emit(told.lights)
 
     def forget(self) -> None:
         """Show nothing, and keep no words of what was shown."""

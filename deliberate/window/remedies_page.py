@@ -42,6 +42,7 @@ class RemediesPage(QWidget):
         self._calm.timeout.connect(self._look)
         self.aim = QComboBox(self)
         self.aim.setAccessibleName("What a change should do")
+        self.aim.setPlaceholderText("Choose an aim")
         self.aim.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
         self.aim.activated.connect(self._choose)
         self.stop = QToolButton(self)

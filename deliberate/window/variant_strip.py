@@ -3,18 +3,36 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QPoint, Qt, Signal
-from PySide6.QtGui import QMouseEvent
-from PySide6.QtWidgets import QHBoxLayout, QInputDialog, QMenu, QTabBar, QToolButton, QWidget
+from PySide6.QtGui import QFont, QFontMetrics, QMouseEvent
+from PySide6.QtWidgets import (
+    QHBoxLayout,
+    QInputDialog,
+    QMenu,
+    QStyle,
+    QStyleOptionTab,
+    QTabBar,
+    QToolButton,
+    QWidget,
+)
 
 from deliberate.scenario import edits
 from deliberate.window.session import Session
-from deliberate.window.text import with_ampersands
+from deliberate.window.text import tooltip, with_ampersands
 
 
 class VariantTabs(QTabBar):
     """The names in a row; a double click asks to rename."""
 
     rename_wanted = Signal(int)
+
+    def initStyleOption(self, option: QStyleOptionTab, place: int) -> None:
+        """Shorten long names by the heavier letters of the shown one, which the bar itself does not reckon with."""
+        super().initStyleOption(option, place)
+        heavy = QFont(self.font())
+        heavy.setWeight(QFont.Weight.DemiBold)
+        room = self.style().subElementRect(QStyle.SubElement.SE_TabBarTabText, option, self).width()
+        shown = Qt.TextFlag.TextShowMnemonic
+        option.text = QFontMetrics(heavy).elidedText(self.tabText(place), self.elideMode(), room, shown.value)
 
     def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
         place = self.tabAt(event.position().toPoint())
@@ -68,6 +86,7 @@ class VariantStrip(QWidget):
         for place, name in enumerate(names):
             if self.tabs.tabText(place) != with_ampersands(name):
                 self.tabs.setTabText(place, with_ampersands(name))
+                self.tabs.setTabToolTip(place, tooltip(name))
         self.tabs.setCurrentIndex(names.index(self._session.variant.name))
         self._filling = False
 

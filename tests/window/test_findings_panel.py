@@ -108,6 +108,19 @@ def test_findings_follow_every_edit(panel: FindingsPanel) -> None:
     assert panel.cards[0].told.lights.kind == "closed-groups"
 
 
+def test_what_is_pointed_at_follows_every_edit(qtbot: QtBot, panel: FindingsPanel) -> None:
+    session = panel._session
+    qtbot.mouseMove(panel.cards[0], QPoint(20, 10))
+    qtbot.waitUntil(lambda: session.lit is panel.cards[0].told.lights)
+    before = session.lit
+    session.edit(
+        "Another start", partial(edits.set_belief, ids="amina", question="label", belief=60.0, variant=AS_IT_STANDS)
+    )
+    qtbot.waitUntil(session.engine.idle)
+    assert session.lit is not before
+    assert session.lit is panel.cards[0].told.lights
+
+
 def test_names_like_markup_stay_text(qtbot: QtBot, look: Look, open_session: Callable[..., Session]) -> None:
     people = CIRCLES.variants[0].people
     hostile = (replace(people[0], name='<img src="/etc/hostname"><b>Amina</b>'), *people[1:])
