@@ -123,7 +123,7 @@ def _people(found: Doubt, variant: Variant, question: Question) -> str:
 
 
 def _standing_out(found: Doubt) -> str:
-    lines = ["What stands out, and in how many draws it does, if with other figures"] if found.findings else []
+    lines = ["What stands out, and in how many draws it does"] if found.findings else []
     for place, odds in enumerate(found.findings, 1):
         lines.append(wrap(odds.finding.says, f"{place:3}. "))
         lines.append(wrap(holds(odds, found.draws), " " * 5))

@@ -26,15 +26,21 @@ def in_draws(odds: Odds, draws: int) -> str:
 
 
 def holds(odds: FindingOdds, draws: int) -> str:
-    """In how many draws a finding of the sketch holds, if with other figures; one sentence."""
+    """In how many draws a finding of the sketch holds; its figures are those of the sketch alone. One sentence."""
     if odds.by_structure:
         return "In all draws: it follows from who is there and which arrows there are."
     if odds.odds is None:
         return "Not looked at in the draws."
     if odds.finding.kind == "knife-edge":
         return f"The same change turns the vote in {in_draws(odds.odds, draws)}."
-    same = "The same outcome in" if odds.finding.kind == "vote" else "In"
-    return f"{same} {in_draws(odds.odds, draws)}."
+    counted = in_draws(odds.odds, draws)
+    match odds.finding.kind:
+        case "vote":
+            return f"The same outcome in {counted}."
+        case "agreement":
+            return f"In {counted}."
+        case _:
+            return f"In {counted}, with figures of its own in each." if odds.odds.share else f"In {counted}."
 
 
 def says_vote(passes: Odds, draws: int, quorum_met: bool) -> str:

@@ -12,10 +12,10 @@ from strategies import scenarios
 
 from deliberate.rehearsal.doubt import doubt
 from deliberate.rehearsal.doubt_report import doubt_summary, doubt_to_json
-from deliberate.rehearsal.doubt_results import LEVELS, Concentration, Odds, call_of
-from deliberate.rehearsal.doubt_words import in_draws, says_vote
+from deliberate.rehearsal.doubt_results import LEVELS, Concentration, FindingOdds, Odds, call_of
+from deliberate.rehearsal.doubt_words import holds, in_draws, says_vote
 from deliberate.rehearsal.page import CAUTION
-from deliberate.rehearsal.results import Kind
+from deliberate.rehearsal.results import Finding, Kind
 from deliberate.scenario import edits
 from deliberate.scenario.values import Question
 
@@ -95,6 +95,23 @@ def test_the_vote_in_words(hits, said):
     assert says_vote(Odds.of(hits, 2_048), 2_048, quorum_met=True) == said
 
 
+@pytest.mark.parametrize(
+    ("kind", "hits", "said"),
+    [
+        ("settles", 2_048, "In all 2,048 draws, with figures of its own in each."),
+        ("closed-groups", 1_024, "In 50 of 100 draws, with figures of its own in each."),
+        ("slow", 0, "In none of 2,048 draws."),
+        ("agreement", 1_024, "In 50 of 100 draws."),
+        ("vote", 1_024, "The same outcome in 50 of 100 draws."),
+        ("knife-edge", 1_024, "The same change turns the vote in 50 of 100 draws."),
+    ],
+)
+def test_what_holds_in_the_draws_holds_with_their_figures(kind, hits, said):
+    """All may settle in every draw, and yet each time on another view."""
+    finding = Finding(kind, "All settle on 45.", "Everybody hears everybody.", ("a", "b"), {})
+    assert holds(FindingOdds(finding, Odds.of(hits, 2_048), by_structure=False), 2_048) == said
+
+
 def test_a_whole_page():
     people = {"a": {"name": "Amina", "margins": {"q": 10.0}}, "b": {"name": "Bilal", "margins": {"q": 10.0}}}
     scenario = meeting([[1, 1], [1, 1]], [49, 57], question=VOTE, people=people)
@@ -110,7 +127,7 @@ def test_a_whole_page():
     assert f"Vote     At the plan's end it passes in {hundredths} of 100 draws" in page
     assert "give or take 0 where guessed, 7 where" in page.replace("\n         ", " ")
     assert "Views at the plan's end in 8 of 10 draws, the widest first\n  Amina: " in page
-    assert "What stands out, and in how many draws it does, if with other figures\n  1. " in page
+    assert "What stands out, and in how many draws it does\n  1. " in page
     assert "Worth asking about again (sampling error of the shares: up to" in page
     assert page.endswith(f"\n\n{CAUTION}\n")
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 from meetings import meeting
-from telling import kinds, talk, told
+from telling import all_told, kinds, talk, told
 
 from deliberate.scenario.values import Ballot, BallotTest, Plan, Question, Stage
 
@@ -31,6 +31,14 @@ def test_starts_on_which_the_vote_hangs() -> None:
         "those starts would move the average at the plan's end from 30 to 96.7 and turn the vote."
     )
     assert finding.people == ("a", "b")
+
+
+def test_where_nothing_is_known_that_comes_first() -> None:
+    found = all_told(meeting(EVEN, [None, None, None], question=LEVY, plan=talk(1)))
+    assert found[0].says == "Nobody's start is known, and the vote hangs on it."
+    (settles,) = [one.says for one in found if one.kind == "settles"]
+    assert settles == "Taken to be at 50 where not known, all start within 1 of each other, and they settle on 50."
+    assert kinds(meeting(EVEN, [None, None, 90], question=LEVY, plan=talk(1)))[0] != "unknown-starts"
 
 
 def test_the_vote_hangs_on_it_also_before_there_is_a_quorum() -> None:

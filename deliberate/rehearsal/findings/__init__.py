@@ -9,7 +9,7 @@ from deliberate.rehearsal.findings.bridges import bridge
 from deliberate.rehearsal.findings.edges import knife_edge
 from deliberate.rehearsal.findings.groups import closed_groups, hears_nobody, outside, unheard
 from deliberate.rehearsal.findings.settling import lasting_gap, settles, slow, unfinished
-from deliberate.rehearsal.findings.sketch import sketch_of
+from deliberate.rehearsal.findings.sketch import Sketch, sketch_of
 from deliberate.rehearsal.findings.starts import absent, unknown_starts
 from deliberate.rehearsal.findings.swings import swing
 from deliberate.rehearsal.findings.voices import carries, fixed_view
@@ -47,13 +47,19 @@ def findings(scenario: Scenario, rehearsal: Rehearsal) -> tuple[Finding, ...]:
     sketch = sketch_of(scenario, rehearsal)
     families = FAMILIES if sketch.present.any() else NOBODY_THERE
     found = [finding for family in families for finding in family(sketch)]
-    return _offering_once(_close_vote_early(_said_once(found)))
+    return _offering_once(_close_vote_early(_nothing_known_first(_said_once(found), sketch)))
 
 
 def _said_once(found: list[Finding]) -> list[Finding]:
     """Without what another finding says as well: a bridge is the reason for a slow pace."""
     bridged = any(finding.kind == "bridge" for finding in found)
     return [finding for finding in found if not (bridged and finding.kind == "slow")]
+
+
+def _nothing_known_first(found: list[Finding], sketch: Sketch) -> list[Finding]:
+    """Where nobody's start is known, that comes before all that is made of it."""
+    everybody = int(sketch.present.sum())
+    return sorted(found, key=lambda one: one.kind != "unknown-starts" or len(one.people) < everybody)
 
 
 def _close_vote_early(found: list[Finding]) -> list[Finding]:

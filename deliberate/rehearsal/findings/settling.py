@@ -27,6 +27,8 @@ def settles(sketch: Sketch) -> Iterator[Finding]:
     where, within = sketch.view(view), f"within {sketch.tolerance} of each other"
     if agreed == 0:
         says = f"All start {within}, and they settle on {where}."
+        if _guessed(sketch):
+            says = f"Taken to be at {sketch.number(sketch.question.middle)} where not known, a{says[1:]}"
     elif agreed is not None and agreed <= sketch.end:
         says = f"All settle on {where} in the sketch, {within} {since(agreed)}."
     else:
@@ -38,6 +40,12 @@ def settles(sketch: Sketch) -> Iterator[Finding]:
         people=sketch.ids(sketch.here),
         figures={"view": view} | ({} if agreed is None else {"rounds_to_agree": agreed}),
     )
+
+
+def _guessed(sketch: Sketch) -> bool:
+    """Whether somebody who is present has a start that is not known."""
+    unknown = {sketch.assembly.place[person] for person in sketch.rehearsal.unknown_starts}
+    return any(sketch.present[person] for person in unknown)
 
 
 def _why_settles(sketch: Sketch) -> str:

@@ -33,12 +33,15 @@ def unknown_starts(sketch: Sketch) -> Iterator[Finding]:
         return
     name = sketch.names(unknown)
     those = "that start" if len(unknown) == 1 else "those starts"
+    says = f"Where {name} start{ending(len(unknown))} is not known"
+    if len(unknown) == sketch.present.sum():
+        says = "Nobody's start is known" if len(unknown) > 1 else f"The start of {name} is not known"
     matter = "and the vote hangs on it" if turns else "and it matters"
     middle = sketch.number(sketch.question.middle)
     scale = f"{sketch.number(sketch.question.low)} to {sketch.number(sketch.question.high)}"
     yield Finding(
         kind="unknown-starts",
-        says=f"Where {name} start{ending(len(unknown))} is not known, {matter}.",
+        says=f"{says}, {matter}.",
         why=f"The sketch takes {middle}, the middle of the scale; over the whole scale, {scale}, {those} would move"
         f" the average {sketch.at_end} from {sketch.number(low)} to {sketch.number(high)}"
         f"{' and turn the vote' if turns else ''}.",
