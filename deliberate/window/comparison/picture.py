@@ -70,7 +70,7 @@ def paint_lines(
     painter.setFont(font)
     ordered = sorted(lines, key=lambda line: line.place == forward)
     if figure == "beliefs":
-        for line in ordered:
+        for line in reversed(ordered):  # the filled range goes below what lies within it
             _paint_range(painter, frame, line, theme, forward=line.place == forward)
         if pass_mark is not None:
             ends = [float(line.course.mean[-1]) for line in lines]

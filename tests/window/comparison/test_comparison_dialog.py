@@ -224,6 +224,28 @@ def test_without_colour_the_lines_differ(opened) -> None:
     assert 0.3 < sum(grey[1]) / len(grey[1]) < 0.9
 
 
+@pytest.mark.parametrize("forward", [0, 1])
+def test_a_range_within_the_range_brought_forward_is_seen(opened, forward: int) -> None:
+    wide, narrow = (ranging(line, place, 30.25 - 20 * place) for place, line in enumerate(opened().plot.lines[:2]))
+    frame = Frame(QRectF(0, 0, 400, 200), 0.0, 8.0, 0.0, 100.0)
+    image = QImage(400, 200, QImage.Format.Format_RGB32)
+    image.fill(QColor(LIGHT.panel))
+    with QPainter(image) as painter:
+        paint_lines(painter, frame, [wide, narrow], "beliefs", forward, None, 6, LIGHT, QFont())
+    for line in (wide, narrow):
+        at = int(frame.y(float(line.course.highest[0])))
+        near = [[image.pixelColor(x, at + by).lightness() for x in range(10, 250)] for by in (-1, 0)]
+        assert min(map(min, near)) < 170
+
+
+def ranging(line: Line, place: int, half: float) -> Line:
+    """The line of another place, with beliefs from `half` below to `half` above the middle all along."""
+    levels = {"highest": 50 + half, "mean": 50.0, "lowest": 50 - half}
+    return with_fields(
+        line, place=place, course=with_fields(line.course, **{name: np.full(7, at) for name, at in levels.items()})
+    )
+
+
 def flat(line: Line, place: int) -> Line:
     """The line of another place, at one height all along."""
     return with_fields(line, place=place, course=with_fields(line.course, spread=np.full(7, FLAT)))
