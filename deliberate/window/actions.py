@@ -152,7 +152,7 @@ class Actions(QObject):
         menu.addSeparator()
         self.loop = self._add(menu, "Begin again at the end", lambda: player.set_loop(self.loop.isChecked()))
         self.loop.setCheckable(True)
-        speeds = menu.addMenu("&Speed")
+        speeds = menu.addMenu("Spee&d")
         self.speeds = QActionGroup(self)
         for speed in SPEEDS:
             action = self._add(speeds, speed_words(speed), lambda speed=speed: player.set_speed(speed))
@@ -167,13 +167,17 @@ class Actions(QObject):
 
     def _fill_answers(self, menu: QMenu) -> None:
         """What can be asked of the sketch."""
-        pages, doubting = self._window.right_pages, self._window.session.doubting
+        doubting = self._window.session.doubting
         for place, title in enumerate(TITLES):
-            self._add(menu, title, lambda place=place: pages.turn_to(place), f"Ctrl+{place + 1}")
+            self._add(menu, title, lambda place=place: self._turn_to(place), f"Ctrl+{place + 1}")
         self.doubt = self._add(menu, "How s&ure it is", lambda: doubting.want(self.doubt.isChecked()), "Ctrl+U")
         self.doubt.setCheckable(True)
         self.doubt.setToolTip("Draws the guessed numbers again and again")
         doubting.changed.connect(lambda: self.doubt.setChecked(doubting.wanted))
+
+    def _turn_to(self, place: int) -> None:
+        self._window.right.show()
+        self._window.right_pages.turn_to(place)
 
     def _show_seating(self) -> None:
         from deliberate.window.seating import SeatingDialog
@@ -223,6 +227,12 @@ class Actions(QObject):
         self.moves.setCheckable(True)
         self.moves.setToolTip("As thick as what ten points more would move the mean, instead of as their shares")
         menu.addSeparator()
+        for text, side, shortcut in (
+            ("&Left bar", self._window.sidebar, "F3"),
+            ("&Right side", self._window.right, "Shift+F3"),
+        ):
+            self._add_side(menu, text, side, shortcut)
+        menu.addSeparator()
         self._fill_before_others(menu)
         menu.addSeparator()
         themes = menu.addMenu("&Appearance")
@@ -235,6 +245,13 @@ class Actions(QObject):
         self.still = self._add(menu, "&Jump from round to round", lambda: look.set_still(self.still.isChecked()))
         self.still.setCheckable(True)
         self.still.setChecked(look.still)
+
+    def _add_side(self, menu: QMenu, text: str, side: QWidget, shortcut: str) -> None:
+        """A side of the window that can be put away, so that the picture gets its room."""
+        action = self._add(menu, text, lambda: side.setHidden(not side.isHidden()), shortcut)
+        action.setCheckable(True)
+        action.setChecked(True)
+        menu.aboutToShow.connect(lambda: action.setChecked(not side.isHidden()))
 
     def _fill_before_others(self, menu: QMenu) -> None:
         """What is of use while others see the screen."""

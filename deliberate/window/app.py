@@ -73,6 +73,7 @@ def run(path: str | None = None) -> int:
     window.files.begin(held)
     sys.excepthook = _Loud(window)
     window.begin_with_care()
+    window.across.fit_into(window.screen().availableSize().width())
     window.show()
     if beginning.word:
         window.session.said.emit(beginning.word)

@@ -32,6 +32,13 @@ class Columns(QSplitter):
         """Take up widths that were remembered."""
         self._chosen = self.restoreState(state)
 
+    def fit_into(self, width: int) -> None:
+        """Put sides away, the left one first, until what is left has room in `width` pixels."""
+        for side in (self.widget(0), self.widget(2)):
+            needed = sum(part.minimumSizeHint().width() for part in map(self.widget, range(3)) if not part.isHidden())
+            if needed > width:
+                side.hide()
+
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         if not self._chosen:

@@ -37,6 +37,7 @@ On the picture
   + and -, Ctrl+0       zoom, fit everybody in
   Ctrl+B                arrows show the way beliefs travel, or who listens to whom
   Ctrl+L                arrows as thick as what they move, or as their points
+  F3, Shift+F3          left bar, right side: put away or back, for a larger picture
 
 In the left bar
   Alt+L, U, B, M        people, question, ballot, meeting

@@ -241,7 +241,7 @@ class Canvas(QWidget):
         return QSize(620, 560)
 
     def minimumSizeHint(self) -> QSize:
-        return QSize(240, 200)
+        return QSize(160, 160)
 
     def paintEvent(self, event: QPaintEvent) -> None:
         del event
