@@ -26,8 +26,10 @@ class VariantTabs(QTabBar):
     rename_wanted = Signal(int)
 
     def initStyleOption(self, option: QStyleOptionTab, place: int) -> None:
-        """Shorten long names by the heavier letters of the shown one, which the bar itself does not reckon with."""
+        """Shorten the shown one's name by its heavier letters, which the bar itself does not reckon with."""
         super().initStyleOption(option, place)
+        if place != self.currentIndex():
+            return
         heavy = QFont(self.font())
         heavy.setWeight(QFont.Weight.DemiBold)
         room = self.style().subElementRect(QStyle.SubElement.SE_TabBarTabText, option, self).width()
@@ -88,6 +90,7 @@ class VariantStrip(QWidget):
                 self.tabs.setTabText(place, with_ampersands(name))
                 self.tabs.setTabToolTip(place, tooltip(name))
         self.tabs.setCurrentIndex(names.index(self._session.variant.name))
+        self.tabs.updateGeometry()  # heavier letters need more room
         self._filling = False
 
     def add_copy(self) -> None:

@@ -8,7 +8,7 @@ import pytest
 from circles import CIRCLES
 from msgspec.structs import replace
 from PySide6.QtGui import QFont, QFontMetrics
-from PySide6.QtWidgets import QStyle, QStyleOptionTab
+from PySide6.QtWidgets import QApplication, QStyle, QStyleOptionTab
 from pytestqt.qtbot import QtBot
 
 from deliberate.window.session import Session
@@ -29,6 +29,7 @@ def test_the_name_of_the_shown_variant_is_shortened_at_its_end_only(
     strip.setStyleSheet(style_sheet(LIGHT))
     strip.resize(700, 40)
     strip.show()
+    qtbot.waitExposed(strip)
     option = QStyleOptionTab()
     strip.tabs.initStyleOption(option, 0)
     bold = QFont(strip.tabs.font())
@@ -38,3 +39,22 @@ def test_the_name_of_the_shown_variant_is_shortened_at_its_end_only(
     assert QFontMetrics(bold).horizontalAdvance(shown) <= room.width()
     assert name.startswith(shown.removesuffix("…"))
     assert (shown == name) == (name == "Short")
+
+
+def test_names_that_have_room_are_whole(qtbot: QtBot, open_session: Callable[..., Session]) -> None:
+    names = ("As it stands", "Mixed workshops", "Amina and Emeka meet")
+    first = CIRCLES.variants[0]
+    session = open_session(replace(CIRCLES, variants=tuple(replace(first, name=name) for name in names)))
+    strip = VariantStrip(session)
+    qtbot.addWidget(strip)
+    strip.setStyleSheet(style_sheet(LIGHT))
+    strip.resize(900, 40)
+    strip.show()
+    qtbot.waitExposed(strip)
+    for shown in names:
+        session.show_variant(shown)
+        QApplication.processEvents()  # lays the names out anew
+        for place, name in enumerate(names):
+            option = QStyleOptionTab()
+            strip.tabs.initStyleOption(option, place)
+            assert option.text == name
