@@ -72,12 +72,9 @@ class RowSource:
 
     def _row_shares(self, network: Network) -> tuple[Floats, Floats]:
         """(n,) own shares and (m,) shares by arrow, before any stage or absence."""
-        largest = network.own.copy()
-        np.maximum.at(largest, network.listener, network.weight)
-        alone = largest == 0
-        largest = np.where(alone, 1.0, largest)  # divided by first, so that sums neither overflow nor vanish
-        own, points = np.where(alone, 1.0, network.own / largest), network.weight / largest[network.listener]
+        own, points = network.in_parts()
         total = own + self._by_listener @ points
+        own[total == 0] = total[total == 0] = 1.0
         share = points / total[network.listener]
         return (
             np.where(network.own > 0, np.maximum(own / total, TINY), own / total),

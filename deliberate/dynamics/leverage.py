@@ -50,15 +50,13 @@ class RowChanges:
 
 def weight_shares(network: Network) -> Floats:
     """(n, n) everybody's weights as shares of 1, own view on the diagonal, before any stage or absence."""
-    largest = np.maximum(network.own, 0.0)
-    np.maximum.at(largest, network.listener, network.weight)
-    largest[largest == 0] = 1.0
+    own, points = network.in_parts()
     weights = np.zeros((network.people, network.people))
-    weights[network.listener, network.source] = network.weight / largest[network.listener]
-    np.fill_diagonal(weights, network.own / largest)
-    total = weights.sum(axis=1)
-    np.fill_diagonal(weights, np.where(total == 0, 1.0, weights.diagonal()))
-    return weights / np.where(total == 0, 1.0, total)[:, None]
+    weights[network.listener, network.source] = points
+    np.fill_diagonal(weights, own)
+    alone = np.flatnonzero(~weights.any(axis=1))
+    weights[alone, alone] = 1.0
+    return weights / weights.sum(axis=1)[:, None]
 
 
 def heard_pairs(network: Network, heard: Mask | None) -> Mask:
@@ -252,8 +250,8 @@ def pull_at_end(
     """What the result after `rounds` rounds gains per share of weight, (n, n), and per unit of each start, (n,).
 
     Entry [i, j] is the derivative by the weight that i gives j, where i's weights are shares of 1; only differences
-    within a row have a meaning. audible: one (n, n) mask per block, True where an arrow would count if it were drawn;
-    by default where one does.
+    within a row have a meaning; NaN where a size is beyond double range. audible: one (n, n) mask per block, True
+    where an arrow would count if it were drawn; by default where one does.
     """
     steps = [block_at(process, at) for at in range(rounds)]
     beliefs = np.empty((rounds + 1, len(starts)))
@@ -276,14 +274,13 @@ def pull_at_end(
     return pull, voices[0] + to_starts
 
 
-@np.errstate(over="ignore", invalid="ignore")  # both end as NaN
+@np.errstate(over="ignore", invalid="ignore")  # `_by_weight` makes NaN of both
 def pull_in_long_run(
     process: Process, starts: Floats, lasting: Lasting, audible: Sequence[Mask] | None = None
 ) -> tuple[Floats, Floats]:
     """`pull_at_end` for the long run of a plan that is not repeated; lasting: `Lasting.of(process, voice)`.
 
-    NaN where an arrow from a closed group to others would merge groups, so that the long run would jump, and where
-    groups hear each other so little that the rate is beyond double range.
+    NaN also where an arrow from a closed group to others would merge groups, so that the long run would jump.
     """
     track = course(process)
     reached = lasting.reached
@@ -298,9 +295,7 @@ def pull_in_long_run(
     pull = _by_weight(process, len(process.blocks) - 1, worth, audible)
     voice_before, to_starts = reached.give_back(lasting.voice)
     earlier, counts = pull_at_end(process, starts, track.rounds_before, voice_before, audible)
-    pull += earlier
-    pull[~np.isfinite(pull)] = np.nan
-    return pull, counts + to_starts
+    return pull + earlier, counts + to_starts
 
 
 def _moved(process: Process, index: int, beliefs: Floats, starts: Floats) -> Floats:
@@ -308,14 +303,17 @@ def _moved(process: Process, index: int, beliefs: Floats, starts: Floats) -> Flo
     return process.firmness * starts + (1 - process.firmness) * heard
 
 
+@np.errstate(over="ignore", invalid="ignore")
 def _by_weight(process: Process, index: int, worth: Floats, audible: Sequence[Mask] | None) -> Floats:
-    """From what a share is worth in one block, (n, n), to what the weight behind it is worth there."""
+    """From what a share is worth in one block, (n, n), to what the weight behind it is worth there; NaN where that is
+    beyond double range."""
     block, network = process.blocks[index], process.network
     heard = heard_pairs(network, block.heard)
     open_to = heard if audible is None else audible[index] & network.present & network.present[:, None]
     own = worth.diagonal()[:, None]
     if block.unheard == "own":
-        return np.where(open_to, worth, own)
+        pull = np.where(open_to, worth, own)
+        return np.where(np.isfinite(pull), pull, np.nan)
     weights = weight_shares(network)
     counted = np.where(heard, weights, 0.0)
     np.fill_diagonal(counted, weights.diagonal())
@@ -324,4 +322,5 @@ def _by_weight(process: Process, index: int, worth: Floats, audible: Sequence[Ma
     mean = np.where(counted > 0, worth * counted, 0.0).sum(axis=1) / np.where(alone, 1.0, total)
     gained = (worth - mean[:, None]) / np.where(alone, 1.0, total)[:, None]
     np.fill_diagonal(open_to, True)
-    return np.where(open_to & ~alone[:, None], gained, 0.0)
+    pull = np.where(open_to & ~alone[:, None], gained, 0.0)
+    return np.where(np.isfinite(pull), pull, np.nan)

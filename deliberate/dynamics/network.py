@@ -56,3 +56,11 @@ class Network:
     def arrows(self) -> int:
         """How many arrows there are, whether they count at the moment or not."""
         return len(self.weight)
+
+    def in_parts(self) -> tuple[Floats, Floats]:
+        """(n,) own weights and (m,) weights by arrow, as parts of the largest in their row: so sums of a row neither
+        overflow nor vanish."""
+        largest = self.own.copy()
+        np.maximum.at(largest, self.listener, self.weight)
+        largest[largest == 0] = 1.0
+        return self.own / largest, self.weight / largest[self.listener]

@@ -23,3 +23,11 @@ def test_sums_by_index():
     nothing = sum_by(np.zeros(0, dtype=np.intp), np.zeros(0), 2)
     assert nothing.dtype == np.float64
     assert nothing.tolist() == [0, 0]
+
+
+def test_parts_of_the_largest_weight_neither_overflow_nor_vanish():
+    huge, tiny = 1.7e308, 5e-324
+    network = network_of([[huge, huge, huge], [0, tiny, tiny], [0, 0, 0]])
+    own, points = network.in_parts()
+    assert own.tolist() == [1, 1, 0]
+    assert points.tolist() == [1, 1, 1]

@@ -169,6 +169,15 @@ def test_arrows_without_a_rate_are_null():
     assert None not in told["arrows_at_end"]
 
 
+@pytest.mark.parametrize("unheard", ["own", "rescale"])
+def test_weights_at_the_ends_of_double_range(unheard):
+    plan = Plan((Stage("Tables", 2, "tables", unheard, tables=(("a", "b"), ("c",))), Stage("Plenary", 2)))
+    odd = meeting([[1.7e308, 5e-324, 1.7e308], [5e-324, 0, 1.7e308], [1.7e308, 1.7e308, 0]], [10, 50, 90], plan=plan)
+    told = leverage_to_json(odd, leverage(odd))
+    json.dumps(told, allow_nan=False)
+    assert all(math.isfinite(lever["at_end"]) for lever in told["levers"])
+
+
 def test_large_meetings_in_which_groups_hardly_hear_each_other_are_refused():
     people = tuple(Person(f"p{at}", own_weight=50.0) for at in range(102))
     in_pairs = tuple(Arrow(f"p{at}", f"p{at ^ 1}", 50.0) for at in range(102))

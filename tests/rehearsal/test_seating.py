@@ -51,6 +51,15 @@ def test_mixed_tables_bring_circles_closer():
     assert told.cautions(found, CIRCLES.variants[0]) == ()
 
 
+def test_weights_at_the_ends_of_double_range_after_the_tables():
+    plan = Plan((Stage("Panel", 2, "panel", speakers=("a",)),))
+    question = Question("q", "What is asked?", 0, 100, hearing_range=60.0)
+    heavy = meeting(np.full((4, 4), 1.7e308).tolist(), [10, 50, 60, 90], plan=plan, question=question)
+    light = meeting(np.ones((4, 4)).tolist(), [10, 50, 60, 90], plan=plan, question=question)
+    wish = Wish(tables=2, rotations=1)
+    assert seat(heavy, None, None, wish).after == pytest.approx(seat(light, None, None, wish).after)
+
+
 @pytest.mark.parametrize("goal", ["less-spread", "more-voices"])
 @pytest.mark.parametrize("place", ["before", "after", "instead"])
 def test_the_variant_does_what_was_told_to_the_digit(goal, place):

@@ -145,9 +145,8 @@ def _only(network: Network, block: Block) -> Network:
     """The network in which nothing but what counts in the block is drawn."""
     if block.heard is None:
         return network
-    unheard = ~block.heard
-    own = network.own
+    own, points = network.in_parts()
     if block.unheard == "own":
-        own = own + sum_by(network.listener[unheard], network.weight[unheard], network.people)
-    weight = np.where(block.heard, network.weight, 0.0)
+        own = own + sum_by(network.listener, np.where(block.heard, 0.0, points), network.people)
+    weight = np.where(block.heard, points, 0.0)
     return Network(own, network.listener, network.source, weight, network.present)

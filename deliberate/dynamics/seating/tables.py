@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from deliberate.dynamics.network import Floats, Indices, Mask, Network
+from deliberate.dynamics.network import Floats, Indices, Mask, Network, sum_by
 from deliberate.dynamics.shares import Unheard
 
 
@@ -33,13 +33,16 @@ class TableTalk:
         self.rounds = rounds
         self._reach = reach
         self._spread_out = unheard == "rescale"
-        points, own = row_points(network)
+        own, points = network.in_parts()
+        heard = network.present[network.source]
+        both = heard & network.present[network.listener]
         # The last row and column stand for an empty chair: it hears only itself, and nobody hears it.
-        self._points = np.pad(points, (0, 1))
+        self._points = np.zeros((network.people + 1, network.people + 1))
+        self._points[network.listener[both], network.source[both]] = points[both]
         self._own = np.append(own, 0.0)
         # By the own rule what the absent are given goes to the own view as well.
-        absent = np.bincount(network.listener, _absent_points(network), network.people)
-        self._whole = np.append(own + absent / _largest(network), 0.0) + self._points.sum(axis=1)
+        to_absent = sum_by(network.listener, np.where(heard, 0.0, points), network.people)
+        self._whole = np.append(own + to_absent, 0.0) + self._points.sum(axis=1)
         self._firmness = np.append(firmness, 0.0)[:, None]
         self._starts = np.append(starts, 0.0)[:, None]
 
@@ -91,24 +94,3 @@ class TableTalk:
         chair = np.arange(seats.shape[-1])
         shares[..., chair, chair] = np.where(alone, 1.0, np.maximum(whole - heard, 0.0) / whole)
         return shares
-
-
-def row_points(network: Network) -> tuple[Floats, Floats]:
-    """(n, n) points for those present and (n,) for the own view, each row divided by its largest weight."""
-    points = np.zeros((network.people, network.people))
-    both = network.present[network.listener] & network.present[network.source]
-    listener, source = network.listener[both], network.source[both]
-    largest = _largest(network)
-    points[listener, source] = network.weight[both] / largest[listener]
-    return points, network.own / largest
-
-
-def _largest(network: Network) -> Floats:
-    """(n,) the largest weight in each row, so that sums neither overflow nor vanish; 1 where there is none."""
-    largest = network.own.copy()
-    np.maximum.at(largest, network.listener, network.weight)
-    return np.where(largest > 0, largest, 1.0)
-
-
-def _absent_points(network: Network) -> Floats:
-    return np.where(network.present[network.source], 0.0, network.weight)
