@@ -9,8 +9,8 @@ from types import SimpleNamespace
 
 import numpy as np
 import pytest
-from PySide6.QtCore import QPointF, QSettings
-from PySide6.QtGui import QPixmap
+from PySide6.QtCore import QPointF, QSettings, Qt
+from PySide6.QtGui import QAccessible, QPixmap
 from PySide6.QtTest import QTest
 
 from deliberate.scenario.values import Arrow, FrozenDict, Person, Question, Scenario, Variant
@@ -21,6 +21,7 @@ from deliberate.window.theme import Look
 SIZES = {"40 people": (40, 300), "150 people": (150, 1500), "500 people": (500, 5000)}
 PLAY_MS = {40: 5, 150: 10, 500: 12}
 MOVING_MS, FIRST_DRAG_MS, OPEN_MS = 16, 33, 1000
+KEY_MS, READ_ALL_MS = 33, 1000
 
 
 def crowd(people: int, arrows: int) -> Scenario:
@@ -134,6 +135,36 @@ def test_panning_and_zooming(benchmark, shown, by: str) -> None:
 
     benchmark.pedantic(frame, rounds=40, warmup_rounds=2)
     within(benchmark, MOVING_MS)
+
+
+@pytest.mark.parametrize("key", [Qt.Key.Key_Tab, Qt.Key.Key_W], ids=["next person", "next arrow"])
+def test_one_step_by_key(benchmark, shown, key: Qt.Key) -> None:
+    canvas = shown.canvas
+    canvas.setFocus()
+    QTest.keyClick(canvas, Qt.Key.Key_Tab)
+
+    def step() -> None:
+        QTest.keyClick(canvas, key)
+        canvas.render(shown.page)
+
+    benchmark.pedantic(step, rounds=20, warmup_rounds=2)
+    within(benchmark, KEY_MS)
+
+
+def test_a_screen_reader_walks_all(benchmark, shown) -> None:
+    """Name, description, place and number of everybody and every arrow."""
+    read = QAccessible.queryAccessibleInterface(shown.canvas)
+
+    def walk() -> None:
+        for number in range(read.childCount()):
+            item = read.child(number)
+            assert item.text(QAccessible.Text.Name)
+            assert item.text(QAccessible.Text.Description)
+            assert read.indexOfChild(item) == number
+            item.rect()
+
+    benchmark.pedantic(walk, rounds=3)
+    within(benchmark, READ_ALL_MS)
 
 
 def test_opening(benchmark, qtbot, tmp_path: Path) -> None:

@@ -26,9 +26,9 @@ _alive: set[QAccessibleInterface] = set()
 class Item(QAccessibleInterface):
     """A person or an arrow."""
 
-    def __init__(self, canvas: Canvas, hit: Hit) -> None:
+    def __init__(self, canvas: Canvas, hit: Hit, number: int) -> None:
         super().__init__()
-        self._reference, self._hit = weakref.ref(canvas), hit
+        self._reference, self._hit, self.number = weakref.ref(canvas), hit, number
 
     @property
     def _canvas(self) -> Canvas:
@@ -136,12 +136,13 @@ class AccessibleCanvas(QAccessibleWidget):
         if index not in self._items:
             people = len(self._canvas.picture.scene.ids)
             hit = Hit("person", index) if index < people else Hit("arrow", index - people)
-            self._items[index] = Item(self._canvas, hit)
+            self._items[index] = Item(self._canvas, hit, index)
             QAccessible.registerAccessibleInterface(self._items[index])
         return self._items[index]
 
     def indexOfChild(self, child: QAccessibleInterface) -> int:
-        return next((index for index, item in self._items.items() if item is child), -1)
+        # A reader may ask this of thousands: no search through all of them.
+        return child.number if isinstance(child, Item) and self._items.get(child.number) is child else -1
 
     def childAt(self, x: int, y: int) -> QAccessibleInterface | None:
         at = self._canvas.mapFromGlobal(QPoint(x, y)).toPointF()
