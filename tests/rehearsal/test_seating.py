@@ -175,7 +175,7 @@ def test_one_condition_alone_can_be_too_much():
     lonely = edits.remove_arrows(lonely, [(other, "a") for other in "bcdefgh"], variant=NAME)
     with pytest.raises(DeliberateError) as refused:
         seat(lonely, None, None, Wish(tables=2, linked=True))
-    assert str(refused.value) == ("this cannot be met with 2 tables of 4: everybody hears or is heard at her table")
+    assert str(refused.value) == ("this cannot be met with 2 tables of 4: everybody hears or is heard at their table")
 
 
 def test_no_arrow_is_invented():

@@ -34,7 +34,7 @@ def add_options(parser: argparse.ArgumentParser) -> None:
     for name, what in (("--together", "two who sit at one table"), ("--apart", "two who never do")):
         parser.add_argument(name, metavar="ID", nargs=2, action="append", default=[], help=what)
     parser.add_argument("--role", action="append", default=[], help="a role that every table needs")
-    parser.add_argument("--linked", action="store_true", help="everybody hears or is heard at her table")
+    parser.add_argument("--linked", action="store_true", help="everybody hears or is heard at their table")
 
 
 def wish_of(options: argparse.Namespace) -> Wish:

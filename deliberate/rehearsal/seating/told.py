@@ -27,7 +27,7 @@ def condition_words(
             return f"{names(about, variant)} never at one table"
         case "role", str():
             return f'somebody with the role "{about}" at every table'
-    return "everybody hears or is heard at her table"
+    return "everybody hears or is heard at their table"
 
 
 def summary(seating: Seating, question: Question) -> str:

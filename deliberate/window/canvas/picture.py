@@ -226,7 +226,7 @@ class Picture:
         if idle:
             lines.append(f"{amount(idle)} arrows that do not count in this stage are not shown")
         if weak:
-            lines.append(f"{amount(weak)} weak arrows are not shown: select somebody to see hers")
+            lines.append(f"{amount(weak)} weak arrows are not shown: select somebody to see theirs")
         elif int((look.shown & (look.manner == WEAK)).sum()):
             lines.append("The weaker arrows are drawn thin")
         return lines

@@ -53,7 +53,7 @@ class ConditionsEditor(QWidget):
         self.every = plain_label(self, text="At every table somebody with the role", muted=True)
         self.role = Choice("Role that every table needs", self)
         self.add_role = _small("Add", "Add: somebody with this role at every table", self)
-        self.linked = QCheckBox("Everybody hears or is heard at her table", self)
+        self.linked = QCheckBox("Everybody hears or is heard at their table", self)
         self.list = QListWidget(self)
         self.list.setAccessibleName("Conditions")
         self.list.setWordWrap(True)

@@ -22,7 +22,7 @@ PLACES = [
     ("after the other stages", "after"),
     ("instead of its table stages", "instead"),
 ]
-UNHEARD = [("go to her own table", "rescale"), ("go to her own view", "own")]
+UNHEARD = [("go to the own table", "rescale"), ("go to the own view", "own")]
 
 
 class WishForm(QWidget):

@@ -315,7 +315,7 @@ def test_weak_arrows_of_a_crowd_step_back_and_come_with_the_selection(open_canva
     look = canvas.picture.look()
     assert look.shown.sum() == DRAWN
     assert (look.manner[look.shown] == WEAK).sum() >= DRAWN - 2 * STRONG
-    assert canvas.picture.legend()[1] == "1,400 weak arrows are not shown: select somebody to see hers"
+    assert canvas.picture.legend()[1] == "1,400 weak arrows are not shown: select somebody to see theirs"
     canvas.session.select(["p7"])
     scene, shown = canvas.picture.scene, canvas.picture.look().shown
     hers = (scene.listener == 7) | (scene.source == 7)

@@ -71,7 +71,7 @@ def test_the_fields_make_the_wish(qtbot: QtBot, open_dialog: Open) -> None:
     for spin, key in ((form.rotations, Qt.Key.Key_Up), (form.rounds, Qt.Key.Key_Down)):
         spin.setFocus()
         QTest.keyClick(spin, key)
-    choose(form.unheard, "go to her own view")
+    choose(form.unheard, "go to the own view")
     choose(form.place, "after")
     wish = form.wish
     assert (wish.rotations, wish.rounds, wish.unheard, wish.place) == (3, 1, "own", "after")
