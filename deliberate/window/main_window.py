@@ -29,7 +29,6 @@ from deliberate.window.chart import ChartPanel
 from deliberate.window.columns import Columns
 from deliberate.window.held_file import Locks
 from deliberate.window.meeting_files import MeetingFiles, dropped_file
-from deliberate.window.projector import ProjectorChoice, ProjectorView
 from deliberate.window.recent import RecentFiles
 from deliberate.window.recovery import Recovery
 from deliberate.window.right_pages import RightPages
@@ -221,6 +220,8 @@ class MainWindow(QMainWindow):
 
     def ask_projector(self) -> None:
         """Ask for codes or names, then fill a screen."""
+        from deliberate.window.projector import ProjectorChoice, ProjectorView  # when it is asked for, as dialogs
+
         if self.findChild(ProjectorView) is not None:
             return
         choice = ProjectorChoice(self)
@@ -230,6 +231,8 @@ class MainWindow(QMainWindow):
 
     def project(self, codes: bool, screen: QScreen) -> None:
         """Fill `screen` with picture, round bar and one sentence, in codes or names."""
+        from deliberate.window.projector import ProjectorView
+
         self.session.show_codes(codes)
         view = ProjectorView(self.session, self.look, self)
         view.blank_wanted.connect(self.blank.begin)
