@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.results import Rehearsal
-from deliberate.rehearsal.words import number, with_unit
+from deliberate.rehearsal.words import ballot, number, with_unit
 from deliberate.scenario.values import Question, Variant
 
 SETTLES = "Settles"
@@ -96,11 +96,7 @@ def voices(rehearsal: Rehearsal) -> str:
 
 def vote(rehearsal: Rehearsal) -> str:
     """The ballots at the plan's end and what they come to."""
-    tally = rehearsal.ballot[-1] if rehearsal.ballot else None
-    if tally is None:
-        return "no vote"
-    outcome = "passes" if tally.passes else "does not pass"
-    return f"{tally.in_favour:g} for, {tally.against:g} against: {outcome}"
+    return ballot(rehearsal.ballot[-1]) if rehearsal.ballot else "no vote"
 
 
 def present(variant: Variant) -> NDArray[np.bool_]:

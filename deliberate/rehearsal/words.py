@@ -11,6 +11,7 @@ import unicodedata
 from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 
+from deliberate.rehearsal.results import Tally
 from deliberate.scenario.values import AgreementTest, Question, Variant
 
 _STEPS = 1000  # a figure is shown to about this part of the scale: 0.714 of 1, 71.4 of 100, 714 of 1000
@@ -100,6 +101,24 @@ def agreement_test(test: AgreementTest, question: Question) -> str:
             return f"quartile range at most {number(test.at_most, question, beside=0.0)}"
         case "spread":
             return f"spread at most {number(test.at_most, question, beside=0.0)}"
+
+
+def votes(tally: Tally) -> str:
+    """The votes counted: "4 for, 3 against, 1 abstaining, 2 objecting", the last two where there are any."""
+    abstaining = f", {amount(tally.abstain)} abstaining" if tally.abstain else ""
+    objecting = f", {amount(tally.objecting)} objecting" if tally.objecting else ""
+    return f"{amount(tally.in_favour)} for, {amount(tally.against)} against{abstaining}{objecting}"
+
+
+def outcome(tally: Tally) -> str:
+    """What comes of the votes: "passes", "does not pass", "cannot pass without a quorum"."""
+    return "passes" if tally.passes else "does not pass" if tally.quorum_met else "cannot pass without a quorum"
+
+
+def ballot(tally: Tally) -> str:
+    """The votes and what comes of them: "4 for, 3 against: passes"."""
+    nobody = tally.in_favour == tally.against == tally.abstain == 0
+    return "nobody votes" if nobody and tally.quorum_met else f"{votes(tally)}: {outcome(tally)}"
 
 
 def listing(parts: Sequence[str]) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from deliberate.rehearsal.results import Rehearsal
+from deliberate.rehearsal.words import ballot
 from deliberate.window.doubting import Doubting
 
 CAUTION = "A sketch, not a forecast of people"
@@ -15,9 +16,6 @@ def vote_in_words(rehearsal: Rehearsal | None, round_: int, doubting: Doubting) 
         return ""
     at = min(round_, len(rehearsal.ballot) - 1)
     tally = rehearsal.ballot[at]
-    outcome = "passes" if tally.passes else "does not pass"
-    abstain = f", {tally.abstain:g} abstaining" if tally.abstain else ""
     drawn = doubting.outcome_in_words(at, tally.passes)
     odds = f", as in {drawn}" if drawn else ""
-    counts = f"{tally.in_favour:g} for, {tally.against:g} against{abstain}"
-    return f"Round {at}, by the sketch: {counts}: {outcome}{odds}"
+    return f"Round {at}, by the sketch: {ballot(tally)}{odds}"

@@ -3,6 +3,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from deliberate.rehearsal import words
+from deliberate.rehearsal.results import Tally
 from deliberate.scenario.values import AgreementTest, Person, Question, Variant
 
 
@@ -117,6 +118,23 @@ def test_people_of_one_name_are_told_apart_by_id():
 
 def test_a_sentence_begins_with_a_capital():
     assert words.sentence("views settle on Ada's") == "Views settle on Ada's"
+
+
+@pytest.mark.parametrize(
+    ("tally", "said"),
+    [
+        (Tally(4, 3, 0, 0, quorum_met=True, passes=True), "4 for, 3 against: passes"),
+        (
+            Tally(4, 3, 1.5, 2, quorum_met=True, passes=False),
+            "4 for, 3 against, 1.5 abstaining, 2 objecting: does not pass",
+        ),
+        (Tally(1, 0, 0, 0, quorum_met=False, passes=False), "1 for, 0 against: cannot pass without a quorum"),
+        (Tally(0, 0, 0, 0, quorum_met=False, passes=False), "0 for, 0 against: cannot pass without a quorum"),
+        (Tally(0, 0, 0, 0, quorum_met=True, passes=False), "nobody votes"),
+    ],
+)
+def test_a_ballot_in_words(tally, said):
+    assert words.ballot(tally) == said
 
 
 @pytest.mark.parametrize("name", ["\u05de\u05e8\u05d9\u05dd", "\u0646\u0648\u0631 4", "Noor (\u0646\u0648\u0631)"])

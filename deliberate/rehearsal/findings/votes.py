@@ -11,7 +11,7 @@ from msgspec.structs import replace
 
 from deliberate.rehearsal.findings.sketch import Indices, Mask, Sketch, is_are, round_name, since
 from deliberate.rehearsal.results import Finding, Tally
-from deliberate.rehearsal.words import amount, count, sentence
+from deliberate.rehearsal.words import amount, count, outcome, sentence, votes
 from deliberate.scenario.rules import exact, rule_in_words
 
 
@@ -25,7 +25,7 @@ def vote(sketch: Sketch) -> Iterator[Finding]:
     objecting = sides[-1]
     yield Finding(
         kind="vote",
-        says=f"By the sketch the vote would be {_counted(last)} {sketch.at_end}: it {_outcome(last)}.",
+        says=f"By the sketch the vote would be {votes(last)} {sketch.at_end}: it {outcome(last)}.",
         why=_why_vote(sketch, tallies, objecting),
         people=sketch.ids(objecting if len(objecting) else sketch.voters),
         figures={
@@ -38,16 +38,6 @@ def vote(sketch: Sketch) -> Iterator[Finding]:
         | _changes_as_figures(tallies),
         groups=tuple(sketch.ids(side) for side in sides[:3] if len(side)),
     )
-
-
-def _counted(tally: Tally) -> str:
-    abstaining = f", {amount(tally.abstain)} abstaining" if tally.abstain else ""
-    objecting = f", {amount(tally.objecting)} objecting" if tally.objecting else ""
-    return f"{amount(tally.in_favour)} for, {amount(tally.against)} against{abstaining}{objecting}"
-
-
-def _outcome(tally: Tally) -> str:
-    return "passes" if tally.passes else "does not pass" if tally.quorum_met else "cannot pass without a quorum"
 
 
 def _sides(sketch: Sketch) -> list[Indices]:

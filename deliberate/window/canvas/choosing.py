@@ -19,7 +19,7 @@ if TYPE_CHECKING:
     from deliberate.window.canvas.canvas import Canvas
 
 _TELLS = {
-    "tables": "Click a person to change to the next table; with people selected, type the table's number (0: none)",
+    "tables": "Click somebody to seat them at the next table; with people selected, type a table's number (0: none)",
     "panel": "Click the people who speak; everybody hears only them",
     "pairs": "Click two people who talk with each other; click them again to part them",
 }

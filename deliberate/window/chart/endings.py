@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from deliberate.rehearsal.results import Rehearsal
-from deliberate.rehearsal.words import number
+from deliberate.rehearsal.words import ballot, number, votes
 from deliberate.scenario.values import Question
 
 MOST_LINES = 4
@@ -62,9 +62,11 @@ def ballot_in_words(rehearsal: Rehearsal) -> str:
         return ""
     passes = [tally.passes for tally in rehearsal.ballot]
     last = rehearsal.ballot[-1]
-    counts = f"{last.in_favour:g} for, {last.against:g} against"
+    counts = votes(last)
     if all(passes):
         return f"{counts}: passes at every round"
+    if not last.quorum_met or not last.in_favour + last.against + last.abstain:
+        return ballot(last)
     if not any(passes):
         return f"{counts}: does not pass at any round"
     changes = [at for at in range(1, len(passes)) if passes[at] != passes[at - 1]]

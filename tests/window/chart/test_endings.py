@@ -58,5 +58,10 @@ def test_the_ballot_is_told_in_one_line() -> None:
     assert ballot_in_words(rehearse(SWAP)) == "1 for, 1 against: does not pass at any round"
     people = (person("A", 90.0, (0.0, 0.0), own=50.0), person("B", 40.0, (100.0, 0.0), own=50.0))
     rising = meeting(people, (Arrow("b", "a", 50.0),))
+    unknown = (person("A", None, (0.0, 0.0)), person("B", 40.0, (100.0, 0.0)))
+    assert ballot_in_words(rehearse(meeting(unknown, ()))) == (
+        "0 for, 1 against, 1 abstaining: does not pass at any round"
+    )
+    assert ballot_in_words(rehearse(meeting((), ()))) == "nobody votes"
     told = ballot_in_words(rehearse(rising, AS_IT_STANDS))
     assert told == "2 for, 0 against: passes from round 1 on"
