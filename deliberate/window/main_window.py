@@ -36,6 +36,7 @@ from deliberate.window.roundbar import RoundBar
 from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.styles import style_sheet
+from deliberate.window.tab_order import tab_to_next
 from deliberate.window.text import ElidedLabel, strong
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
@@ -267,6 +268,9 @@ class MainWindow(QMainWindow):
         self.session.rehearse()
         self.chart.load()
         self.files.offer_leftovers()
+
+    def focusNextPrevChild(self, forward: bool) -> bool:
+        return tab_to_next(self, self.centralWidget(), forward=forward) or super().focusNextPrevChild(forward)
 
     def changeEvent(self, event: QEvent) -> None:
         super().changeEvent(event)

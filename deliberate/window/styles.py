@@ -9,6 +9,7 @@ from deliberate.window.theme import Theme
 def style_sheet(theme: Theme) -> str:
     """Quiet fields, hairlines, one accent for what has the focus or is chosen."""
     tick = (resources() / f"tick-{theme.name}.svg").as_posix()
+    down = (resources() / f"down-{theme.name}.svg").as_posix()
     return f"""
     QLabel[muted="true"] {{ color: {theme.muted}; }}
     QWidget[hairline="true"] {{ background: {theme.line}; }}
@@ -53,9 +54,21 @@ def style_sheet(theme: Theme) -> str:
     QLineEdit:focus, QPlainTextEdit:focus {{ border: 2px solid {theme.accent}; padding: 2px 5px; }}
     QLineEdit:disabled {{ color: {theme.muted}; background: {theme.raised}; border-color: {theme.raised}; }}
     QTableView, QListView {{
-        background: {theme.panel}; border: none; gridline-color: {theme.line};
+        background: {theme.panel}; border: 1px solid {theme.panel}; gridline-color: {theme.line};
         selection-background-color: {theme.tint}; selection-color: {theme.ink};
     }}
+    QTableView:focus, QListView:focus {{ border: 1px solid {theme.accent}; }}
+    QComboBox {{
+        background: {theme.raised}; border: 1px solid {theme.mark}; border-radius: 5px; padding: 3px 4px 3px 8px;
+        color: {theme.ink}; min-height: 16px;
+    }}
+    QComboBox:focus {{ border: 2px solid {theme.accent}; padding: 2px 3px 2px 7px; }}
+    QComboBox:disabled {{ color: {theme.muted}; border-color: {theme.line}; }}
+    QComboBox::drop-down {{ border: none; width: 18px; }}
+    QComboBox::down-arrow {{ image: url("{down}"); width: 11px; height: 11px; }}
+    QComboBox QAbstractItemView {{ background: {theme.panel}; border: 1px solid {theme.line}; }}
+    QSlider {{ border: 1px solid transparent; border-radius: 4px; }}
+    QSlider:focus {{ border-color: {theme.accent}; }}
     QListWidget::item {{ padding: 7px 10px; border-radius: 4px; }}
     QListWidget::item:selected {{ background: {theme.tint}; color: {theme.ink}; }}
     QHeaderView {{ background: {theme.panel}; }}
@@ -76,7 +89,7 @@ def style_sheet(theme: Theme) -> str:
         background: {theme.raised}; color: {theme.ink}; border-color: {theme.line}; font-weight: 600;
     }}
     QTabBar::tab:hover {{ color: {theme.accent}; }}
-    QTabBar:focus::tab:selected {{ border-color: {theme.accent}; }}
+    QTabBar::tab:selected:focus {{ border: 2px solid {theme.accent}; padding: 4px 11px; }}
     QTabBar QToolButton {{ padding: 2px; }}
     QTabBar[words="true"] {{ margin-left: 5px; }}
     QTabBar[words="true"]::tab {{

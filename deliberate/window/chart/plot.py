@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pyqtgraph as pg
 from PySide6.QtCore import QEvent, QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QImage, QKeyEvent, QMouseEvent, QPainter
+from PySide6.QtGui import QColor, QFocusEvent, QImage, QKeyEvent, QMouseEvent, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
 from deliberate.rehearsal.doubt_results import Doubt
@@ -166,6 +166,21 @@ class BeliefChart(pg.GraphicsLayoutWidget):
         if doubt is None or rehearsal is None or doubt.beliefs.shape[1:] != rehearsal.rounds.shape:
             return None
         return doubt
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        super().paintEvent(event)
+        if self.hasFocus():
+            with QPainter(self.viewport()) as painter:
+                painter.setPen(QColor(self._look.theme.accent))
+                painter.drawRect(self.viewport().rect().adjusted(0, 0, -1, -1))
+
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        super().focusInEvent(event)
+        self.viewport().update()
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        super().focusOutEvent(event)
+        self.viewport().update()
 
     def _share_height(self) -> None:
         """Give the strips their rows, or leave the room to the curves."""
