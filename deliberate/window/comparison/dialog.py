@@ -82,8 +82,8 @@ class ComparisonDialog(QDialog):
         header.setSectionResizeMode(0, QHeaderView.ResizeMode.Interactive)
         header.resizeSection(0, NAME_WIDTH)
         header.setFixedHeight(2 * header.fontMetrics().height() + 12)
-        table.verticalHeader().setDefaultSectionSize(2 * header.fontMetrics().height() + 10)
-        table.verticalHeader().setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
+        table.verticalHeader().setMinimumSectionSize(2 * header.fontMetrics().height() + 10)
+        table.verticalHeader().setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
         table.selectionModel().currentRowChanged.connect(self._bring_forward)
         return table
 

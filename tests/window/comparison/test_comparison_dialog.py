@@ -13,7 +13,7 @@ from circles import AS_IT_STANDS, CIRCLES, SWAP
 from msgspec.structs import replace
 from PySide6.QtCore import QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QGuiApplication, QImage, QPainter
-from PySide6.QtWidgets import QPushButton, QStyle, QStyleOptionViewItem, QWidget
+from PySide6.QtWidgets import QApplication, QPushButton, QStyle, QStyleOptionViewItem, QWidget
 from pytestqt.qtbot import QtBot
 
 from deliberate.rehearsal.comparing import AGREE, HEADINGS, SPREAD, VOICES, VOTE, figures
@@ -97,6 +97,23 @@ def test_a_swing_and_an_empty_variant_are_told(opened) -> None:
     empty = edits.remove_people(CIRCLES, [p.id for p in CIRCLES.variants[0].people], variant=AS_IT_STANDS)
     dialog = opened(empty)
     assert row(dialog, 0)[2] == "nobody present"
+
+
+def test_no_figure_is_cut(opened) -> None:
+    """A vote with objections takes three lines."""
+    first = CIRCLES.variants[0]
+    objected = replace(CIRCLES, questions=(replace(CIRCLES.questions[0], objection_mark=25.0),))
+    people = tuple(replace(one, ballots=one.ballots * 1000.5) for one in first.people)
+    dialog = opened(pair(replace(objected, variants=(replace(first, people=people),))))
+    for width in (940, 700):
+        dialog.resize(width, 640)
+        QApplication.processEvents()
+        option = QStyleOptionViewItem()
+        dialog.table.initViewItemOption(option)
+        for column in range(dialog.model.columnCount()):
+            index = dialog.model.index(0, column)
+            option.rect = dialog.table.visualRect(index)
+            assert dialog.table.itemDelegate().sizeHint(option, index).height() <= option.rect.height()
 
 
 def test_the_words_are_those_of_a_tried_change(opened) -> None:
