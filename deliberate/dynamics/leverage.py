@@ -23,6 +23,7 @@ from deliberate.dynamics.destination import Eliminated
 from deliberate.dynamics.network import Floats, Indices, Mask, Network
 from deliberate.dynamics.process import Block, Process, course
 from deliberate.dynamics.rounds import block_at
+from deliberate.dynamics.shares import TINY
 from deliberate.dynamics.structure import full_structure
 from deliberate.dynamics.turns import Turn, advance, turn_of
 
@@ -49,10 +50,11 @@ class RowChanges:
 
 
 def weight_shares(network: Network) -> Floats:
-    """(n, n) everybody's weights as shares of 1, own view on the diagonal, before any stage or absence."""
+    """(n, n) everybody's weights as shares of 1, own view on the diagonal, before any stage or absence; above 0 for
+    every arrow that is drawn."""
     own, points = network.in_parts()
     weights = np.zeros((network.people, network.people))
-    weights[network.listener, network.source] = points
+    weights[network.listener, network.source] = np.where(network.weight > 0, np.maximum(points, TINY), 0.0)
     np.fill_diagonal(weights, own)
     alone = np.flatnonzero(~weights.any(axis=1))
     weights[alone, alone] = 1.0
@@ -91,7 +93,8 @@ def results_in_long_run(process: Process, starts: Floats, lasting: Lasting, chan
     """(k,) the long-run result (the average where it swings) with each change.
 
     lasting: `Lasting.of(process, voice)`. The plan must not be repeated, and no change may take the last arrow
-    between two people that counts for ever.
+    between two people that counts for ever. NaN where a change brings groups so near to falling apart that half of
+    the digits would be lost.
     """
     before = _played(process, starts, course(process).rounds_before, changes)
     rows = _stage_rows(process.blocks[-1], process.network, changes)
@@ -206,8 +209,7 @@ class Lasting:
             return 0.0
         spread_out = change @ self.fundamental[group]
         place = int(np.searchsorted(members, person))
-        share = self.reached.within[person] / (1 - spread_out[place])
-        return float(share * (spread_out @ before[members]))
+        return float(_grown(self.reached.within[person], spread_out[place]) * (spread_out @ before[members]))
 
     def _shift_in_passing(self, person: int, row: Floats, firm: float, views: Floats, starts: Floats) -> float:
         passing = self.reached.passing
@@ -215,7 +217,7 @@ class Lasting:
         change = row - self.turn.kept[person]
         place = int(np.searchsorted(passing, person))
         gained = change @ beliefs + (firm - self.firmness[person]) * starts[person]
-        return float(self.visits[person] * gained / (1 - change[passing] @ self.inverse[:, place]))
+        return float(_grown(self.visits[person], change[passing] @ self.inverse[:, place]) * gained)
 
     def beliefs(self, views: Floats, starts: Floats) -> Floats:
         """(n,) long-run beliefs when the closed groups come to `views`."""
@@ -226,6 +228,11 @@ class Lasting:
         if len(reached.passing):
             beliefs[reached.passing] = reached.carry(views, starts)
         return beliefs
+
+
+def _grown(count: float, change: float) -> float:
+    """count / (1 - change), what a person counts for with another row; NaN where that loses half of the digits."""
+    return count / (1 - change) if abs(1 - change) * NEARLY_APART > 1 else np.nan
 
 
 def _fundamental(kept: Floats, within: Floats, members: Indices) -> Floats:

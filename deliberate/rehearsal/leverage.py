@@ -39,6 +39,7 @@ POINTS = 10.0  # of 100: what rows, own views and firmness are changed by
 STEPS_IN_SCALE = 5  # the step of a start is the largest power of ten that fits so often into the scale
 MOST_REPLAYED = 100  # people; with a hearing range or a repeated plan every change is played by itself
 ROUNDING = 1e-9
+MOST_PULL = 1e290  # times what is rounding; beyond, differences would overflow
 NOTHING = 5e-4  # of the scale's width: a smaller change is told as none
 
 LeverKind = Literal["start", "move", "own-view", "firmness"]
@@ -209,7 +210,8 @@ class _Levers:
         Where several count alike the own view is taken, so that people who are placed alike are told alike.
         """
         part = POINTS / 100
-        pull = np.round(pull / (ROUNDING * self.question.width))
+        slack = ROUNDING * self.question.width
+        pull = np.round(np.clip(pull, -MOST_PULL * slack, MOST_PULL * slack) / slack)
         voices = np.array([person, *heard])
         able = voices[row[voices] > part + ROUNDING]
         pairs = [(abs(pull[to] - pull[away]), away, to) for away in able for to in _ends(voices, pull) if to != away]
@@ -235,14 +237,12 @@ class _Levers:
             np.array([guess.firmness for guess in guesses]),
         )
         if self.replayed:
-            results = [
-                self._results(with_row(self.process, guess.person, guess.row, guess.firmness), self.starts)
-                for guess in guesses
-            ]
-            ends, lasting = map(np.array, zip(*results, strict=True))
+            ends, lasting = map(np.array, zip(*map(self._played, guesses), strict=True))
         else:
             ends = results_at_end(self.process, self.starts, self.rounds, self.voice, changes)
             lasting = results_in_long_run(self.process, self.starts, self.lasting, changes)
+            for at in np.flatnonzero(np.isnan(lasting)).tolist():
+                _, lasting[at] = self._played(guesses[at])
         for guess, end, last in zip(guesses, ends.tolist(), lasting.tolist(), strict=True):
             listener = self.people[guess.person]
             others = tuple(self.people[one] for one in guess.others)
@@ -254,6 +254,10 @@ class _Levers:
                 (listener, *others),
                 tuple((listener, one) for one in others),
             )
+
+    def _played(self, guess: _Guess) -> tuple[float, float]:
+        """The results with one change, by a run of its own."""
+        return self._results(with_row(self.process, guess.person, guess.row, guess.firmness), self.starts)
 
     def _of_starts(self, at_end: Floats, in_long_run: Floats) -> Iterator[Lever]:
         step = step_of(self.question)

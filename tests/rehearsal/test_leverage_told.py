@@ -178,6 +178,13 @@ def test_weights_at_the_ends_of_double_range(unheard):
     assert all(math.isfinite(lever["at_end"]) for lever in told["levers"])
 
 
+def test_an_arrow_that_is_hardly_heard_counts_where_it_is_alone():
+    at_tables = Plan((Stage("Tables", 2, "tables", "rescale", tables=(("a",), ("b", "c"))),))
+    odd = meeting([[1, 0, 0], [1.7e308, 0, 1e-17], [0, 0, 1]], [75, 50, 10], plan=at_tables)
+    (firmer,) = (one for one in leverage(odd).levers if one.kind == "firmness" and one.people == ("b",))
+    assert firmer.in_long_run == pytest.approx((0.1 * 50 + 0.9 * 10 - 10) / 3)
+
+
 def test_large_meetings_in_which_groups_hardly_hear_each_other_are_refused():
     people = tuple(Person(f"p{at}", own_weight=50.0) for at in range(102))
     in_pairs = tuple(Arrow(f"p{at}", f"p{at ^ 1}", 50.0) for at in range(102))
