@@ -44,7 +44,7 @@ class PeoplePainter:
         self._texts: dict[tuple[int, str], tuple[QStaticText, QSizeF]] = {}  # by size and text
         self._text_font = QFont()
         self.smallest_text = 7  # pixels; numbers that would be smaller are left out
-        self.short = False  # a digit less on every number, also at rest
+        self.short = False  # a digit less on every number, also at rest, and two where one does not fit
 
     def with_rings(self, scene: Scene, radius: float) -> bool:
         """Whether there is room for rings at a radius in pixels."""
@@ -89,10 +89,14 @@ class PeoplePainter:
         self._atlas.draw(painter, points[here], shade[here], scale)
         self._paint_absent(painter, scene, points, disc, shade, theme)
         if disc >= LEAST_NUMBER_PX:
-            texts = number_texts(beliefs, scene.question, gliding=gliding or self.short)
-            if at_start:
-                texts = [f"{text}?" if unknown else text for text, unknown in zip(texts, scene.unknown, strict=True)]
-            self._paint_numbers(painter, points, disc, shade, texts, scene, theme)
+            for digits_less in (1, 2) if self.short else (1 if gliding else 0,):
+                texts = number_texts(beliefs, scene.question, digits_less)
+                self._size_texts(painter, disc, texts)
+                if self._text_font.pixelSize() >= self.smallest_text:
+                    if at_start:
+                        texts = [f"{text}?" if new else text for text, new in zip(texts, scene.unknown, strict=True)]
+                    self._paint_numbers(painter, points, shade, texts, scene, theme)
+                    break
         if radius >= 8:
             self._paint_no_vote(painter, scene, points, radius, theme)
             self._paint_weighted(painter, scene, points, radius, theme)
@@ -164,15 +168,11 @@ class PeoplePainter:
         self,
         painter: QPainter,
         points: Floats,
-        disc: float,
         shade: Indices,
         texts: list[str],
         scene: Scene,
         theme: Theme,
     ) -> None:
-        self._size_texts(painter, disc, texts)
-        if self._text_font.pixelSize() < self.smallest_text:
-            return
         painter.setFont(self._text_font)
         inks = _inks(theme)
         pale = QColor(theme.ink)
@@ -188,7 +188,7 @@ class PeoplePainter:
 
     def _size_texts(self, painter: QPainter, disc: float, texts: list[str]) -> None:
         """A bold font in which the longest number of the scale fits into the disc."""
-        longest = max((len(text.rstrip("?")) for text in texts), default=1)
+        longest = max(map(len, texts), default=1)
         font = QFont(painter.font())
         font.setBold(True)
         font.setPixelSize(
@@ -211,10 +211,11 @@ class PeoplePainter:
         return known
 
 
-def number_texts(beliefs: Floats, question: Question, *, gliding: bool) -> list[str]:
-    """The number on each disc. Between rounds with a digit less, so that it can be read while it changes."""
-    if gliding:
-        places = max(decimals(question) - 1, 0)
+def number_texts(beliefs: Floats, question: Question, digits_less: int = 0) -> list[str]:
+    """The number on each disc, with fewer digits where it is seen from afar, or between rounds, so that it can be
+    read while it changes."""
+    if digits_less:
+        places = max(decimals(question) - digits_less, 0)
         rounded = np.round(beliefs, places)
         return [f"{value:.{places}f}" for value in (rounded + 0.0).tolist()]
     known: dict[float, str] = {}

@@ -120,6 +120,28 @@ def test_it_fills_the_screen_with_picture_round_bar_and_one_sentence(qtbot: QtBo
 
 
 @pytest.mark.parametrize("size", SIZES, ids=str)
+def test_numbers_that_do_not_fit_lose_digits_before_they_are_left_out(
+    qtbot: QtBot, look: Look, open_window, size: tuple[int, int]
+) -> None:
+    """On a scale from 0 to 24 views have two decimals; from afar 12.68 reads 13."""
+    (ferry,) = (path for path in demo_scenarios() if path.name.startswith("ferry"))
+    window = open_window(files.read(ferry))
+    window.session.show_variant(window.session.scenario.variants[1].name)
+    qtbot.waitUntil(window.session.engine.idle)
+    window.session.player.seek(2)
+    view = ProjectorView(window.session, look, window)
+    view.resize(*size)
+    view.show()
+    qtbot.waitExposed(view)
+    qtbot.waitUntil(lambda: view.canvas.picture.settled)
+    people = view.canvas.picture.people
+    assert people._text_font.pixelSize() >= people.smallest_text
+    assert people._texts
+    assert {text for _, text in people._texts} <= {"9", "9.1", "9.2", "9.3", "12.7", "12.8", "12.9", "13"}
+    view.close()
+
+
+@pytest.mark.parametrize("size", SIZES, ids=str)
 @pytest.mark.parametrize("scenario", [CIRCLES, SWAP, HARBOUR], ids=["circles", "swap", "harbour"])
 def test_all_text_is_legible_from_eight_picture_heights(
     qtbot: QtBot, open_session, look: Look, open_window, size: tuple[int, int], scenario: Scenario
