@@ -56,12 +56,12 @@ def test_as_json_all_is_there_at_full_precision(capsys: pytest.CaptureFixture[st
 
 def test_people_and_roles_that_are_not_there_are_refused(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> None:
     status, _, err = run(capsys, "--tables", "3", "--together", "mirela", "nobody")
-    assert (status, err) == (2, f"{DOCK}: nobody is not present, and so not seated\n")
+    assert (status, err) == (2, f'{DOCK}: there is nobody with the id "nobody" in "As it stands"\n')
     status, _, err = run(capsys, "--tables", "3", "--together", "mirela", "mirela")
     assert (status, err) == (2, f"{DOCK}: a condition on who sits with whom needs two people\n")
     status, _, err = run(capsys, "--tables", "3", "--role", "chairs")
     assert status == 2
-    assert 'somebody with the role "chairs" at every table: there are 3 tables, and 0 with that role present' in err
+    assert 'somebody with the role "chairs" at every table: for 3 tables there are 0 with that role present' in err
 
 
 @pytest.mark.parametrize(

@@ -5,7 +5,8 @@ from hypothesis import strategies as st
 from seats import Circle
 from talk import network_of
 
-from deliberate.dynamics.seating.search import _ends, never
+from deliberate.dynamics.progress import never
+from deliberate.dynamics.seating.search import _ends
 from deliberate.dynamics.seating.tables import TableTalk
 
 ROOMS = {"plain": {}, "firm": {"firm": True}, "absent": {"absent": (1, 4)}, "few arrows": {"arrows": 0.15}}

@@ -48,6 +48,8 @@ def test_mixed_tables_bring_circles_closer():
         f"average and {found.random_best:.1f} at best."
     )
     assert told.standing(found) == "No seating does more: all 35 ways to seat everybody were looked at."
+    one_table = seat(CIRCLES, None, None, Wish(tables=1, rotations=1))
+    assert told.standing(one_table) == "No seating does more: there is one way only to seat everybody."
     assert told.cautions(found, CIRCLES.variants[0]) == ()
 
 
@@ -154,9 +156,9 @@ def test_conditions_are_kept_in_every_rotation():
         (Wish(tables=2, rounds=0), "a stage at tables has 1 to 1,000 rounds, not 0"),
         (
             Wish(tables=3, roles=("speaker",)),
-            'somebody with the role "speaker" at every table: there are 3 tables, and 2 with that role present',
+            'somebody with the role "speaker" at every table: for 3 tables there are 2 with that role present',
         ),
-        (Wish(tables=2, apart=(("a", "nobody"),)), "nobody is not present, and so not seated"),
+        (Wish(tables=2, apart=(("a", "nobody"),)), 'there is nobody with the id "nobody" in "As it stands"'),
         (
             Wish(tables=2, apart=(("a", "b"), ("b", "c"), ("a", "c"))),
             "these cannot all be met with 2 tables of 4: Amina and Bilal never at one table, Bilal and c never at "

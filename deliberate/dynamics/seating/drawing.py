@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 
 import numpy as np
 
 from deliberate.dynamics.network import Indices
+from deliberate.dynamics.progress import Stopped
 from deliberate.dynamics.seating.conditions import Room, find_seating
 from deliberate.dynamics.seating.moves import exchange
 
@@ -25,7 +26,7 @@ class NoSeatingError(Exception):
         self.proven = proven
 
 
-def draw_seatings(room: Room, wanted: int, draw: Draw, stopped: Callable[[], bool]) -> Indices:
+def draw_seatings(room: Room, wanted: int, draw: Draw, stopped: Stopped) -> Indices:
     """(k, tables, s) seatings, k at most `wanted` and at least 1.
 
     Each is a fair draw that was kept because it meets all conditions (people who must sit together go to the

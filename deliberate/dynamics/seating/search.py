@@ -11,13 +11,13 @@ The search ends after a fixed amount of work, not of time, so that the same seed
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from itertools import product
 
 import numpy as np
 
 from deliberate.dynamics.network import Floats, Indices
+from deliberate.dynamics.progress import Progress, Stopped, never, no_report
 from deliberate.dynamics.seating.aims import CHUNK_NUMBERS, Aim
 from deliberate.dynamics.seating.conditions import Room
 from deliberate.dynamics.seating.drawing import draw_seatings
@@ -58,15 +58,6 @@ class Found:
     stopped: bool
 
 
-def never() -> bool:
-    """Goes on until it is done."""
-    return False
-
-
-def no_report(share: float) -> None:
-    """Nobody wants to know how far it is."""
-
-
 def search(
     aim: Aim,
     room: Room,
@@ -75,8 +66,8 @@ def search(
     seed: int = 1,
     effort: float = 1.0,
     exact: bool = True,
-    progress: Callable[[float], object] = no_report,
-    stopped: Callable[[], bool] = never,
+    progress: Progress = no_report,
+    stopped: Stopped = never,
 ) -> Found:
     """The best seating for so many table stages one after the other.
 
@@ -118,14 +109,14 @@ class _Best:
             self.seats, self.cost = seats.copy(), float(cost)
 
 
-def _random_courses(room: Room, stages: int, draw: np.random.Generator, stopped: Callable[[], bool]) -> Indices:
+def _random_courses(room: Room, stages: int, draw: np.random.Generator, stopped: Stopped) -> Indices:
     """(k, stages, tables, s) seatings at random for all stages."""
     each = [draw_seatings(room, RANDOM_SEATINGS, draw, stopped) for _ in range(stages)]
     many = min(map(len, each))
     return np.stack([seatings[:many] for seatings in each], axis=1)
 
 
-def _ends(aim: Aim, courses: Indices, stopped: Callable[[], bool]) -> Floats:
+def _ends(aim: Aim, courses: Indices, stopped: Stopped) -> Floats:
     """(k, n) what courses of seatings lead to; fewer once stopped, but at least one."""
     numbers = courses[0, 0].size * courses.shape[-1] + aim.state.size
     step = max(1, CHUNK_NUMBERS // numbers)
@@ -169,8 +160,8 @@ def _try_all(
     room: Room,
     stages: int,
     so_far: _Best,
-    progress: Callable[[float], object],
-    stopped: Callable[[], bool],
+    progress: Progress,
+    stopped: Stopped,
 ) -> int | None:
     """Look at every course of seatings; how many there are, or None when stopped before the end.
 
@@ -233,7 +224,7 @@ def _points(state: Floats) -> Floats:
 class _Work:
     """How much is left to do, in numbers looked at."""
 
-    def __init__(self, total: float, progress: Callable[[float], object], stopped: Callable[[], bool]) -> None:
+    def __init__(self, total: float, progress: Progress, stopped: Stopped) -> None:
         self._total, self._progress, self._stopped = total, progress, stopped
         self._done = 0.0
         self.over = stopped()

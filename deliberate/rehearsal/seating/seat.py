@@ -6,12 +6,13 @@ is the end of the plan with the table stages in it (of its first pass, where it 
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 
 import numpy as np
 
 from deliberate.dynamics.network import Indices
 from deliberate.dynamics.process import Block, Process
+from deliberate.dynamics.progress import Progress, Stopped, never, no_report
 from deliberate.dynamics.rounds import RANGE_SLACK, play
 from deliberate.dynamics.seating.aims import Aim, Spread, Voices
 from deliberate.dynamics.seating.conditions import (
@@ -24,7 +25,7 @@ from deliberate.dynamics.seating.conditions import (
     cannot_be_met,
 )
 from deliberate.dynamics.seating.drawing import NoSeatingError
-from deliberate.dynamics.seating.search import Found, never, no_report, search
+from deliberate.dynamics.seating.search import Found, search
 from deliberate.dynamics.seating.tables import TableTalk
 from deliberate.dynamics.turns import give_back
 from deliberate.errors import DeliberateError
@@ -33,8 +34,9 @@ from deliberate.rehearsal.choosing import pick_question, pick_variant
 from deliberate.rehearsal.seating.plan import add_to
 from deliberate.rehearsal.seating.told import condition_words
 from deliberate.rehearsal.seating.wish import Goal, Seating, Tables, Wish, seated_people, table_sizes
-from deliberate.rehearsal.words import listing
+from deliberate.rehearsal.words import count, listing
 from deliberate.scenario import edits
+from deliberate.scenario.access import person_with_id
 from deliberate.scenario.values import Question, Scenario, Variant
 
 MOST_PEOPLE = 1_000
@@ -49,8 +51,8 @@ def seat(
     *,
     seed: int = 1,
     effort: float = 1.0,
-    progress: Callable[[float], object] = no_report,
-    stopped: Callable[[], bool] = never,
+    progress: Progress = no_report,
+    stopped: Stopped = never,
 ) -> Seating:
     """The best seating for `wish` that is found; the same seed gives the same one.
 
@@ -165,8 +167,8 @@ def _room(variant: Variant, wish: Wish, sketch: Assembly, talk: TableTalk) -> tu
         holders = tuple(sketch.place[one.id] for one in variant.people if one.role == role and one.present)
         if len(holders) < len(sizes):
             raise DeliberateError(
-                f"{condition_words('role', role, variant)}: there are {len(sizes)} tables, "
-                f"and {len(holders)} with that role present"
+                f"{condition_words('role', role, variant)}: for {count(len(sizes), 'table', 'tables')} there "
+                f"{'is' if len(holders) == 1 else 'are'} {len(holders)} with that role present"
             )
         known[OneAtEvery(holders)] = condition_words("role", role, variant)
     if wish.linked:
@@ -178,8 +180,7 @@ def _room(variant: Variant, wish: Wish, sketch: Assembly, talk: TableTalk) -> tu
 
 def _place(person: str, seated: tuple[str, ...], variant: Variant, sketch: Assembly) -> int:
     if person not in seated:
-        name = next((one.shown_name for one in variant.people if one.id == person), person)
-        raise DeliberateError(f"{name} is not present, and so not seated")
+        raise DeliberateError(f"{person_with_id(variant, person).shown_name} is not present, and so not seated")
     return sketch.place[person]
 
 
@@ -189,7 +190,7 @@ def _why_not(error: NoSeatingError, room: Room, known: dict[Condition, str]) -> 
         return f"no seating was found that keeps all conditions; leave one out: {every}"
     clash = [known[condition] for condition in cannot_be_met(room)]
     sizes = sorted({str(size) for size in room.sizes})
-    tables = f"{len(room.sizes)} tables of {' or '.join(sizes)}"
+    tables = f"{count(len(room.sizes), 'table', 'tables')} of {' or '.join(sizes)}"
     if len(clash) == 1:
         return f"this cannot be met with {tables}: {clash[0]}"
     return f"these cannot all be met with {tables}: {listing(clash)}"

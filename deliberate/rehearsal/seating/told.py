@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Literal
 
 from deliberate.rehearsal.seating.wish import Seating, Wish
-from deliberate.rehearsal.words import count, in_words, listing, names, number, sentence
+from deliberate.rehearsal.words import amount, count, in_words, listing, names, number, sentence
 from deliberate.scenario.values import Question, Variant
 
 GOALS = {
@@ -75,8 +75,9 @@ def figure_in_short(value: float, wish: Wish, question: Question) -> str:
 def standing(seating: Seating) -> str:
     """How far the search can vouch for it: one sentence."""
     if seating.every is not None:
-        ways = count(seating.every, "way", "ways")
-        return f"No seating does more: all {ways} to seat everybody were looked at."
+        if seating.every == 1:
+            return "No seating does more: there is one way only to seat everybody."
+        return f"No seating does more: all {amount(seating.every)} ways to seat everybody were looked at."
     if not seating.finished:
         return "The search was stopped; this is the best seating so far."
     starts = count(seating.starts, "start", "starts")
