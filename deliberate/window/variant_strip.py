@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QPoint, Qt, Signal
-from PySide6.QtGui import QFont, QFontMetrics, QMouseEvent
+from PySide6.QtCore import QEvent, QPoint, Qt, Signal
+from PySide6.QtGui import QFont, QFontMetrics, QHelpEvent, QMouseEvent
 from PySide6.QtWidgets import (
     QHBoxLayout,
     QInputDialog,
@@ -12,6 +12,7 @@ from PySide6.QtWidgets import (
     QStyleOptionTab,
     QTabBar,
     QToolButton,
+    QToolTip,
     QWidget,
 )
 
@@ -35,6 +36,14 @@ class VariantTabs(QTabBar):
         room = self.style().subElementRect(QStyle.SubElement.SE_TabBarTabText, option, self).width()
         shown = Qt.TextFlag.TextShowMnemonic
         option.text = QFontMetrics(heavy).elidedText(self.tabText(place), self.elideMode(), room, shown.value)
+
+    def event(self, event: QEvent) -> bool:
+        # Said here, because a tab's own tooltip would be read out with its tags.
+        if isinstance(event, QHelpEvent) and event.type() == QEvent.Type.ToolTip:
+            place = self.tabAt(event.pos())
+            QToolTip.showText(event.globalPos(), tooltip(self.tabData(place)) if place >= 0 else "", self)
+            return True
+        return super().event(event)
 
     def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
         place = self.tabAt(event.position().toPoint())
@@ -88,7 +97,7 @@ class VariantStrip(QWidget):
         for place, name in enumerate(names):
             if self.tabs.tabText(place) != with_ampersands(name):
                 self.tabs.setTabText(place, with_ampersands(name))
-                self.tabs.setTabToolTip(place, tooltip(name))
+                self.tabs.setTabData(place, name)
         self.tabs.setCurrentIndex(names.index(self._session.variant.name))
         self.tabs.updateGeometry()  # heavier letters need more room
         self._filling = False

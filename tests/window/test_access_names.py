@@ -10,7 +10,7 @@ from circles import CIRCLES, meeting, person
 from msgspec.structs import replace
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAccessible
-from PySide6.QtWidgets import QWidget
+from PySide6.QtWidgets import QTabBar, QWidget
 from pytestqt.qtbot import QtBot
 
 from deliberate.scenario.values import AgreementTest, Arrow, Plan, Stage
@@ -57,9 +57,11 @@ def judge(window: QWidget) -> tuple[list[str], list[str]]:
     controls = focusable(window)
     assert controls
     nameless = [in_words(one) for one in controls if not spoken(one)[0].strip()]
-    tagged = [
-        text for one in window.findChildren(QWidget) if one.isVisible() for text in spoken(one) if TAG.search(text)
-    ]
+    words = [text for one in window.findChildren(QWidget) if one.isVisible() for text in spoken(one)]
+    for tabs in map(QAccessible.queryAccessibleInterface, window.findChildren(QTabBar)):
+        parts = [tabs.child(place) for place in range(tabs.childCount())]
+        words += [part.text(kind) for part in parts for kind in (QAccessible.Text.Name, QAccessible.Text.Description)]
+    tagged = [text for text in words if TAG.search(text)]
     return nameless, tagged
 
 
