@@ -7,16 +7,17 @@ from PySide6.QtWidgets import QDialog, QDialogButtonBox, QPlainTextEdit, QVBoxLa
 
 FIRST_STEPS = """\
 Draw. Double-click on free ground and type a name. Drag from the ring around a person to another person: the first \
-one listens to the second. Drag a disc to move it.
+one listens to the second. Drag from a ring onto free ground for a new person with the arrow. Drag a disc to move it.
 
 Set where people start. Select a person and type a number, or use the table on the left. Select an arrow and type \
-how many of her 100 points the listener gives, or turn the wheel.
+how many of 100 points the listener gives, or turn the wheel.
 
-Play. Press Space on the picture. In every round each person's belief becomes the mix of the voices on her ring. \
-Drag the handle of the round bar to any round.
+Play. Press Space on the picture, or F9 anywhere. In every round each person's belief becomes the mix of the voices \
+on the ring. Drag the handle of the round bar to any round.
 
 See why. “What stands out” says whether views settle and what is in the way. Point at a sentence to see whom it is \
-about; click it for the reason and for a change to try. A change is tried in a variant of its own: nothing is lost.
+about; click it for the reason and for a change to try. A change is tried in a variant of its own: nothing is lost. \
+“What would help” looks for more of them, “What it hangs on” says which guesses to ask about again.
 """
 
 KEYS = """\

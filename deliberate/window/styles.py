@@ -46,6 +46,7 @@ def style_sheet(theme: Theme) -> str:
         border: 2px solid {theme.accent}; padding: 3px 3px;
     }}
     QToolButton[quiet="true"]:checked {{ background: {theme.tint}; border-color: {theme.accent}; }}
+    QDialogButtonBox, QMessageBox {{ dialogbuttonbox-buttons-have-icons: 0; }}
     QLineEdit, QPlainTextEdit {{
         background: {theme.panel}; border: 1px solid {theme.mark}; border-radius: 5px; padding: 3px 6px;
         color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};
