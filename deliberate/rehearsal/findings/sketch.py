@@ -20,6 +20,7 @@ from deliberate.dynamics.shares import Shares, shares
 from deliberate.dynamics.structure import full_structure, structure
 from deliberate.dynamics.turns import turn_of
 from deliberate.rehearsal import words
+from deliberate.rehearsal.agreement import voters
 from deliberate.rehearsal.assemble import Assembly, assemble
 from deliberate.rehearsal.ballots import Electorate
 from deliberate.rehearsal.choosing import pick_question, pick_variant
@@ -216,8 +217,7 @@ class Sketch:
     @cached_property
     def voters(self) -> Indices:
         """The present people with a vote."""
-        votes = np.fromiter((person.ballots > 0 for person in self.variant.people), bool, len(self.present))
-        return np.flatnonzero(votes & self.present)
+        return voters(self.variant.people)
 
     # Words
 

@@ -123,7 +123,7 @@ def figure(goal: Goal, variant: Variant, question: Question) -> float:
 def _check(variant: Variant, question: Question, wish: Wish) -> None:
     people = len(variant.people)
     if people > MOST_PEOPLE:
-        raise DeliberateError(f"tables are laid for up to {MOST_PEOPLE:,} people; here are {people:,}")
+        raise DeliberateError(f"tables are laid for up to {MOST_PEOPLE:,} people, there are {people:,}")
     if not 1 <= wish.rotations <= MOST_ROTATIONS:
         raise DeliberateError(f"people are seated 1 to {MOST_ROTATIONS} times, not {wish.rotations}")
     if not 1 <= wish.rounds <= 1_000:
