@@ -37,7 +37,7 @@ from deliberate.window.session import Session
 from deliberate.window.sidebar import Sidebar
 from deliberate.window.styles import style_sheet
 from deliberate.window.tab_order import tab_to_next
-from deliberate.window.text import ElidedLabel, strong
+from deliberate.window.text import ElidedLabel, explain, strong
 from deliberate.window.theme import Look
 from deliberate.window.variant_strip import VariantStrip
 from deliberate.window.vote import CAUTION, vote_in_words
@@ -87,6 +87,7 @@ class TopBar(QWidget):
         self.question_label.setVisible(several)
         self.only_question.setVisible(not several)
         text = self._session.question.text
+        explain(self.question, text)  # the box may be too narrow for it
         self.only_question.setText(text)
         self.only_question.setAccessibleName(f"Question: {text}")
 

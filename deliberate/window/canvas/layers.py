@@ -77,7 +77,9 @@ def screen_curves(scene: Scene, view: Viewport, which: Flags | Indices) -> Curve
 def widths(scene: Scene, view: Viewport, which: Flags | Indices, manner: Indices) -> Floats:
     """Thickness of arrows in pixels."""
     scale = np.clip(scene.radius * view.zoom / 30, 0.45, 1.3)
-    wide = (1.2 + 4.8 * scene.strength[which] ** 0.9) * scale
+    # Shares of a crowd are small by themselves; what arrows move is measured against the largest and is not.
+    most = 2.0 if scene.moves is not None and len(scene.moves) > STRONG else 4.8
+    wide = (1.2 + most * scene.strength[which] ** 0.9) * scale
     wide = np.where(manner[which] == WEAK, np.minimum(wide, 1.0) * 0.9, wide)
     return np.maximum(np.rint(wide / _WIDTH_STEP), 2) * _WIDTH_STEP
 
