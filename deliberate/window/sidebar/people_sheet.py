@@ -59,8 +59,10 @@ def pasted(
 ) -> Change:
     """The edit that puts `cells` over people `ids`, line by line, and `columns` from left to right.
 
-    Lines beyond the last person add people, where the names are among the columns.
+    Lines beyond the last person add people, where the names are among the columns; empty ones are passed over there.
     """
+    beyond = [line for line in cells[len(ids) :] if any(map(str.strip, line))]
+    cells = [*cells[: len(ids)], *beyond]
 
     def edit(scenario: Scenario) -> Scenario:
         width = max(map(len, cells))

@@ -78,6 +78,14 @@ def test_lines_beyond_the_last_person_add_people() -> None:
     assert [person.beliefs["label"] for person in after[5:]] == [1.0, 2.0, 3.0]
 
 
+def test_empty_lines_beyond_the_last_person_are_passed_over() -> None:
+    """A list from a letter or a sheet is often set in groups."""
+    after = paste("Gulnara\t40\n\n \t\nHina\t60\n", first=6)
+    assert [person.name for person in after.variants[0].people[6:]] == ["Gulnara", "Hina"]
+    kept = paste("Gulnara\n\nHina").variants[0].people
+    assert [person.name for person in kept[:3]] == ["Gulnara", CIRCLES.variants[0].people[1].name, "Hina"]
+
+
 def test_without_names_no_one_can_be_added() -> None:
     with pytest.raises(DeliberateError, match="paste names as well"):
         paste("1\n2", first=5, column=Column.START)
