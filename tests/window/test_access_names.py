@@ -82,7 +82,7 @@ def test_controls_of_the_left_bar_have_names(window: MainWindow, page: int) -> N
 def test_controls_of_the_right_side_have_names(qtbot: QtBot, window: MainWindow, page: int) -> None:
     window.right_pages.turn_to(page)
     qtbot.waitUntil(
-        lambda: not (window.right_pages.remedies.looking or window.right_pages.hangs_on.working), timeout=60_000
+        lambda: not (window.right_pages.remedies.working or window.right_pages.hangs_on.working), timeout=60_000
     )
     assert judge(window) == ([], [])
 

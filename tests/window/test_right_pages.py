@@ -46,13 +46,13 @@ def open_pages(
 def turn(qtbot: QtBot, pages: RightPages, page: int) -> None:
     qtbot.mouseClick(pages.tabs, LEFT, pos=pages.tabs.tabRect(page).center())
     assert pages.pages.currentIndex() == page
-    idle = (lambda: not pages.remedies.looking) if page == WOULD_HELP else (lambda: not pages.hangs_on.working)
+    idle = (lambda: not pages.remedies.working) if page == WOULD_HELP else (lambda: not pages.hangs_on.working)
     qtbot.waitUntil(idle, timeout=30_000)
 
 
 def test_nothing_is_looked_for_before_it_is_looked_at(open_pages) -> None:
     pages, _ = open_pages()
-    assert not pages.remedies.looking
+    assert not pages.remedies.working
     assert not pages.hangs_on.working
     assert pages.remedies.list.shown == []
 
@@ -93,7 +93,7 @@ def test_another_aim_is_looked_for_when_it_is_chosen(qtbot: QtBot, open_pages) -
         before = aim.currentIndex()
         qtbot.keyClick(aim, Qt.Key.Key_Down)
         assert aim.currentIndex() != before
-        qtbot.waitUntil(lambda: not pages.remedies.looking, timeout=30_000)
+        qtbot.waitUntil(lambda: not pages.remedies.working, timeout=30_000)
     found = remedies(session.scenario, AS_IT_STANDS, "label", "less-spread")
     assert [card.says.text() for card in pages.remedies.list.shown] == [f"{remedy.says}." for remedy in found]
 
@@ -103,11 +103,11 @@ def test_an_edit_looks_again(qtbot: QtBot, open_pages) -> None:
     turn(qtbot, pages, WOULD_HELP)
     session.edit("Arrow", lambda scenario: edits.add_arrow(scenario, "amina", "davor", 20.0, variant=AS_IT_STANDS))
     assert pages.remedies.list.shown == []
-    assert pages.remedies.looking
-    qtbot.waitUntil(lambda: not pages.remedies.looking, timeout=30_000)
+    assert pages.remedies.working
+    qtbot.waitUntil(lambda: not pages.remedies.working, timeout=30_000)
     session.edit("Arrow", lambda scenario: edits.add_arrow(scenario, "davor", "amina", 20.0, variant=AS_IT_STANDS))
     turn(qtbot, pages, STANDS_OUT)
-    assert not pages.remedies.looking  # nobody looks at it any more
+    assert not pages.remedies.working  # nobody looks at it any more
 
 
 def test_a_meeting_that_asks_for_nothing_says_so(qtbot: QtBot, open_pages) -> None:
