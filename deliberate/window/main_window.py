@@ -268,6 +268,7 @@ class MainWindow(QMainWindow):
     def _after_first_frame(self) -> None:
         self.session.rehearse()
         self.chart.load()
+        self.sidebar.load()
         self.files.offer_leftovers()
 
     def focusNextPrevChild(self, forward: bool) -> bool:

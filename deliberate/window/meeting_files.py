@@ -26,7 +26,6 @@ from deliberate.window.asking import ask, tell
 from deliberate.window.held_file import HeldFile, InUseError, Locks
 from deliberate.window.recent import RecentFiles
 from deliberate.window.recovery import Leftover, Recovery
-from deliberate.window.recovery_dialog import RecoveryDialog
 from deliberate.window.session import Session
 
 SUFFIX = ".deliberate.json"
@@ -246,6 +245,8 @@ class MeetingFiles(QObject):
         leftovers = self._recovery.leftovers()
         if not leftovers:
             return
+        from deliberate.window.recovery_dialog import RecoveryDialog  # when it is needed: the start is quicker
+
         dialog = RecoveryDialog(leftovers, self._window)
         dialog.chosen.connect(self.bring_back)
         dialog.open()
