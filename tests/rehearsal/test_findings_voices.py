@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+from itertools import permutations
+
 import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from meetings import meeting
 from telling import after, all_told, kinds, talk, told
+
+from deliberate.scenario.values import Arrow, Person, Question, Scenario, Variant
 
 
 def star(people: int) -> list[list[int]]:
@@ -75,6 +79,23 @@ def test_the_hub_of_a_star() -> None:
 def test_less_than_twice_an_equal_share_is_not_told() -> None:
     assert 5 / 13 < 2 / 5
     assert "carries" not in kinds(meeting(star(5), [80, 20, 20, 20, 20]))
+
+
+@pytest.mark.parametrize(("points", "worth_telling"), [(2.6, False), (4.0, True)])
+def test_a_trifle_in_a_crowd_is_not_told(points: float, worth_telling: bool) -> None:
+    """All give the first so many points and everybody else one: influence is points over their sum."""
+    ids = [f"p{at}" for at in range(60)]
+    people = tuple(Person(one, own_weight=points if one == "p0" else 1.0, beliefs={"q": 50.0}) for one in ids)
+    arrows = tuple(Arrow(one, other, points if other == "p0" else 1.0) for one, other in permutations(ids, 2))
+    crowd = Scenario(
+        title="Crowd",
+        questions=(Question("q", "What is asked?", 0, 100),),
+        variants=(Variant(name="v", people=people, arrows=arrows),),
+    )
+    share = points / (points + 59)
+    assert share > 2 / 60
+    assert (share > 0.05) == worth_telling
+    assert ("carries" in kinds(crowd)) == worth_telling
 
 
 @given(st.lists(st.integers(1, 60), min_size=3, max_size=6), st.data())

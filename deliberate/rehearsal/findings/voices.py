@@ -13,6 +13,7 @@ from deliberate.rehearsal.words import listing, percent, sentence
 
 MORE_THAN_EQUAL = 2.0  # times an equal share
 HALF = 0.5
+WORTH_TELLING = 0.05  # of where the sketch ends; in a crowd twice an equal share is next to nothing
 LARGE_OF_TWO = 2 / 3  # of two people one is always at half or more
 ROUNDING = 1e-9
 NAMED_FIXED = 4
@@ -85,6 +86,8 @@ def carries(sketch: Sketch) -> Iterator[Finding]:
         return
     people = people[np.argsort(-influence[people], kind="stable")]
     total, top = float(influence[people].sum()), people[0]
+    if total < WORTH_TELLING:
+        return
     starts = "start" if len(people) == 1 else "starts"
     yield Finding(
         kind="carries",
