@@ -171,9 +171,8 @@ def _paint_names(painter: QPainter, frame: Frame, content: Content, theme: Theme
     for one in sorted(content.selected):
         name = elided(content.names[one], painter.font(), frame.rect.width() * 0.45)
         y = float(frame.y(float(content.rehearsal.rounds[0][one])))
-        box = QRectF(
-            frame.rect.left() + 4, y - metrics.height() - 2, metrics.horizontalAdvance(name), metrics.height()
-        )
+        left = max(float(frame.x(0.0)), frame.rect.left()) + 6  # clear of the cursor at the start
+        box = QRectF(left, y - metrics.height() - 2, metrics.horizontalAdvance(name), metrics.height())
         box = _kept_apart(box, taken, frame.rect)
         painter.setPen(QColor(theme.ink))
         painter.drawText(box.bottomLeft() - QPointF(0, metrics.descent()), name)
