@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QRectF, QSize
 from PySide6.QtGui import QColor, QPainter, QPaintEvent
 from PySide6.QtWidgets import QFrame, QLabel, QVBoxLayout, QWidget
 
 from deliberate.rehearsal import comparing
-from deliberate.rehearsal.doubt_results import FindingOdds
 from deliberate.rehearsal.results import Finding, Rehearsal, Suggestion
 from deliberate.rehearsal.suggestions import apply, words
 from deliberate.scenario.values import Question
@@ -17,6 +17,9 @@ from deliberate.window.cards import Card, Cards, Told
 from deliberate.window.session import Session
 from deliberate.window.text import plain_label, strong
 from deliberate.window.theme import Look
+
+if TYPE_CHECKING:
+    from deliberate.rehearsal.doubt_results import FindingOdds
 
 
 @dataclass(frozen=True)
