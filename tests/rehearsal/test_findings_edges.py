@@ -118,3 +118,10 @@ def test_digits_fit_the_scale(low: float, high: float, told_as: str) -> None:
     question = Question("q", "Raise the levy?", low, high, pass_mark=low + width / 2)
     starts = [low + part * width for part in (0.8, 0.502, 0.2)]
     assert told_as in told(meeting(KEEP, starts, question=question), "knife-edge").says
+
+
+def test_a_start_that_is_not_known_has_no_margin_to_be_judged_by() -> None:
+    """One for, one against, and nobody hears anybody: the one who is not known stands at the mark."""
+    (finding,) = edges(meeting(KEEP, [80, None, 20], question=LEVY, plan=talk(1)))
+    assert finding.people[0] == "b"
+    assert "this start is not known and taken to be in the middle" in finding.why

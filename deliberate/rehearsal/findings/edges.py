@@ -58,7 +58,9 @@ def _says_edge(sketch: Sketch, person: int, start: float, tally: Tally, unsure: 
 
 def _why_edge(sketch: Sketch, person: int, change: float, margin: float, tally: Tally, also: Indices) -> str:
     would = f"The vote {sketch.at_end} would then be {amount(tally.in_favour)} for, {amount(tally.against)} against"
-    if margin <= 0:
+    if sketch.ids([person])[0] in sketch.rehearsal.unknown_starts:
+        sure = "this start is not known and taken to be in the middle"
+    elif margin <= 0:
         sure = "no margin is given for this start"
     elif change <= margin:
         sure = f"that is within the margin of {sketch.number(margin, beside=0.0)} given for this start"
