@@ -5,7 +5,7 @@ from __future__ import annotations
 import importlib
 from pathlib import Path
 
-from PySide6.QtCore import QModelIndex, Qt
+from PySide6.QtCore import QModelIndex, QPersistentModelIndex, Qt
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import (
     QAbstractItemView,
@@ -16,6 +16,9 @@ from PySide6.QtWidgets import (
     QHeaderView,
     QLabel,
     QPushButton,
+    QStyle,
+    QStyledItemDelegate,
+    QStyleOptionViewItem,
     QTableView,
     QVBoxLayout,
     QWidget,
@@ -35,6 +38,14 @@ FIGURES = (
 ONE_VARIANT = "There is one variant only. Variants > Add a copy makes another way of setting up the same meeting."
 
 NAME_WIDTH = 200
+
+
+class _RowsOnly(QStyledItemDelegate):
+    """Cells without a focus of their own: the tinted row says which variant stands in front."""
+
+    def initStyleOption(self, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex) -> None:
+        super().initStyleOption(option, index)
+        option.state &= ~QStyle.StateFlag.State_HasFocus
 
 
 class ComparisonDialog(QDialog):
@@ -67,6 +78,7 @@ class ComparisonDialog(QDialog):
 
     def _table(self) -> QTableView:
         table = QTableView(self)
+        table.setItemDelegate(_RowsOnly(table))
         table.setModel(self.model)
         table.setAccessibleName("Figures of the compared variants")
         table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
