@@ -9,7 +9,7 @@ from deliberate.window.theme import Theme
 def style_sheet(theme: Theme) -> str:
     """Quiet fields, hairlines, one accent for what has the focus or is chosen."""
     tick = (resources() / f"tick-{theme.name}.svg").as_posix()
-    down = (resources() / f"down-{theme.name}.svg").as_posix()
+    up, down = ((resources() / f"{way}-{theme.name}.svg").as_posix() for way in ("up", "down"))
     return f"""
     QLabel[muted="true"] {{ color: {theme.muted}; }}
     QWidget[hairline="true"] {{ background: {theme.line}; }}
@@ -68,6 +68,15 @@ def style_sheet(theme: Theme) -> str:
     QComboBox::drop-down {{ border: none; width: 18px; }}
     QComboBox::down-arrow {{ image: url("{down}"); width: 11px; height: 11px; }}
     QComboBox QAbstractItemView {{ background: {theme.panel}; border: 1px solid {theme.line}; }}
+    QSpinBox {{
+        background: {theme.panel}; border: 1px solid {theme.mark}; border-radius: 5px; padding: 3px 6px;
+        color: {theme.ink}; selection-background-color: {theme.accent}; selection-color: {theme.on_accent};
+        min-height: 16px;
+    }}
+    QSpinBox:focus {{ border-color: {theme.accent}; }}
+    QSpinBox::up-button, QSpinBox::down-button {{ background: transparent; border: none; width: 18px; }}
+    QSpinBox::up-arrow {{ image: url("{up}"); width: 9px; height: 9px; }}
+    QSpinBox::down-arrow {{ image: url("{down}"); width: 9px; height: 9px; }}
     QSlider {{ border: 1px solid transparent; border-radius: 4px; }}
     QSlider:focus {{ border-color: {theme.accent}; }}
     QListWidget::item {{ padding: 7px 10px; border-radius: 4px; }}
